@@ -119,7 +119,9 @@ def _arc_interior(
     cx = (x0 + x1) / 2.0 - (y1 - y0) * offset
     cy = (y0 + y1) / 2.0 + (x1 - x0) * offset
     start = math.atan2(y0 - cy, x0 - cx)
-    step = 2.0 * math.acos(max(-1.0, 1.0 - chord_error_mm / radius)) if radius > chord_error_mm else math.pi / 4
+    step = (
+        2.0 * math.acos(max(-1.0, 1.0 - chord_error_mm / radius)) if radius > chord_error_mm else math.pi / 4
+    )
     n = max(2, math.ceil(abs(theta) / step))
     return [
         (cx + radius * math.cos(start + theta * i / n), cy + radius * math.sin(start + theta * i / n))

@@ -1,0 +1,214 @@
+"""The frozen Design: every number of one antenna, resolved. Lengths in mm, angles in deg, band in Hz.
+
+Axes (design conventions): origin at the centre of the base's radiator-side face; +z towards the
+radiator; lobes along x; feed gap and electric field along y. The pin terminal is the inner corner at
+y > 0, the ground terminal the one at y < 0.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from wavejig.geometry.plane import Circle
+from wavejig.stock.connectors import Connector, Tube
+from wavejig.stock.metals import Metal
+
+Point2 = tuple[float, float]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Value:
+    """One number and where it came from: "recipe", "starting value", "stock" or "tuned"."""
+
+    value: float
+    origin: str
+    unit: str = "mm"
+    source: str = ""
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class TargetDesign:
+    """The band and the wanted match."""
+
+    band_low_hz: float
+    band_high_hz: float
+    reference_ohm: float
+    return_loss_db: float
+    wavelength_mm: float  # free space, at the band's middle
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class RadiatorDesign:
+    """The wire and the shape of its lobes. Sides and diameters are over the centreline."""
+
+    family: str
+    wire_diameter_mm: float
+    wire_text: str
+    metal: Metal
+    insulation_thickness_mm: float  # 0 for bare wire
+    insulation_permittivity: float
+    inside_radius_mm: float  # finished, inside of the corners
+    loaded_inside_radius_mm: float  # while on the mandrel pin
+    pin_diameter_mm: float  # the mandrel pin that gives it
+    pin_is_dowel: bool  # False: no stock dowel fits, the post is printed
+    side_mm: float | None  # None for round lobes and own paths
+    lobe_diameter_mm: float | None  # round lobes only
+    lobe_angle_deg: float
+    feed_gap_mm: float
+    standoff_mm: float
+    corners_mm: tuple[tuple[float, float, float], ...]  # own path: centreline corners, absolute; else empty
+    ground_corner: int | None  # own closed path: index from 0 of the ground terminal
+    neutral_axis_factor: float
+    trim_mm: float
+    lap_mm: float  # length of a soldered lap
+
+    @property
+    def bend_radius_mm(self) -> float:
+        """Finished centreline radius of the corners."""
+        return self.inside_radius_mm + self.wire_diameter_mm / 2.0
+
+    @property
+    def covered_diameter_mm(self) -> float:
+        """Diameter over the insulation: what grooves must take."""
+        return self.wire_diameter_mm + 2.0 * self.insulation_thickness_mm
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FeedDesign:
+    """How the radio reaches the terminals, and where on the sheet it lands."""
+
+    style: str  # "legs" or "tube"
+    terminal_pin: Point2  # x, y of the pin terminal (inner corner, y > 0)
+    terminal_ground: Point2
+    # legs
+    connector: Connector | None
+    mounting: str  # "behind" or "in-front": side of the sheet the flange or shoulder sits on
+    leg_diameter_mm: float
+    leg_is_wire: bool  # legs of the radiator's own wire: one leg is the main wire's end
+    pin_leg: Point2  # x, y of the pin leg's axis
+    pin_joint: str  # "bore" (leg stands in the solder cup) or "lap" (beside a solid pin)
+    pin_leg_bottom_mm: float  # z of the pin leg's lower end
+    connector_at: Point2  # centre of the connector
+    connector_hole_mm: float
+    flange_holes: tuple[Circle, ...]
+    ground: str  # "sheet" (soldered hole), "flange" or "lug"
+    foot: Point2  # x, y where the ground leg lands
+    foot_bottom_mm: float  # z of its lower end
+    foot_hole_mm: float  # hole in the sheet for the foot (or the lug's screw); 0 = none
+    clear_radius_mm: float  # nothing grounded but the foot's metal within this of the connector's centre
+    # tube
+    tube: Tube | None
+    tube_at: Point2
+    tube_top_mm: float
+    tube_bottom_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Lip:
+    """One folded edge. edge: "x-", "x+", "y-" or "y+"; height along the outer face from the mould line."""
+
+    edge: str
+    height_mm: float
+    angle_deg: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Hole:
+    """A round hole in the base. purpose: connector, flange, foot, tube, spacer, mounting, drain, other."""
+
+    x_mm: float
+    y_mm: float
+    diameter_mm: float
+    purpose: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ReflectorDesign:
+    """The sheet: base between outer mould lines, lips, holes."""
+
+    kind: str  # "flat" or "tray"
+    metal: Metal
+    thickness_mm: float
+    base_x_mm: float
+    base_y_mm: float
+    inside_radius_mm: float
+    k_factor: float  # neutral-axis depth / thickness (after a shop's own bend deduction, the one it implies)
+    bend_deduction_mm: float | None  # the shop's own figure, if given
+    lips: tuple[Lip, ...]
+    corner_style: str  # "relief" or "mitre"
+    holes: tuple[Hole, ...]
+    up: str  # edge that hangs uppermost: "y+" or "x+"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SpacerDesign:
+    """The printed standoff. posts: x, y where posts stand (style "posts"), else empty."""
+
+    style: str
+    plastic: str
+    posts: tuple[Point2, ...]
+    post_screw: str  # screw of a post, e.g. "M3"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PrinterDesign:
+    """The printer and how its plastic fits."""
+
+    bed_x_mm: float
+    bed_y_mm: float
+    bed_z_mm: float
+    nozzle_mm: float
+    clearance_mm: float
+    hole_allowance_mm: float
+    plastic: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CutterDesign:
+    """The cutting shop."""
+
+    process: str
+    kerf_mm: float
+    offset_in_file: bool  # True: our file carries half the kerf; False: the shop compensates
+    smallest_hole_mm: float
+    stock_x_mm: float
+    stock_y_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class FoldingDesign:
+    """The folding shop."""
+
+    smallest_flange_mm: float
+    tooling_radius_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ToleranceDesign:
+    """What the processes hold, plus or minus."""
+
+    grade: str
+    side_mm: float
+    bend_angle_deg: float
+    standoff_mm: float
+    nest_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Design:
+    """One antenna, every number resolved. `values` tells where the main ones came from."""
+
+    name: str
+    quantity: int
+    target: TargetDesign
+    radiator: RadiatorDesign
+    feed: FeedDesign
+    reflector: ReflectorDesign
+    spacer: SpacerDesign
+    printer: PrinterDesign
+    cutter: CutterDesign
+    folding: FoldingDesign
+    tolerances: ToleranceDesign
+    polarisation: str
+    pole_mm: float | None
+    values: tuple[tuple[str, Value], ...]

@@ -1,0 +1,364 @@
+"""The recipe's keys. One model per table; every field has a default, but for the four a recipe needs.
+
+The same models read recipes, make the JSON Schema (`wavejig new --schema`) and document the keys: the
+description of each field is what an editor shows while the person types.
+"""
+
+from __future__ import annotations
+
+from typing import Annotated, Any, Literal
+
+from pydantic import BaseModel, BeforeValidator, ConfigDict, Field
+
+from wavejig.recipe.fields import (
+    AUTO,
+    AUTO_WIRE,
+    SHEET,
+    WIRE,
+    Name,
+    Reads,
+    auto_number,
+    auto_quantity,
+    choice,
+    count,
+    number,
+    quantity,
+    refuse,
+    word,
+)
+from wavejig.recipe.units import ANGLE, FREQUENCY, LENGTH, LEVEL, RESISTANCE, SheetSize, WireSize
+
+FAMILIES = ("quad", "biquad", "double-biquad", "twin-loop", "path")
+# The plainest corner list would already be refused above a few hundred corners: nobody bends those.
+_MOST_CORNERS = 120
+_MOST_HOLES = 200
+
+
+class _Table(BaseModel):
+    """A recipe table: unknown keys are errors, values do not change after reading."""
+
+    model_config = ConfigDict(extra="forbid", frozen=True, validate_default=False)
+
+
+def _band(value: Any) -> Any:
+    if not isinstance(value, list) or len(value) != 2:
+        raise refuse(value, "two frequencies, lower and upper", 'Write band = ["2.400 GHz", "2.4835 GHz"].')
+    return value
+
+
+def _corner(value: Any) -> Any:
+    if not isinstance(value, list) or len(value) not in (2, 3):
+        raise refuse(value, "a corner [x, y] or [x, y, z]", 'Write it like ["21 mm", "23 mm"].')
+    return value
+
+
+def _corners(value: Any) -> Any:
+    if not isinstance(value, list) or not 3 <= len(value) <= _MOST_CORNERS:
+        raise refuse(value, f"3 to {_MOST_CORNERS} corners", 'Write corners = [["0 mm", "2 mm"], ...].')
+    return value
+
+
+def _pair(value: Any) -> Any:
+    if isinstance(value, str):  # one word or size for both directions
+        return [value, value]
+    if not isinstance(value, list) or len(value) != 2:
+        raise refuse(value, "two sizes, along x and along y", 'Write base = ["123 mm", "123 mm"], or "auto".')
+    return value
+
+
+def _triple(value: Any) -> Any:
+    if not isinstance(value, list) or len(value) != 3:
+        raise refuse(value, "three sizes, x, y and height", 'Write bed = ["220 mm", "220 mm", "250 mm"].')
+    return value
+
+
+def _holes(value: Any) -> Any:
+    if isinstance(value, list) and len(value) > _MOST_HOLES:
+        raise refuse(f"{len(value)} holes", f"at most {_MOST_HOLES} extra holes", "Remove some.")
+    return value
+
+
+def _pole(value: Any) -> Any:
+    return value if value == "none" else quantity(LENGTH, 10.0, 120.0).read(value)
+
+
+Auto = Literal["auto"]
+Size = Annotated[float, quantity(LENGTH, 0.01, 3000.0)]
+AutoSize = Annotated[float | Auto, auto_quantity(LENGTH, 0.01, 3000.0)]
+Place = Annotated[float, quantity(LENGTH, -3000.0, 3000.0)]
+Corner = Annotated[tuple[Place, ...], BeforeValidator(_corner)]
+Frequency = Annotated[float, quantity(FREQUENCY, 100e6, 12e9)]
+
+
+class Target(_Table):
+    """What the antenna must do."""
+
+    band: Annotated[tuple[Frequency, Frequency], BeforeValidator(_band)] = Field(
+        description="lower and upper edge of the band"
+    )
+    reference_impedance: Annotated[float, quantity(RESISTANCE, 10.0, 600.0)] = Field(
+        50.0, description="impedance of the radio and cable"
+    )
+    return_loss: Annotated[float, quantity(LEVEL, 3.0, 40.0)] = Field(
+        12.0, description="least return loss wanted over the whole band"
+    )
+
+
+class Radiator(_Table):
+    """The bent wire."""
+
+    family: Annotated[str, choice(*FAMILIES)] = Field(description="kind of radiator")
+    wire: Annotated[WireSize, WIRE] = Field(description="the wire: diameter, AWG, SWG or mm2")
+    metal: Annotated[str, word("metal of the wire", "wavejig stock metals")] = Field(
+        "copper", description="wire metal"
+    )
+    temper: Annotated[str, word("temper", "wavejig stock metals")] | None = Field(
+        None, description="temper of the wire; the metal's usual one when left out"
+    )
+    insulation: Annotated[str, choice("none", "enamel", "plastic")] = Field(
+        "none", description="what covers the wire"
+    )
+    insulation_thickness: Annotated[float, quantity(LENGTH, 0.005, 5.0)] | None = Field(
+        None, description="thickness of the insulation on one side"
+    )
+    insulation_permittivity: Annotated[float, number(1.0, 10.0)] = Field(
+        3.0, description="relative permittivity of the insulation"
+    )
+    inside_bend_radius: Annotated[float | Auto, auto_quantity(LENGTH, 0.1, 100.0)] = Field(
+        AUTO, description="finished inside radius of the corners; auto fits a stock dowel"
+    )
+    side: AutoSize = Field(AUTO, description="side of a lobe, corner to corner (not for round lobes)")
+    lobe_diameter: AutoSize = Field(AUTO, description="diameter of a round lobe (twin-loop only)")
+    measured_over: Annotated[str, choice("outside", "centreline", "inside")] = Field(
+        "outside", description="where on the wire a side or diameter given here is measured"
+    )
+    standoff: AutoSize = Field(AUTO, description="wire centreline to the reflector's face")
+    feed_gap: AutoSize = Field(AUTO, description="between the two terminals, centreline to centreline")
+    lobe_angle: Annotated[float | Auto, auto_quantity(ANGLE, 30.0, 150.0)] = Field(
+        AUTO, description="between the two sides at the corner opposite the feed"
+    )
+    corners: (
+        Annotated[
+            tuple[Corner, ...],
+            BeforeValidator(_corners),
+        ]
+        | None
+    ) = Field(
+        None,
+        description="family path only: centreline corners [x, y] (or [x, y, z], z from the standoff plane), "
+        "from the pin terminal to the ground terminal, or round and back to the pin terminal",
+    )
+    ground_corner: Annotated[int, count(2, _MOST_CORNERS)] | None = Field(
+        None, description="family path, closed: which corner (counted from 1) is the ground terminal"
+    )
+    neutral_axis_factor: Annotated[float, number(0.3, 0.7)] = Field(
+        0.5, description="depth of the unstretched line from the bend's inside / wire diameter"
+    )
+    trim: Annotated[float, quantity(LENGTH, 0.0, 200.0)] = Field(
+        5.0, description="length added at the far end, cut off after bending"
+    )
+    lap: AutoSize = Field(AUTO, description="length of a soldered lap joint")
+
+
+class Calliper(_Table):
+    """The connector in hand, measured; each replaces the stock table's usual figure."""
+
+    flange: Size | None = Field(None, description="side of the square flange")
+    flange_thickness: Size | None = Field(None, description="thickness of flange or shoulder")
+    hole_pitch: Size | None = Field(None, description="between flange holes, centre to centre")
+    hole_diameter: Size | None = Field(None, description="flange hole")
+    rear_cutout: Size | None = Field(None, description="panel hole when mounted behind the sheet")
+    front_cutout: Size | None = Field(None, description="panel hole when mounted in front of the sheet")
+    nut: Size | None = Field(None, description="largest diameter of the nut on the radiator side")
+    washer: Size | None = Field(None, description="diameter of the washer on the radiator side")
+    pin_diameter: Size | None = Field(None, description="outside of the pin or solder cup")
+    pin_bore: Annotated[float, quantity(LENGTH, 0.0, 20.0)] | None = Field(
+        None, description='bore of the solder cup; "0 mm" for a solid pin'
+    )
+    pin_length: Size | None = Field(None, description="flange face to the pin's tip")
+    dielectric_diameter: Size | None = Field(None, description="diameter of the insulator round the pin")
+    dielectric_length: Annotated[float, quantity(LENGTH, 0.0, 50.0)] | None = Field(
+        None, description="flange face to the insulator's end"
+    )
+
+
+class Feed(_Table):
+    """How the radio reaches the two inner corners."""
+
+    style: Annotated[str, choice("legs", "tube")] = Field(
+        "legs", description="two legs from a panel connector, or a tube"
+    )
+    connector: Annotated[str, word("connector", "wavejig stock connectors")] = Field(
+        "n-4hole", description="panel connector of the legs"
+    )
+    mounting: Annotated[str, choice("behind", "in-front")] = Field(
+        "behind", description="which side of the sheet the connector's flange or shoulder sits on"
+    )
+    leg: Annotated[WireSize | Auto, AUTO_WIRE] = Field(
+        AUTO, description="wire of the legs; auto: the radiator's own wire"
+    )
+    leg_spacing: AutoSize = Field(
+        AUTO, description="between the legs, centre to centre; auto: the feed gap, wider only if it must"
+    )
+    ground: Annotated[str, choice("auto", "sheet", "flange", "lug")] = Field(
+        "auto", description="where the ground leg lands: a soldered hole, the flange, or a lug under a screw"
+    )
+    tube: Annotated[str, word("tube", "wavejig stock tubes")] = Field(
+        "tube-3.6", description="semi-rigid tube"
+    )
+    calliper: Calliper = Field(Calliper(), description="the connector in hand, measured")
+
+
+class Hole(_Table):
+    """One more hole in the reflector's base."""
+
+    x: Place = Field(description="from the base's centre")
+    y: Place = Field(description="from the base's centre")
+    diameter: Annotated[float, quantity(LENGTH, 0.5, 200.0)] = Field(description="hole diameter")
+    purpose: Annotated[str, choice("mounting", "drain", "other")] = Field(
+        "other", description="what it is for"
+    )
+
+
+class Reflector(_Table):
+    """The sheet behind the radiator."""
+
+    material: Annotated[str, word("sheet metal", "wavejig stock metals")] = Field(
+        "brass", description="sheet metal, or laminate (copper-clad, stays flat)"
+    )
+    temper: Annotated[str, word("temper", "wavejig stock metals")] | None = Field(
+        None, description="temper of the sheet; the metal's usual one when left out"
+    )
+    thickness: Annotated[SheetSize, SHEET] = Field(
+        SheetSize(standard="thickness", number=0.8),
+        description="sheet thickness or gauge",
+    )
+    base: Annotated[tuple[AutoSize, AutoSize], BeforeValidator(_pair)] = Field(
+        (AUTO, AUTO), description="size along x and y, between outer mould lines"
+    )
+    lips: Annotated[str, choice("none", "two", "four")] = Field("none", description="folded edges")
+    lip_edges: Annotated[str, choice("x", "y")] = Field(
+        "y", description="with two lips: the edges across x or across y"
+    )
+    lip_height: AutoSize = Field(AUTO, description="along the lip's outer face, from the outer mould line")
+    lip_angle: Annotated[float, quantity(ANGLE, 5.0, 90.0)] = Field(
+        90.0, description="0 is flat, 90 stands up"
+    )
+    corners: Annotated[str, choice("relief", "mitre")] = Field(
+        "relief", description="with four lips: open notches, or lips that meet along the corner"
+    )
+    inside_bend_radius: Annotated[float | Auto, auto_quantity(LENGTH, 0.0, 30.0)] = Field(
+        AUTO, description="inside radius of the folds; auto: the folding tool's"
+    )
+    k_factor: Annotated[float | Auto, auto_number(0.2, 0.6)] = Field(
+        AUTO, description="neutral-axis depth / thickness; auto: DIN 6935"
+    )
+    bend_deduction: Annotated[float | Auto, auto_quantity(LENGTH, 0.0, 60.0)] = Field(
+        AUTO, description="the shop's own figure for these folds; wins over k_factor"
+    )
+    holes: Annotated[tuple[Hole, ...], BeforeValidator(_holes)] = Field((), description="extra holes")
+
+
+class Mounting(_Table):
+    """How it hangs outdoors."""
+
+    polarisation: Annotated[str, choice("vertical", "horizontal")] = Field(
+        "vertical", description="of the radio link; decides the up mark, drain edge and bracket holes"
+    )
+    pole: Annotated[
+        float | Literal["none"], Reads(_pole, {"type": "string", "examples": ["none", "40 mm"]})
+    ] = Field("none", description='pole diameter for the clamp holes, or "none"')
+    drain: Annotated[str, choice("auto", "none")] = Field(
+        "auto", description="drain holes along the low edge of a tray"
+    )
+
+
+class Spacer(_Table):
+    """The printed block that holds the standoff."""
+
+    style: Annotated[str, choice("block", "posts")] = Field(
+        "block", description="block: removable while soldering; posts: stay in"
+    )
+    material: Annotated[str, word("printed plastic", "wavejig stock plastics")] = Field(
+        "PETG", description="printed plastic"
+    )
+
+
+class Printer(_Table):
+    """The printer, and how its plastic fits."""
+
+    bed: Annotated[tuple[Size, Size, Size], BeforeValidator(_triple)] = Field(
+        (220.0, 220.0, 250.0), description="bed along x and y, and height"
+    )
+    nozzle: Annotated[float, quantity(LENGTH, 0.1, 2.0)] = Field(0.4, description="nozzle width")
+    clearance: Annotated[float, quantity(LENGTH, 0.0, 2.0)] = Field(
+        0.25, description="sliding fit, on each side"
+    )
+    hole_allowance: Annotated[float, quantity(LENGTH, 0.0, 1.0)] = Field(
+        0.15, description="added to hole diameters, since printed holes come out small"
+    )
+    material: Annotated[str, word("printed plastic", "wavejig stock plastics")] = Field(
+        "PETG", description="plastic of the fixture"
+    )
+
+
+class Cutter(_Table):
+    """The shop that cuts the sheet."""
+
+    process: Annotated[str, word("cutting process", "wavejig stock cutters")] = Field(
+        "fibre-laser", description="how the blank is cut"
+    )
+    kerf: Annotated[float, quantity(LENGTH, 0.0, 3.0)] = Field(0.2, description="width the cut takes away")
+    compensated: Annotated[str, choice("by-shop", "in-file")] = Field(
+        "by-shop", description="who offsets the path by half the kerf; most shops do it themselves"
+    )
+    smallest_hole: AutoSize = Field(AUTO, description="smallest hole the shop cuts; auto: the thickness")
+    stock_sheet: Annotated[tuple[Size, Size], BeforeValidator(_pair)] = Field(
+        (600.0, 300.0), description="sheet the blanks are cut from"
+    )
+
+
+class Folding(_Table):
+    """The shop that folds the sheet."""
+
+    smallest_flange: AutoSize = Field(
+        AUTO, description="shortest lip it can fold; auto: 4 x thickness + radius"
+    )
+    tooling_radius: AutoSize = Field(AUTO, description="inside radius its tool gives; auto: by metal")
+
+
+class Tolerances(_Table):
+    """What the process holds; defaults from ISO 2768-1 and common practice."""
+
+    grade: Annotated[str, choice("f", "m", "c")] = Field(
+        "m", description="ISO 2768-1 class for cut and folded sheet"
+    )
+    side: Annotated[float, quantity(LENGTH, 0.01, 10.0)] = Field(
+        0.3, description="plus or minus, sides of the radiator"
+    )
+    bend_angle: Annotated[float, quantity(ANGLE, 0.1, 10.0)] = Field(
+        1.0, description="plus or minus, bends of the wire"
+    )
+    standoff: Annotated[float, quantity(LENGTH, 0.01, 10.0)] = Field(
+        0.3, description="plus or minus, standoff"
+    )
+    nest: Annotated[float, quantity(LENGTH, 0.05, 10.0)] = Field(
+        0.5, description="half-width of the check nest's band beyond the wire"
+    )
+
+
+class Recipe(_Table):
+    """A whole recipe."""
+
+    name: Name = Field(description="names the pack's folder and is engraved on its parts")
+    quantity: Annotated[int, count(1, 10_000)] = Field(1, description="how many antennas")
+    target: Target
+    radiator: Radiator
+    feed: Feed = Field(Feed())
+    reflector: Reflector = Field(Reflector())
+    mounting: Mounting = Field(Mounting())
+    spacer: Spacer = Field(Spacer())
+    printer: Printer = Field(Printer())
+    cutter: Cutter = Field(Cutter())
+    folding: Folding = Field(Folding())
+    tolerances: Tolerances = Field(Tolerances())
