@@ -1,0 +1,1 @@
+"""The bent wire: centreline, pieces, bend tables, joints. `solid` sweeps it and loads the kernel."""
