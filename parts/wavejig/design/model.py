@@ -38,6 +38,27 @@ class TargetDesign:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Corner:
+    """A corner of the main wire's centreline and its finished centreline radius (0 at the ends)."""
+
+    at: tuple[float, float, float]
+    radius_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Conflict:
+    """Numbers that cannot be had together: found while resolving, told as an error finding.
+
+    topic: "feed", "radiator", "reflector", "spacer"; key: the recipe key to change.
+    """
+
+    topic: str
+    key: str
+    message: str
+    remedy: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class RadiatorDesign:
     """The wire and the shape of its lobes. Sides and diameters are over the centreline."""
 
@@ -56,8 +77,8 @@ class RadiatorDesign:
     lobe_angle_deg: float
     feed_gap_mm: float
     standoff_mm: float
-    corners_mm: tuple[tuple[float, float, float], ...]  # own path: centreline corners, absolute; else empty
-    ground_corner: int | None  # own closed path: index from 0 of the ground terminal
+    corners: tuple[Corner, ...]  # of the main wire's lobes, from the pin terminal on (see `lobes`)
+    ground_corner: int | None  # index of the ground terminal among them; None: it is the last one
     neutral_axis_factor: float
     trim_mm: float
     lap_mm: float  # length of a soldered lap
@@ -95,7 +116,7 @@ class FeedDesign:
     foot: Point2  # x, y where the ground leg lands
     foot_bottom_mm: float  # z of its lower end
     foot_hole_mm: float  # hole in the sheet for the foot (or the lug's screw); 0 = none
-    clear_radius_mm: float  # nothing grounded but the foot's metal within this of the connector's centre
+    clear_radius_mm: float  # cut-out, nut, washer or flange: the foot must land outside this, unless on it
     # tube
     tube: Tube | None
     tube_at: Point2
@@ -212,3 +233,4 @@ class Design:
     polarisation: str
     pole_mm: float | None
     values: tuple[tuple[str, Value], ...]
+    conflicts: tuple[Conflict, ...]

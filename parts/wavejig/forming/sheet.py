@@ -125,7 +125,9 @@ def handbook_bend_length_mm(
     for name, coefficient in _HANDBOOK_T:
         if name == material_class:
             return (coefficient * thickness_mm + 1.57 * inside_radius_mm) * angle_deg / 90.0
-    raise ValueError(f"material class: got {material_class!r}, need one of {', '.join(get_args(HandbookClass))}")
+    raise ValueError(
+        f"material class: got {material_class!r}, need one of {', '.join(get_args(HandbookClass))}"
+    )
 
 
 def aviation_bend_allowance_mm(angle_deg: float, inside_radius_mm: float, thickness_mm: float) -> float:
@@ -190,5 +192,5 @@ def _check_bend(angle_deg: float, inside_radius_mm: float, thickness_mm: float) 
 def _check_k(k_factor: float) -> None:
     if not 0.0 <= k_factor <= 1.0:
         raise ValueError(
-            f"K-factor: got {k_factor:g}, need 0 to 1 (depth of the neutral line / thickness; usual 0.3 to 0.5)"
+            f"K-factor: got {k_factor:g}, need 0 to 1 (neutral line's depth / thickness; usual 0.3 to 0.5)"
         )

@@ -40,7 +40,7 @@ def moment_ratio(core_ratio: float, hardening_exponent: float = 0.0) -> float:
         raise ValueError(f"elastic core ratio: got {c:g}, need 0 < core <= 1 (0 only where n = 0)")
     # M = 4 (E r^4/R) below + 4 K r^3 (r/R)^n above, over first yield's (pi/4) E r^4 c/R; both stresses
     # meet at y = c r, so K (r/R)^n = E (r/R) c^(1 - n) and all but c and n cancels
-    plastic = c ** (-n) * _strip_integral_above(c, n)
+    plastic = math.pow(c, -n) * _strip_integral_above(c, n)
     core = _strip_integral_below(c, 1.0) / c if c > 0.0 else 0.0
     return 16.0 / math.pi * (plastic + core)
 
@@ -121,9 +121,7 @@ def loaded_radius_mm(
     wanted = 1.0 / finished_centreline_radius_mm
 
     def excess(curvature: float) -> float:
-        moment = _moment_nmm(
-            curvature, radius_mm, modulus_mpa, strength_coefficient_mpa, hardening_exponent
-        )
+        moment = _moment_nmm(curvature, radius_mm, modulus_mpa, strength_coefficient_mpa, hardening_exponent)
         return curvature - moment / stiffness_nmm2 - wanted
 
     low, high = wanted, 1.0 / radius_mm
@@ -144,9 +142,7 @@ def loaded_radius_mm(
     return 2.0 / (low + high)
 
 
-def loaded_angle_deg(
-    finished_angle_deg: float, finished_radius_mm: float, loaded_radius_mm: float
-) -> float:
+def loaded_angle_deg(finished_angle_deg: float, finished_radius_mm: float, loaded_radius_mm: float) -> float:
     """Angle in degrees to bend to, so that `finished_angle_deg` is left.
 
     Both radii to the centreline. The arc keeps its length, so angle x radius stays the same.
@@ -186,7 +182,7 @@ def _moment_nmm(
     hardening_exponent: float,
 ) -> float:
     # the strain at which K*strain^n and E*strain meet; below it the metal is elastic
-    yield_strain = (strength_coefficient_mpa / modulus_mpa) ** (1.0 / (1.0 - hardening_exponent))
+    yield_strain = math.pow(strength_coefficient_mpa / modulus_mpa, 1.0 / (1.0 - hardening_exponent))
     core_ratio = yield_strain / (curvature_per_mm * radius_mm)
     stiffness_nmm2 = _stiffness_nmm2(radius_mm, modulus_mpa)
     if core_ratio >= 1.0:
@@ -208,7 +204,7 @@ def _strip_integral_below(c: float, n: float) -> float:
     for k in range(_SERIES_TERMS):
         total += term / (n + 2.0 + 2.0 * k)
         term *= -(0.5 - k) / (k + 1.0) * c * c
-    return float(total * c ** (n + 2.0))
+    return total * math.pow(c, n + 2.0)
 
 
 def _strip_integral_above(c: float, n: float) -> float:

@@ -191,8 +191,8 @@ class Feed(_Table):
     connector: Annotated[str, word("connector", "wavejig stock connectors")] = Field(
         "n-4hole", description="panel connector of the legs"
     )
-    mounting: Annotated[str, choice("behind", "in-front")] = Field(
-        "behind", description="which side of the sheet the connector's flange or shoulder sits on"
+    mounting: Annotated[str, choice("auto", "behind", "in-front")] = Field(
+        "auto", description="side of the sheet the connector's flange or nut sits on, seen from the radiator"
     )
     leg: Annotated[WireSize | Auto, AUTO_WIRE] = Field(
         AUTO, description="wire of the legs; auto: the radiator's own wire"

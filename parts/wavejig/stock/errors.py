@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
+from itertools import pairwise
 
 
 class StockError(ValueError):
@@ -34,11 +35,13 @@ def unknown_number(what: str, number: float, allowed: Sequence[float], unit: str
     """Error for a number that is not in a table; a gauge number off its scale, for example."""
     ordered = sorted(allowed)
     near = min(ordered, key=lambda value: abs(value - number))
-    listed = f"{ordered[0]:g} to {ordered[-1]:g}" if _is_run(ordered) else ", ".join(f"{v:g}" for v in ordered)
+    listed = (
+        f"{ordered[0]:g} to {ordered[-1]:g}" if _is_run(ordered) else ", ".join(f"{v:g}" for v in ordered)
+    )
     tail = f" {unit}" if unit else ""
     return StockError(f"{what}: got {number:g}{tail}, need one of {listed}{tail}. Nearest: {near:g}{tail}.")
 
 
 def _is_run(ordered: Sequence[float]) -> bool:
     """Whether the numbers are consecutive integers, which read better as a range."""
-    return len(ordered) > 3 and all(b - a == 1 for a, b in zip(ordered, ordered[1:], strict=False))
+    return len(ordered) > 3 and all(b - a == 1 for a, b in pairwise(ordered))

@@ -7,6 +7,7 @@ A table whose rows come from different places has a column called `source` besid
 
 from __future__ import annotations
 
+import math
 import tomllib
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
@@ -55,7 +56,9 @@ class Table:
 def table_names() -> tuple[str, ...]:
     """Names of all stock tables, in alphabetical order. Reads no table."""
     return tuple(
-        sorted(entry.name.removesuffix(".toml") for entry in _data().iterdir() if entry.name.endswith(".toml"))
+        sorted(
+            entry.name.removesuffix(".toml") for entry in _data().iterdir() if entry.name.endswith(".toml")
+        )
     )
 
 
@@ -124,7 +127,8 @@ def _row(name: str, number: int, names: list[str], row: Any) -> dict[str, Cell]:
         got = f"{len(row)} cells" if isinstance(row, list) else ", ".join(row)
         raise StockError(f"stock table {name}, row {number}: got {got}, need {', '.join(names)}.")
     for key, cell in cells.items():
-        if not isinstance(cell, str | int | float) or cell == "":
+        sound = bool(cell) if isinstance(cell, str) else isinstance(cell, int | float) and math.isfinite(cell)
+        if not sound:
             raise StockError(f"stock table {name}, row {number}, {key}: got {cell!r}, need text or a number.")
     return cells
 

@@ -8,7 +8,7 @@ from __future__ import annotations
 
 import math
 
-from wavejig.stock.errors import unknown_number
+from wavejig.stock.errors import StockError, unknown_number
 from wavejig.stock.tables import column, table
 
 _MM_PER_INCH = 25.4  # exact since 1959
@@ -43,7 +43,10 @@ def area_diameter_mm(area_mm2: float) -> float:
     thinner by some per cent: a measured diameter is better. Raises StockError unless positive, finite.
     """
     if not 0.0 < area_mm2 < math.inf:
-        raise unknown_number("wire cross-section", area_mm2, column("mm2", "area_mm2"), "mm2")
+        usual = ", ".join(f"{value:g}" for value in column("mm2", "area_mm2"))
+        raise StockError(
+            f"wire cross-section: got {area_mm2:g} mm2, need a positive one; usual are {usual} mm2."
+        )
     return math.sqrt(4.0 * area_mm2 / math.pi)
 
 
