@@ -47,11 +47,11 @@ def test_no_glyph_runs_twice_over_the_same_ground() -> None:
             assert a.intersection(b).length == 0, character
 
 
-def test_letters_told_apart_by_more_than_half_a_unit_of_pen() -> None:
-    """The pairs that are misread on a bench differ by at least one grid unit somewhere."""
+def test_alike_characters_differ_by_more_than_a_tenth_of_their_height() -> None:
+    """The pairs that are misread on a bench differ by at least 0.7 of a grid unit somewhere (a tenth of a capital)."""
     for a, b in ("0O", "0Ø", "1I", "5S", "8B", "2Z", "OQ", "OD", "UV", "6G", "CG"):
         shapes = [LineString([p for s in strokes(c, 6.0) for p in s.points]).segmentize(0.1) for c in (a, b)]
-        assert shapes[0].hausdorff_distance(shapes[1]) >= 0.99, a + b
+        assert shapes[0].hausdorff_distance(shapes[1]) >= 0.7, a + b
 
 
 def test_capitals_are_as_tall_as_asked_and_start_at_the_point() -> None:

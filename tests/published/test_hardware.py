@@ -60,16 +60,22 @@ def test_fits_of_3_to_6_mm() -> None:
         assert fit_limits_mm(diameter_mm, "m6") == dowel_limits_mm(diameter_mm) == (0.004, 0.012)
 
 
-@pytest.mark.parametrize("size_mm", [2.0, 5.0, 8.0, 14.0, 24.0])
-def test_fit_widths_follow_the_standard_tolerance_unit(size_mm: float) -> None:
+def test_fits_up_to_3_mm() -> None:
+    """ISO 286: H7 0/+10, h6 -6/0, m6 +2/+8 um up to 3 mm; from memory."""
+    assert fit_limits_mm(3.0, "H7") == (0.0, 0.010)
+    assert fit_limits_mm(3.0, "h6") == (-0.006, 0.0)
+    assert dowel_limits_mm(1.5) == (0.002, 0.008)
+
+
+@pytest.mark.parametrize(("low", "high"), [(3, 6), (6, 10), (10, 18), (18, 30)])
+def test_fit_widths_follow_the_standard_tolerance_unit(low: float, high: float) -> None:
     """ISO 286-1: i = 0.45 D^(1/3) + 0.001 D um, D the geometric mean of the range; IT6 = 10 i, IT7 = 16 i.
 
-    From memory; the standard rounds, here within 1 um (the first range's mean is of 1 and 3).
+    From memory; the standard rounds to whole micrometres, mostly up; up to 3 mm it is above the formula.
     """
-    low, high = next(r for r in ((1, 3), (3, 6), (6, 10), (10, 18), (18, 30)) if r[0] < size_mm <= r[1])
     mean = math.sqrt(low * high)
     unit_um = 0.45 * mean ** (1 / 3) + 0.001 * mean
-    widths_um = {c: (b - a) * 1000 for c in ("H7", "h6", "m6") for a, b in [fit_limits_mm(size_mm, c)]}
+    widths_um = {c: (b - a) * 1000 for c in ("H7", "h6", "m6") for a, b in [fit_limits_mm(high, c)]}
     assert widths_um["H7"] == pytest.approx(16 * unit_um, abs=1.0)
     assert widths_um["h6"] == pytest.approx(10 * unit_um, abs=1.0)
     assert widths_um["m6"] == pytest.approx(widths_um["h6"], abs=1e-9)

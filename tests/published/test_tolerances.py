@@ -59,7 +59,10 @@ def test_printed_fits() -> None:
 
 @pytest.mark.parametrize(("name", "low_c", "high_c"), [("PLA", 59, 59), ("PETG", 77, 77), ("ABS", 100, 105)])
 def test_plastics(name: str, low_c: float, high_c: float) -> None:
-    """Glass transition from data sheets; Zechmeister & Lacik, prints at 1 to 10 GHz: 2.55-2.95, e'' 0.007-0.08."""
+    """Glass transition from data sheets; prints at 1 to 10 GHz: permittivity 2.55-2.95, e'' 0.007-0.08
+
+    (Zechmeister & Lacik).
+    """
     found = plastic(name)
     assert low_c <= found.glass_transition_c <= high_c
     assert (found.permittivity_low, found.permittivity_high) == (2.55, 2.95)

@@ -38,11 +38,11 @@ def test_awg_is_defined_by_two_diameters_and_39_equal_ratios() -> None:
 
 def test_swg_table() -> None:
     """BS 3737:1964, numbers 1 to 30 in inches, from secondary sources."""
-    printed_in = (
-        ".300 .276 .252 .232 .212 .192 .176 .160 .144 .128 .116 .104 .092 .080 .072 .064 .056 .048 .040 .036 "
-        ".032 .028 .024 .022 .020 .018 .0164 .0148 .0136 .0124"
-    ).split()
-    for number, inches in enumerate(printed_in, start=1):
+    printed_in = """
+        .300 .276 .252 .232 .212 .192 .176 .160 .144 .128 .116 .104 .092 .080 .072 .064 .056 .048 .040 .036
+        .032 .028 .024 .022 .020 .018 .0164 .0148 .0136 .0124
+    """
+    for number, inches in enumerate(printed_in.split(), start=1):
         assert swg_diameter_mm(number) == pytest.approx(float(inches) * MM_PER_INCH, rel=1e-12)
 
 
@@ -55,9 +55,9 @@ def test_class_1_resistances() -> None:
 
 @pytest.mark.parametrize("row", table("mm2").rows, ids=lambda row: f"{row['area_mm2']:g} mm2")
 def test_nominal_diameter_lies_between_what_resistance_and_size_allow(row: dict[str, float]) -> None:
-    """IEC 60228 sets the size by resistance: the thinnest wire that meets it, with copper of 17.241 nohm m
+    """IEC 60228 sets the size by resistance: the thinnest wire that meets it is below sqrt(4 A/pi).
 
-    (IEC 60028), is thinner than sqrt(4 A/pi), and that is within the largest diameter of the standard.
+    Copper of 17.241 nohm m (IEC 60028); the nominal diameter is within the standard's largest.
     """
     thinnest_mm = math.sqrt(4.0 / math.pi * 17.241 / row["max_resistance_ohm_per_km"])
     assert 0.95 * area_diameter_mm(row["area_mm2"]) < thinnest_mm < area_diameter_mm(row["area_mm2"])
@@ -84,9 +84,9 @@ OUNCES = dict(
 
 @pytest.mark.parametrize("gauge", OUNCES)
 def test_sheet_gauges_follow_from_their_weights(gauge: int) -> None:
-    """The manufacturers' standard gauge is the 1893 weight over 41.82 lb/(ft2 in); galvanised adds 2.5 oz;
+    """Steel: the 1893 weight over 41.82 lb/(ft2 in); galvanised: 2.5 oz more; stainless: oz/640 in.
 
-    stainless keeps the 1893 thickness, oz/640 in; non-ferrous is ASTM B258. To the fourth decimal printed.
+    Non-ferrous: the formula of ASTM B258. All to the fourth decimal of an inch, as printed.
     """
     half_digit_mm = 0.5001e-4 * MM_PER_INCH
     ounces = OUNCES[gauge]

@@ -20,6 +20,7 @@ SOLDER_GAP_MM = 0.1  # between surfaces that solder joins by capillarity
 FOOT_PLAY_MM = 0.3  # foot hole over the leg's diameter
 FOOT_PROUD_MM = 0.5  # how far a foot stands out behind the sheet, for its solder cone
 SHORT_CLEARANCE_MM = 1.0  # bare metal of the other polarity
+INNER_CLEARANCE_MM = 0.4  # bare wire to the tube's inner conductor, where its insulation still stands
 LUG_THICKNESS_MM = 0.5
 BORE_DEPTH_DIAMETERS = 2.0  # a solder cup takes about twice its bore (from memory; measure yours)
 TUBE_BEHIND_MM = 20.0  # tube left behind the sheet for the cable or plug
@@ -46,18 +47,19 @@ class FeedRequest:
     standoff_mm: float
     wire_diameter_mm: float
     recess_mm: float
-    ground_is_end: bool
     lap_mm: float
 
 
-def least_gap_for_tube_mm(
-    tube: Tube, wire_diameter_mm: float, recess_mm: float, ground_is_end: bool
-) -> float:
-    """Feed gap that keeps the pin terminal's bare wire SHORT_CLEARANCE_MM off the tube's wall."""
+def least_gap_for_tube_mm(tube: Tube, wire_diameter_mm: float, recess_mm: float) -> float:
+    """Feed gap that keeps the pin terminal's bare wire SHORT_CLEARANCE_MM off the tube's wall.
+
+    The wire's end is cut square half a diameter past the terminal, so its corner reaches
+    d/2 (sin + cos) of the side's slope, at most 0.71 d, towards the tube.
+    """
     return (
-        _tube_offset_mm(tube, wire_diameter_mm, recess_mm, ground_is_end)
+        _tube_offset_mm(tube, wire_diameter_mm, recess_mm)
         + tube.outer_diameter_mm / 2.0
-        + wire_diameter_mm / 2.0
+        + wire_diameter_mm / math.sqrt(2.0)
         + SHORT_CLEARANCE_MM
     )
 
@@ -208,10 +210,10 @@ def _place_tube(r: FeedRequest) -> tuple[FeedDesign, tuple[Conflict, ...]]:
     assert r.tube is not None
     gap = math.dist(r.pin, r.ground_terminal)
     along = ((r.ground_terminal[0] - r.pin[0]) / gap, (r.ground_terminal[1] - r.pin[1]) / gap)
-    inward = _tube_offset_mm(r.tube, r.wire_diameter_mm, r.recess_mm, r.ground_is_end)
+    inward = _tube_offset_mm(r.tube, r.wire_diameter_mm, r.recess_mm)
     at = (r.ground_terminal[0] - along[0] * inward, r.ground_terminal[1] - along[1] * inward)
     conflicts = []
-    least = least_gap_for_tube_mm(r.tube, r.wire_diameter_mm, r.recess_mm, r.ground_is_end)
+    least = least_gap_for_tube_mm(r.tube, r.wire_diameter_mm, r.recess_mm)
     if gap < least - 1e-6:
         conflicts.append(
             Conflict(
@@ -250,15 +252,13 @@ def _place_tube(r: FeedRequest) -> tuple[FeedDesign, tuple[Conflict, ...]]:
     return design, tuple(conflicts)
 
 
-def _tube_offset_mm(tube: Tube, wire_diameter_mm: float, recess_mm: float, ground_is_end: bool) -> float:
+def _tube_offset_mm(tube: Tube, wire_diameter_mm: float, recess_mm: float) -> float:
     """Tube axis from the ground terminal towards the pin terminal.
 
-    At a continuous corner the wire's rounded apex lies across the tube's wall; where the wire ends, its
-    tail stands beside the tube.
+    The wire (its rounded apex, or its end) lies across the tube's wall, clear of the inner conductor.
     """
-    if ground_is_end:
-        return (wire_diameter_mm + tube.outer_diameter_mm) / 2.0 + SOLDER_GAP_MM
-    return tube.outer_diameter_mm / 2.0 - recess_mm
+    off_inner = (wire_diameter_mm + tube.inner_diameter_mm) / 2.0 + INNER_CLEARANCE_MM
+    return max(tube.outer_diameter_mm / 2.0, off_inner) - recess_mm
 
 
 def _flange_holes(c: Connector, at: Point2) -> tuple[Circle, ...]:

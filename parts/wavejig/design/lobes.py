@@ -31,12 +31,13 @@ class Lobes:
     """Main-wire corners from the pin terminal on, and which of them is the ground terminal.
 
     ground: index into corners, or None when the walk ends there (one lobe). far: the corner opposite
-    the feed of each inner lobe, where a post may stand.
+    the feed of each lobe (of the outer ones in the four-lobe), where a post may stand.
     """
 
     corners: tuple[Corner, ...]
     ground: int | None
     far: tuple[tuple[float, float], ...]
+    round_radius_mm: float = 0.0  # centreline radius of round lobes, else 0
 
 
 def rhombus(side_mm: float, angle_deg: float, gap_mm: float) -> tuple[Point, Point, Point, Point]:
@@ -140,7 +141,7 @@ def twin_loop(diameter_mm: float, angle_deg: float, gap_mm: float, radius_mm: fl
     radii = [0.0, rho, rho, rho, radius_mm, rho, rho, rho, 0.0]
     corners = tuple(Corner(at=p, radius_mm=r) for p, r in zip(points, radii, strict=True))
     far = centre_x + rho
-    return Lobes(corners=corners, ground=4, far=((far, 0.0), (-far, 0.0)))
+    return Lobes(corners=corners, ground=4, far=((far, 0.0), (-far, 0.0)), round_radius_mm=rho)
 
 
 def own(points: tuple[Point, ...], ground: int | None, radius_mm: float) -> Lobes:

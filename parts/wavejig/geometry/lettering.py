@@ -1,6 +1,7 @@
 """Single-stroke lettering for marks: text as open chains of straight strokes, never as live text.
 
-The alphabet is data (data/lettering.toml, an original design on a 4 x 6 grid). Lengths in mm. Loads no CAD kernel.
+The alphabet is data (data/lettering.toml, an original design on a 4 x 6 grid). Lengths in mm.
+Loads no CAD kernel.
 """
 
 from __future__ import annotations
@@ -85,7 +86,7 @@ def strokes(
     unit_mm = _unit_mm(letters, height_mm)
     if not all(math.isfinite(value) for value in (x_mm, y_mm, rotation_deg)):
         raise ValueError(
-            f"lettering: got position ({x_mm}, {y_mm}) mm and rotation {rotation_deg} deg, need finite numbers."
+            f"lettering: got position ({x_mm}, {y_mm}) mm, rotation {rotation_deg} deg; need finite numbers."
         )
     if align not in ("left", "centre"):
         raise ValueError(f'lettering: got align "{align}", need "left" or "centre".')

@@ -384,7 +384,8 @@ def _arc_points(arc: Arc, angles_rad: np.ndarray) -> np.ndarray:
 def _rotate(v: np.ndarray, axis: np.ndarray, angle_rad: float) -> np.ndarray:
     """Rodrigues' rotation of v about the unit vector axis."""
     c, s = math.cos(angle_rad), math.sin(angle_rad)
-    return v * c + np.cross(axis, v) * s + axis * float(axis @ v) * (1.0 - c)
+    turned: np.ndarray = v * c + np.cross(axis, v) * s + axis * float(axis @ v) * (1.0 - c)
+    return turned
 
 
 def _signed_angle_deg(a: np.ndarray, b: np.ndarray, axis: np.ndarray) -> float:

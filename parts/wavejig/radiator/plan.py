@@ -4,7 +4,8 @@ Which wire does what. Where both ends of the main wire meet at the pin terminal 
 twin-loop, closed paths) they bend down side by side and are lapped: with legs of the same wire one end
 goes on as the pin leg; otherwise a leg of its own, or the tube's inner conductor, joins them there. At
 the ground terminal the main wire runs through, and the ground leg laps it from below, or the tube's wall
-carries it. Where the main wire ends at both terminals (quad, open paths) its ends are the two legs.
+carries it. With a tube the ends are plain: one butts against the other and the inner conductor, hooked
+over, ties them (a tail bent down would be a stub at the terminals). Where the main wire ends at both terminals (quad, open paths) its ends are the two legs.
 """
 
 from __future__ import annotations
@@ -17,6 +18,8 @@ from wavejig.forming.wire import developed_arc_mm, loaded_angle_deg, loaded_radi
 from wavejig.geometry.path import Arc, Path, PathError, Point, round_corners
 from wavejig.radiator.feedlegs import PlanError, aside_from, leg_points
 from wavejig.radiator.model import Bend, Joint, Piece, Radiator
+
+BUTT_GAP_MM = 0.05  # between a butted end and the flank it meets; common practice, no source
 
 
 def plan(design: Design) -> Radiator:
@@ -64,41 +67,49 @@ class _Planner:
 
     def _main(self) -> Piece:
         points, radii = self.corners[1:-1], self.radii[1:-1]
-        own_leg = self.feed.style == "legs" and self.feed.leg_is_wire
-        start, end = self.pin, self.corners[-1]
-        # the first end: the pin leg itself, or a short tail beside whatever joins there
-        if own_leg:
-            head: list[Point] = [(*self.feed.pin_leg, self.feed.pin_leg_bottom_mm), start]
-        else:
-            start = aside_from(start, self.corners[1], 0.0 if self.feed.style == "tube" else self._beside())
-            head = [self._tail_end(start), start]
-        if own_leg and not self.closed:
-            below = leg_points(
-                _xy(end), self.feed.foot, self.height - self.bend, self.feed.foot_bottom_mm, self.bend
-            )
-            tail: list[Point] = [end, *below]
-        else:
-            apart = self._beside() if self.closed or self.feed.style != "tube" else 0.0
-            end = aside_from(end, self.corners[-2], apart)
-            tail = [end, self._tail_end(end)]
+        head, tail = self._head(), self._tail()
         all_points = [*head, *points, *tail]
         all_radii = [self.bend] * (len(head) - 1) + radii + [self.bend] * (len(tail) - 1)
-        if self.closed:
-            lap = self.r.lap_mm
+        return self._piece("main", all_points, all_radii, self.wire, trim_mm=self.r.trim_mm)
+
+    def _head(self) -> list[Point]:
+        """The main wire's first end: the pin leg itself, a tail beside a separate leg, or a plain end."""
+        if self.feed.style == "tube":
+            return [aside_from(self.pin, self.corners[1], -self.wire / 2.0)]
+        if self.feed.leg_is_wire:
+            return [(*self.feed.pin_leg, self.feed.pin_leg_bottom_mm), self.pin]
+        at = aside_from(self.pin, self.corners[1], self._beside())
+        return [self._tail_end(at), at]
+
+    def _tail(self) -> list[Point]:
+        """Its last end: back at the pin terminal, or at the ground terminal where it ends there."""
+        end = self.corners[-1]
+        if self.feed.style == "tube":
+            if not self.closed:
+                return [end]
+            # butts against the flank of the first end, which reaches half a diameter past the terminal
+            u, v = self.corners[1], self.corners[-2]
+            opening = _angle(self.pin, u, v)
+            return [aside_from(end, v, self.wire / 2.0 / math.sin(opening) + BUTT_GAP_MM)]
+        if self.feed.leg_is_wire and not self.closed:
+            foot, bottom = self.feed.foot, self.feed.foot_bottom_mm
+            return [end, *leg_points(_xy(end), foot, self.height - self.bend, bottom, self.bend)]
+        at = aside_from(end, self.corners[-2], self._beside())
+        if self.closed and self.feed.leg_is_wire:
             self.joints.append(
                 Joint(
                     kind="lap",
                     between=("main", "main"),
-                    at=(*_xy(self.pin), self.height - self.bend - lap / 2.0),
-                    length_mm=lap,
+                    at=(*_xy(self.pin), self.height - self.bend - self.r.lap_mm / 2.0),
+                    length_mm=self.r.lap_mm,
                     note="both ends of the main wire, side by side below the pin terminal",
                 )
             )
-        return self._piece("main", all_points, all_radii, self.wire, trim_mm=self.r.trim_mm)
+        return [at, self._tail_end(at)]
 
     def _beside(self) -> float:
         """Centre distance of the wire's tail from the leg (or other end) it is soldered to."""
-        other = self.wire if self.feed.style == "tube" or self.feed.leg_is_wire else self.leg
+        other = self.wire if self.feed.leg_is_wire else self.leg
         return (self.wire + other) / 2.0 + SOLDER_GAP_MM
 
     def _tail_end(self, at: Point) -> Point:
@@ -114,8 +125,7 @@ class _Planner:
 
     def _floor(self) -> float:
         """Lowest height for a tail at the pin terminal: clear of the sheet and of the connector's pin."""
-        if self.feed.style == "tube" or self.feed.connector is None:
-            return 1.0
+        assert self.feed.connector is not None
         face = (
             -self.design.reflector.thickness_mm
             if self.feed.mounting == "behind"
@@ -147,7 +157,7 @@ class _Planner:
                 between=("main", "pin-leg"),
                 at=(*self.feed.pin_leg, self.height - self.bend - self.r.lap_mm / 2.0),
                 length_mm=self.r.lap_mm,
-                note="the main wire's tail beside the pin leg",
+                note=f"the main wire's {'two ends, either side of' if self.closed else 'tail beside'} the pin leg",
             )
         )
         return self._piece("pin-leg", [bottom, top], [], self.leg)
@@ -217,7 +227,7 @@ class _Planner:
     def _tube(self) -> list[Piece]:
         feed, tube = self.feed, self.feed.tube
         assert tube is not None
-        top = feed.tube_top_mm if self.closed else self.height - self.bend
+        top = feed.tube_top_mm
         outer = self._piece(
             "tube",
             [(*feed.tube_at, feed.tube_bottom_mm), (*feed.tube_at, top)],
@@ -235,13 +245,23 @@ class _Planner:
         inner = self._piece(
             "inner", [(*feed.tube_at, top), (*feed.tube_at, level), end], [radius], inner_d, of_copper=True
         )
+        if self.closed:
+            self.joints.append(
+                Joint(
+                    kind="butt",
+                    between=("main", "main"),
+                    at=self.pin,
+                    length_mm=self.wire,
+                    note="one end against the flank of the other; the hooked inner conductor ties both",
+                )
+            )
         self.joints += [
             Joint(
-                kind="butt" if self.closed else "lap",
+                kind="butt",
                 between=("main", "tube"),
                 at=(*_xy(self.ground), self.height - self.wire / 2.0),
-                length_mm=self.wire if self.closed else self.r.lap_mm,
-                note="the wire across the tube's wall" if self.closed else "the wire's tail beside the tube",
+                length_mm=self.wire,
+                note="the wire across the tube's wall, soldered along its outside",
             ),
             Joint(
                 kind="hook",
@@ -344,6 +364,13 @@ def _loaded(design: Design, arc: Arc, diameter_mm: float) -> float:
         )
     except ValueError as err:
         raise PlanError(str(err)) from err
+
+
+def _angle(at: Point, one: Point, other: Point) -> float:
+    u = [a - b for a, b in zip(one, at, strict=True)]
+    v = [a - b for a, b in zip(other, at, strict=True)]
+    cosine = sum(a * b for a, b in zip(u, v, strict=True)) / (math.hypot(*u) * math.hypot(*v))
+    return math.acos(max(-1.0, min(1.0, cosine)))
 
 
 def _xy(p: Point) -> tuple[float, float]:

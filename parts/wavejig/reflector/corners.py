@@ -102,7 +102,7 @@ def _root(tray: Tray, edge: str, following: str) -> list[Corner]:
 
 
 def _side(lip: TrayLip, end: LipEnd, practice: CornerPractice) -> list[Corner]:
-    """(w, reach, radius) corners up one side of a flange, above the bend: the ear's two, if any, and the tip."""
+    """(w, reach, radius) corners up one side of a flange, above the bend: an ear's two, then the tip."""
     flange = lip.flange_mm
     if end.ear_mm is None:
         return [(flange, end.half_mm, min(practice.round_mm, flange / 2.0))]

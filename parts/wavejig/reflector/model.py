@@ -17,7 +17,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from wavejig.design.model import Hole
-from wavejig.geometry.plane import Contour
+from wavejig.geometry.plane import Circle, Contour
 
 EDGES = ("x+", "y+", "x-", "y-")
 """Counter-clockwise seen from the radiator, so that each edge's right-hand end meets the next one's left."""
@@ -117,6 +117,11 @@ class Tray:
     def half_mm(self, edge: str) -> float:
         """Distance from the centre to the mould line (or cut edge) at `edge`."""
         return self.half_x_mm if edge[0] == "x" else self.half_y_mm
+
+    @property
+    def circles(self) -> tuple[Circle, ...]:
+        """The holes, as circles on the blank and on the base alike."""
+        return tuple(Circle(x_mm=h.x_mm, y_mm=h.y_mm, diameter_mm=h.diameter_mm) for h in self.holes)
 
     def base_reach_mm(self, edge: str) -> float:
         """Distance from the centre to where the flat base ends at `edge`: the tangent, or the cut edge."""

@@ -47,20 +47,23 @@ def plan(reflector: ReflectorDesign, practice: CornerPractice | None = None) -> 
     for e, needed in inset.items():
         if half[e] <= 2.0 * needed:
             raise TrayError(
-                f"base along {e[0]}: got {2.0 * half[e]:g} mm, need more than {4.0 * needed:.2f} mm, since a bend "
-                f"and its corner relief take {needed:.2f} mm at each edge and as much flat must be left between; "
-                "make the base larger or the inside bend radius smaller"
+                f"base along {e[0]}: got {2.0 * half[e]:g} mm, need more than {4.0 * needed:.2f} mm: a bend "
+                f"and its corner relief take {needed:.2f} mm at each edge, and as much flat must be left "
+                "between; make the base larger or the inside bend radius smaller"
             )
     planned = []
     for i, e in enumerate(EDGES):
         if e not in lips:
             continue
-        allowance, deduction, k_factor = _bend(reflector, lips[e], setback[e])
+        try:
+            allowance, deduction, k_factor = _bend(reflector, lips[e], setback[e])
+        except ValueError as err:
+            raise TrayError(f"lip {e}: {err}") from err
         flange = lips[e].height_mm - setback[e]
         if flange <= 0.0:
             raise TrayError(
-                f"lip {e}: height {lips[e].height_mm:g} mm ends inside its own bend; need more than the setback of "
-                f"{setback[e]:.2f} mm; make the lip higher or the inside bend radius smaller"
+                f"lip {e}: height {lips[e].height_mm:g} mm ends inside its own bend; need more than the "
+                f"setback of {setback[e]:.2f} mm; make the lip higher or the inside bend radius smaller"
             )
         left, right = (
             lip_end(
@@ -173,8 +176,8 @@ def _check_lips(reflector: ReflectorDesign) -> None:
     for lip in lips:
         if not 0.0 < lip.angle_deg <= _STEEPEST_DEG:
             raise TrayError(
-                f"lip {lip.edge}: angle {lip.angle_deg:g} deg; need more than 0 and at most {_STEEPEST_DEG:g}, "
-                "beyond which lips lean over the base and into each other"
+                f"lip {lip.edge}: angle {lip.angle_deg:g} deg; need more than 0 and at most "
+                f"{_STEEPEST_DEG:g}, beyond which lips lean over the base and into each other"
             )
         if not 0.0 < lip.height_mm < math.inf:
             raise TrayError(f"lip {lip.edge}: height {lip.height_mm:g} mm, need more than 0")

@@ -98,15 +98,14 @@ def _metal(name: str, form: Form, temper: str | None) -> Metal:
 
 def _canonical_name(name: str, form: Form) -> str:
     known = metal_names(form)
-    for row in table("metal-aliases").rows:
-        if row["alias"] == name and row["name"] in known:
-            return str(row["name"])
-    if name in known:
-        return name
-    if name in metal_names("sheet" if form == "wire" else "wire"):
+    aliases = {str(row["alias"]): str(row["name"]) for row in table("metal-aliases").rows}
+    found = aliases.get(name, name)
+    if found in known:
+        return found
+    if found in metal_names("sheet" if form == "wire" else "wire"):
         raise StockError(f'{form} metal: "{name}" is not sold as {form}; need one of {", ".join(known)}.')
-    aliases = [str(row["alias"]) for row in table("metal-aliases").rows if row["name"] in known]
-    raise unknown_name(f"{form} metal", name, [*known, *aliases])
+    here = [alias for alias, metal in aliases.items() if metal in known]
+    raise unknown_name(f"{form} metal", name, [*known, *here])
 
 
 def _tempers() -> tuple[Any, ...]:

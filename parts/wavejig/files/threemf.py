@@ -1,0 +1,98 @@
+"""3MF: several named closed meshes with their unit, for slicers.
+
+Source: 3MF Core Specification 1.x, 3MF Consortium: package parts, namespace, model, object, build. The archive
+carries a fixed date and order, so that the same meshes give the same bytes.
+"""
+
+from __future__ import annotations
+
+import io
+import zipfile
+from collections.abc import Mapping, Sequence
+from pathlib import Path
+from xml.sax.saxutils import escape, quoteattr
+
+import numpy as np
+
+from wavejig.files.errors import FileCheckError
+from wavejig.files.mesh import CHORD_ERROR_MM, Measure, Mesh
+from wavejig.files.names import clean_name, clean_unique_names
+from wavejig.files.reread import check_names, check_piece, load_meshes
+
+_MODEL = "3D/3dmodel.model"
+_CORE = "http://schemas.microsoft.com/3dmanufacturing/core/2015/02"
+_XML = '<?xml version="1.0" encoding="UTF-8"?>\n'
+_CONTENT_TYPES = (
+    f'{_XML}<Types xmlns="http://schemas.openxmlformats.org/package/2006/content-types">'
+    '<Default Extension="rels" ContentType="application/vnd.openxmlformats-package.relationships+xml"/>'
+    '<Default Extension="model" ContentType="application/vnd.ms-package.3dmanufacturing-3dmodel+xml"/>'
+    "</Types>\n"
+)
+_RELATIONS = (
+    f'{_XML}<Relationships xmlns="http://schemas.openxmlformats.org/package/2006/relationships">'
+    f'<Relationship Target="/{_MODEL}" Id="rel0" '
+    'Type="http://schemas.microsoft.com/3dmanufacturing/2013/01/3dmodel"/></Relationships>\n'
+)
+_PARTS = ("[Content_Types].xml", "_rels/.rels", _MODEL)
+
+
+def write_3mf(meshes: Sequence[Mesh], path: Path, title: str) -> None:
+    """Write meshes, each an object under its own name, placed as it stands.
+
+    Raises ValueError for no mesh or two of one name, OSError when the file cannot be written.
+    """
+    names = clean_unique_names((mesh.name for mesh in meshes), path.name)
+    objects = "".join(
+        _object_xml(number, name, mesh)
+        for number, (name, mesh) in enumerate(zip(names, meshes, strict=True), start=1)
+    )
+    items = "".join(f'<item objectid="{number}"/>' for number in range(1, len(names) + 1))
+    model = (
+        f'{_XML}<model unit="millimeter" xml:lang="en" xmlns="{_CORE}">\n'
+        f'<metadata name="Title">{escape(clean_name(title))}</metadata>\n'
+        '<metadata name="Application">wavejig</metadata>\n'
+        f"<resources>\n{objects}</resources>\n<build>{items}</build>\n</model>\n"
+    )
+    buffer = io.BytesIO()
+    with zipfile.ZipFile(buffer, "w") as archive:
+        for part, text in zip(_PARTS, (_CONTENT_TYPES, _RELATIONS, model), strict=True):
+            entry = zipfile.ZipInfo(part, date_time=(1980, 1, 1, 0, 0, 0))
+            entry.create_system = 3  # else the writing machine's system gets into the file
+            entry.external_attr = 0o644 << 16
+            entry.compress_type = zipfile.ZIP_DEFLATED
+            archive.writestr(entry, text.encode("utf-8"), compresslevel=6)
+    path.write_bytes(buffer.getvalue())
+
+
+def check_3mf(path: Path, expected: Mapping[str, Measure], *, chord_error_mm: float = CHORD_ERROR_MM) -> None:
+    """Raise FileCheckError unless the file holds just the `expected` pieces, by name, closed, in mm.
+
+    Volume within chord_error_mm times the surface, box within chord_error_mm. Second reader: trimesh.
+    """
+    try:
+        with zipfile.ZipFile(path) as archive:
+            parts = tuple(archive.namelist())
+            broken = archive.testzip()
+    except zipfile.BadZipFile as err:
+        raise FileCheckError(path, f"a broken archive ({err})", "a complete 3MF") from err
+    if parts != _PARTS or broken is not None:
+        found = f"the part {broken} damaged" if broken else f"parts {', '.join(parts)}"
+        raise FileCheckError(path, found, f"sound parts {', '.join(_PARTS)}")
+    pieces, metadata = load_meshes(path, "3mf")
+    if metadata.get("units") != "millimeter":
+        raise FileCheckError(path, f"the unit {metadata.get('units')!r}", "'millimeter'")
+    check_names(path, set(pieces), {clean_name(name) for name in expected})
+    for name, figures in expected.items():
+        check_piece(path, name, pieces[clean_name(name)], figures, chord_error_mm)
+
+
+def _object_xml(number: int, name: str, mesh: Mesh) -> str:
+    # one format string over all numbers: ten times quicker than an element at a time
+    corners = np.round(mesh.vertices, 6) + 0.0  # + 0 turns -0 into 0
+    vertices = ('<vertex x="%.6f" y="%.6f" z="%.6f"/>\n' * len(corners)) % tuple(corners.ravel().tolist())
+    faces = mesh.faces.ravel().tolist()
+    triangles = ('<triangle v1="%d" v2="%d" v3="%d"/>\n' * len(mesh.faces)) % tuple(faces)
+    return (
+        f'<object id="{number}" type="model" name={quoteattr(name)}>\n<mesh>\n<vertices>\n{vertices}</vertices>\n'
+        f"<triangles>\n{triangles}</triangles>\n</mesh>\n</object>\n"
+    )
