@@ -89,6 +89,10 @@ def test_aviation_allowance() -> None:
     """FAA-H-8083-31 family: (0.01743 R + 0.0078 T) per degree; R 0.16, T 0.04 in, 90 deg: 0.2791 in."""
     allowance_mm = aviation_bend_allowance_mm(90.0, 0.16 * MM_PER_INCH, 0.04 * MM_PER_INCH)
     assert allowance_mm / MM_PER_INCH == pytest.approx(0.2791, abs=1e-4)
+    # each coefficient by itself: the first is a radian's, rounded by the trade
+    per_radius = aviation_bend_allowance_mm(1.0, 2.0, 1.0) - aviation_bend_allowance_mm(1.0, 1.0, 1.0)
+    per_thickness = aviation_bend_allowance_mm(1.0, 1.0, 2.0) - aviation_bend_allowance_mm(1.0, 1.0, 1.0)
+    assert (per_radius, per_thickness) == pytest.approx((0.01743, 0.0078), abs=1e-9)
 
 
 def test_worked_u_channel() -> None:

@@ -378,7 +378,8 @@ def _arc_points(arc: Arc, angles_rad: np.ndarray) -> np.ndarray:
     centre, normal = np.array(arc.centre), np.array(arc.normal)
     u = np.array(arc.start) - centre
     v = np.cross(normal, u)
-    return centre + np.cos(angles_rad)[:, None] * u + np.sin(angles_rad)[:, None] * v
+    points: np.ndarray = centre + np.cos(angles_rad)[:, None] * u + np.sin(angles_rad)[:, None] * v
+    return points
 
 
 def _rotate(v: np.ndarray, axis: np.ndarray, angle_rad: float) -> np.ndarray:
@@ -401,7 +402,8 @@ def _angle_between_rad(a: np.ndarray, b: np.ndarray) -> float:
 
 
 def _unit(v: np.ndarray) -> np.ndarray:
-    return v / float(np.linalg.norm(v))
+    unit: np.ndarray = v / float(np.linalg.norm(v))
+    return unit
 
 
 def _add(a: Point, b: Point) -> Point:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 from dataclasses import dataclass
 
 import numpy as np
@@ -73,7 +74,7 @@ def _nearest(
         pairs = []
         marks = np.searchsorted(along, np.arange(0.0, along[-1], max(apart / 2.0, 1.0)))
         edges = [int(m) for m in np.unique(np.append(marks, len(pa) - 1))]
-        for lo, hi in zip(edges[:-1], edges[1:], strict=True):
+        for lo, hi in itertools.pairwise(edges):
             start = int(np.searchsorted(along, along[hi] + apart))
             if start >= len(pa) - 1:
                 break

@@ -2,10 +2,11 @@
 
 Which wire does what. Where both ends of the main wire meet at the pin terminal (biquad, double-biquad,
 twin-loop, closed paths) they bend down side by side and are lapped: with legs of the same wire one end
-goes on as the pin leg; otherwise a leg of its own, or the tube's inner conductor, joins them there. At
-the ground terminal the main wire runs through, and the ground leg laps it from below, or the tube's wall
-carries it. With a tube the ends are plain: one butts against the other and the inner conductor, hooked
-over, ties them (a tail bent down would be a stub at the terminals). Where the main wire ends at both terminals (quad, open paths) its ends are the two legs.
+goes on as the pin leg; otherwise a leg of its own joins them there. At the ground terminal the main wire
+runs through, and the ground leg laps it from below, or the tube's wall carries it. With a tube the ends
+are plain: one butts against the other and the inner conductor, hooked over, ties them (a tail bent down
+would be a stub at the terminals). Where the main wire ends at both terminals (quad, open paths) its ends
+are the two legs.
 """
 
 from __future__ import annotations
@@ -118,8 +119,8 @@ class _Planner:
         if bottom < floor:
             raise PlanError(
                 f"the lap of {self.r.lap_mm:g} mm below the pin terminal would reach {bottom:.2f} mm above "
-                f"the sheet, where it must stay above {floor:.2f} mm; use a shorter lap, a smaller bend radius "
-                "or a larger standoff"
+                f"the sheet, where it must stay above {floor:.2f} mm; use a shorter lap, a smaller bend "
+                "radius or a larger standoff"
             )
         return (at[0], at[1], bottom)
 
@@ -157,7 +158,9 @@ class _Planner:
                 between=("main", "pin-leg"),
                 at=(*self.feed.pin_leg, self.height - self.bend - self.r.lap_mm / 2.0),
                 length_mm=self.r.lap_mm,
-                note=f"the main wire's {'two ends, either side of' if self.closed else 'tail beside'} the pin leg",
+                note="the main wire's ends either side of the pin leg"
+                if self.closed
+                else "the main wire's tail beside the pin leg",
             )
         )
         return self._piece("pin-leg", [bottom, top], [], self.leg)

@@ -136,7 +136,10 @@ def _trial(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name: st
         need = rim_top + wall + (travel if pulled - travel < rest else 0.0)
         have = min(rest, pulled)
         faults.append(
-            ("travel" if pulled < math.inf else "base", f"needs {need:.1f} mm from the middle and has {have:.1f} mm")
+            (
+                "travel" if pulled < math.inf else "base",
+                f"needs {need:.1f} mm from the middle and has {have:.1f} mm",
+            )
         )
         spine = wall
     v_out = rim_top + spine
@@ -145,23 +148,27 @@ def _trial(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name: st
     if float(low.max()) > v_out - wall:
         faults.append(("blocked", _what_blocks(s, u[first], u[last], v_out - wall)))
         low = np.minimum(low, v_out - wall)
-    travel = max(
-        travel, math.ceil(2.0 * (float((s.edge[span] - low).max()) + LIFT_PLAY_MM)) / 2.0
-    )
+    travel = max(travel, math.ceil(2.0 * (float((s.edge[span] - low).max()) + LIFT_PLAY_MM)) / 2.0)
     if v_out + travel > pulled + 1e-6 and not any(code == "travel" for code, _ in faults):
         faults.append(("travel", f"needs {v_out + travel:.1f} mm from the middle and has {pulled:.1f} mm"))
     widest = max(-float(u[first]), float(u[last]))
     if widest > across:
         faults.append(("width", f"reaches {widest:.1f} mm to the side and has {across:.1f} mm"))
-    for disc in _in_the_way(s, float(u[first]), float(u[last]), v_out + (travel if pulled < math.inf else 1e9)):
-        faults.append(("blocked", f"{disc.what} at ({disc.x_mm:.1f}, {disc.y_mm:.1f}) mm stands in its way out"))
+    for disc in _in_the_way(
+        s, float(u[first]), float(u[last]), v_out + (travel if pulled < math.inf else 1e9)
+    ):
+        faults.append(
+            ("blocked", f"{disc.what} at ({disc.x_mm:.1f}, {disc.y_mm:.1f}) mm stands in its way out")
+        )
 
     rim = profile.without_spikes(np.maximum(low, rim_at[span]), 3.0 * design.printer.nozzle_mm)
     covered = design.radiator.covered_diameter_mm
     seat = design.radiator.standoff_mm - covered / 2.0
     rim_z = design.radiator.standoff_mm + RIM_ABOVE_CENTRE * covered
     if seat < LEAST_FLOOR_MM:
-        faults.append(("low", f"leaves {seat:.2f} mm of plastic below the wire and needs {LEAST_FLOOR_MM:g} mm"))
+        faults.append(
+            ("low", f"leaves {seat:.2f} mm of plastic below the wire and needs {LEAST_FLOOR_MM:g} mm")
+        )
         return Trial(piece=None, spine_mm=spine, faults=tuple(faults))
     here = Columns(u=u[span])
     end = here.u.size - 1
@@ -175,11 +182,20 @@ def _trial(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name: st
         half = min(GRIP_LENGTH_MM, 0.6 * (u[last] - u[first])) / 2.0
         middle = (u[first] + u[last]) / 2.0
         band_high = v_out - GRIP_THICKNESS_MM
-        corners = [(middle - half, band_high), (middle + half, band_high), (middle + half, v_out), (middle - half, v_out)]
+        corners = [
+            (middle - half, band_high),
+            (middle + half, band_high),
+            (middle + half, v_out),
+            (middle - half, v_out),
+        ]
         grip = profile.Contour.polygon(s.frame.world(corners))
         layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + GRIP_MM, contour=grip))
     text, engraved = marks.piece_marks(
-        name, design.name, design.radiator.standoff_mm, (float(u[first]), float(u[last]), band_low, band_high), s.frame
+        name,
+        design.name,
+        design.radiator.standoff_mm,
+        (float(u[first]), float(u[last]), band_low, band_high),
+        s.frame,
     )
     piece = BlockPiece(
         name=name,
@@ -225,7 +241,9 @@ def _arms(
     faults, spans = [], []
     for word, a, b in (("before", i, peak), ("after", peak, j)):
         found = [
-            (a + p, a + q) for p, q in profile.runs(carried[a : b + 1]) if (q - p) * profile.STEP_MM >= least - 1e-9
+            (a + p, a + q)
+            for p, q in profile.runs(carried[a : b + 1])
+            if (q - p) * profile.STEP_MM >= least - 1e-9
         ]
         if not found:
             faults.append(
@@ -258,9 +276,7 @@ def _seat_margin_mm(design: Design) -> float:
     return max(0.3, design.radiator.covered_diameter_mm / 4.0)
 
 
-def _carries(
-    s: Side, humps: tuple[tuple[int, int], ...], span: slice, low: np.ndarray
-) -> tuple[Carry, ...]:
+def _carries(s: Side, humps: tuple[tuple[int, int], ...], span: slice, low: np.ndarray) -> tuple[Carry, ...]:
     out = []
     full = np.full(s.columns.u.size, np.inf)
     full[span] = low
@@ -275,6 +291,8 @@ def _carries(
                 ends = s.frame.world([(float(u[p]), float(s.wire[p])), (float(u[q]), float(s.wire[q]))])
                 run = np.column_stack([u[p : q + 1], s.wire[p : q + 1]])
                 length = float(np.linalg.norm(np.diff(run, axis=0), axis=1).sum())
+                if length < 0.5:
+                    continue  # a graze, not a support
                 out.append(Carry(lobe=number, side=word, start=ends[0], end=ends[1], length_mm=length))
     return tuple(out)
 

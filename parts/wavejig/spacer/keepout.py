@@ -89,11 +89,15 @@ def keepouts(design: Design, radiator: Radiator) -> tuple[Keepout, ...]:
     feed, height = design.feed, design.radiator.standoff_mm
     out = [
         Keepout(what="the solder at the pin terminal", **_at(feed.terminal_pin), radius_mm=SOLDER_FREE_MM),
-        Keepout(what="the solder at the ground terminal", **_at(feed.terminal_ground), radius_mm=SOLDER_FREE_MM),
+        Keepout(
+            what="the solder at the ground terminal", **_at(feed.terminal_ground), radius_mm=SOLDER_FREE_MM
+        ),
     ]
+    thick = 1.5 * design.radiator.covered_diameter_mm
     for joint in radiator.joints:
-        high = joint.at[2] > height / 2.0
-        free = SOLDER_FREE_MM if high else FOOT_FREE_MM
+        free = SOLDER_FREE_MM if joint.at[2] > height / 2.0 else FOOT_FREE_MM
+        if joint.kind == "lap" and abs(joint.at[2] - height) <= thick:
+            free += joint.length_mm / 2.0  # it lies along the wire, to both sides of its middle
         out.append(
             Keepout(
                 what=f"the {joint.kind} joint of {joint.between[0]} and {joint.between[1]}",

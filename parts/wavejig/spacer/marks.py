@@ -45,5 +45,7 @@ def piece_marks(
     tip = left + (wide - 0.3) * height
     chains.append(((tip, base), (tip, base + height)))
     wing = 0.3 * height
-    chains.append(((tip - wing, base + height - wing), (tip, base + height), (tip + wing, base + height - wing)))
+    chains.append(
+        ((tip - wing, base + height - wing), (tip, base + height), (tip + wing, base + height - wing))
+    )
     return text, tuple(Stroke(points=tuple(frame.world(chain))) for chain in chains)

@@ -22,7 +22,10 @@ _KEYS = {
     "travel": ("reflector.base", "Make the base wider, give that edge no lip, or use posts."),
     "base": ("reflector.base", "Make the base wider."),
     "width": ("reflector.base", "Make the base wider across the pull, or use posts."),
-    "blocked": ("spacer.style", 'Move the connector or hole, use a smaller connector or a tube, or style = "posts".'),
+    "blocked": (
+        "spacer.style",
+        'Move the connector or hole, use a smaller connector or a tube, or style = "posts".',
+    ),
     "carry": ("radiator.side", "Use longer sides, a smaller connector or a tube, or posts."),
     "low": ("radiator.standoff", "Use a larger standoff."),
     "bed": ("printer.bed", "Use a larger printer, or posts."),
@@ -38,7 +41,9 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
     sampled = wires(design, radiator)
     if design.spacer.style == "posts":
         posts, conflicts = plan_posts(design, radiator, sampled)
-        notes = ("Fix the wire in each post's channel with a drop of weatherproof adhesive.",) if posts else ()
+        notes = (
+            ("Fix the wire in each post's channel with a drop of weatherproof adhesive.",) if posts else ()
+        )
         return _spacer(design, (), posts, conflicts, notes)
     upright, faults = _halves(design, radiator, sampled, ACROSS_Y)
     if faults:
@@ -117,8 +122,13 @@ def extent_mm(piece: BlockPiece) -> tuple[float, float, float]:
 def fits_bed(design: Design, piece: BlockPiece) -> bool:
     """Whether a piece lies on the bed, one way or turned by 90 degrees."""
     x, y, z = extent_mm(piece)
-    bed = sorted((design.printer.bed_x_mm, design.printer.bed_y_mm))
-    return min(x, y) <= bed[0] and max(x, y) <= bed[1] and z <= design.printer.bed_z_mm
+    flat = fits_upright(design, x, y) or fits_upright(design, y, x)
+    return flat and z <= design.printer.bed_z_mm
+
+
+def fits_upright(design: Design, x_mm: float, y_mm: float) -> bool:
+    """Whether a part of this plan size lies on the bed without turning it."""
+    return x_mm <= design.printer.bed_x_mm and y_mm <= design.printer.bed_y_mm
 
 
 def _late_bolts(design: Design, pieces: tuple[BlockPiece, ...]) -> list[str]:
@@ -145,5 +155,7 @@ def _loose(pieces: tuple[BlockPiece, ...]) -> list[str]:
         across = piece.slack_across_mm
         if across > LOOSE_MM:
             free = "freely" if not np.isfinite(across) else f"by {across:.1f} mm"
-            out.append(f"{piece.name} lets the wire move {free} across the pull: centre it over the connector by eye.")
+            out.append(
+                f"{piece.name} lets the wire move {free} across the pull: centre it over the connector by eye."
+            )
     return out

@@ -22,7 +22,9 @@ MOST_GRIP = 4.0  # more thread than this holds no better
 OFF_WIRE_MM = 0.5  # the wire must cross the post this near its middle, or the channel breaks its edge
 
 
-def plan_posts(design: Design, radiator: Radiator, wires: Wires) -> tuple[tuple[Post, ...], tuple[Conflict, ...]]:
+def plan_posts(
+    design: Design, radiator: Radiator, wires: Wires
+) -> tuple[tuple[Post, ...], tuple[Conflict, ...]]:
     """A post at each of the design's places; what cannot be had becomes a conflict and that post is left out."""
     posts: list[Post] = []
     conflicts: list[Conflict] = []
@@ -44,7 +46,9 @@ def plan_posts(design: Design, radiator: Radiator, wires: Wires) -> tuple[tuple[
     return tuple(posts), tuple(conflicts)
 
 
-def _post(design: Design, wires: Wires, discs: tuple[Keepout, ...], number: int, at: Point2) -> Post | Conflict:
+def _post(
+    design: Design, wires: Wires, discs: tuple[Keepout, ...], number: int, at: Point2
+) -> Post | Conflict:
     r = design.radiator
     covered, height = r.covered_diameter_mm, r.standoff_mm
     width = covered + 2.0 * design.printer.clearance_mm
@@ -127,11 +131,7 @@ def _channel(wires: Wires, middle: Point2, reach_mm: float) -> tuple[Point2, ...
     """The stretch of wire that passes `middle`, as far as `reach_mm` from it."""
     for chain in wires.chords:
         away = np.hypot(*(chain - np.array(middle)).T)
-        hits = [
-            i
-            for i, (a, b) in enumerate(pairwise(chain))
-            if _distance(np.array(middle), a, b) < reach_mm
-        ]
+        hits = [i for i, (a, b) in enumerate(pairwise(chain)) if _distance(np.array(middle), a, b) < reach_mm]
         if hits and float(away[max(hits[0], 0) : hits[-1] + 2].min()) < reach_mm:
             part = chain[hits[0] : hits[-1] + 2]
             return tuple((float(x), float(y)) for x, y in part)

@@ -50,9 +50,7 @@ class Columns:
     @staticmethod
     def over(low_mm: float, high_mm: float) -> Columns:
         """Columns from `low_mm` to `high_mm`, on multiples of STEP_MM."""
-        return Columns(
-            u=np.arange(math.floor(low_mm / STEP_MM), math.ceil(high_mm / STEP_MM) + 1) * STEP_MM
-        )
+        return Columns(u=np.arange(math.floor(low_mm / STEP_MM), math.ceil(high_mm / STEP_MM) + 1) * STEP_MM)
 
     def index(self, u_mm: float) -> int:
         """Number of the column nearest to u, held to the grid."""
@@ -171,4 +169,7 @@ def _without_repeats(points: list[tuple[float, float]]) -> list[tuple[float, flo
 
 def _straight(a: tuple[float, float], b: tuple[float, float], c: tuple[float, float]) -> bool:
     ux, uy, vx, vy = b[0] - a[0], b[1] - a[1], c[0] - b[0], c[1] - b[1]
-    return abs(ux * vy - uy * vx) < 1e-9 * max(1.0, math.hypot(ux, uy) * math.hypot(vx, vy)) and ux * vx + uy * vy > 0
+    return (
+        abs(ux * vy - uy * vx) < 1e-9 * max(1.0, math.hypot(ux, uy) * math.hypot(vx, vy))
+        and ux * vx + uy * vy > 0
+    )

@@ -4,9 +4,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from functools import cache
+from itertools import pairwise
 from typing import Literal
-
-import numpy as np
 
 from wavejig.stock.errors import StockError, unknown_name, unknown_number
 from wavejig.stock.metals import Metal, sheet_metal
@@ -67,8 +66,12 @@ def minimum_inside_radius_mm(metal: Metal, thickness_mm: float) -> float:
     ]
     if metal.form != "sheet" or not listed:
         return metal.min_inside_radius_factor * thickness_mm
-    thicknesses_mm, factors = zip(*listed, strict=True)
-    return float(np.interp(thickness_mm, thicknesses_mm, factors)) * thickness_mm
+    factor = listed[0][1] if thickness_mm < listed[0][0] else listed[-1][1]
+    for (thin_mm, thin_factor), (thick_mm, thick_factor) in pairwise(listed):
+        if thin_mm <= thickness_mm <= thick_mm:
+            share = (thickness_mm - thin_mm) / (thick_mm - thin_mm)
+            factor = thin_factor + share * (thick_factor - thin_factor)
+    return factor * thickness_mm
 
 
 @cache
