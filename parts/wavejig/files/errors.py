@@ -6,7 +6,7 @@ from pathlib import Path
 
 
 class FileCheckError(ValueError):
-    """A written file read back otherwise than it should; names the file, what was found, what was expected."""
+    """A written file read back otherwise than it should: which file, what was found, what was expected."""
 
     def __init__(self, path: Path, found: str, expected: str) -> None:
         super().__init__(f"{path.name}: found {found}, expected {expected}. Path: {path}")

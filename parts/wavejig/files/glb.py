@@ -1,8 +1,8 @@
 """GLB: coloured named meshes in one file to look at, for browsers and viewers.
 
-Source: glTF 2.0 Specification, Khronos Group 2021 (ISO/IEC 12113:2022): metres, y up, linear base colours,
-12-byte header, then a JSON and a binary chunk, each padded to four bytes. Our mm become metres, and our +z (the
-main beam) becomes +y: (x, y, z) -> (x, z, -y).
+Source: glTF 2.0 Specification, Khronos Group 2021 (ISO/IEC 12113:2022, from memory): metres, y up, linear base
+colours, 12-byte header, then a JSON and a binary chunk, each padded to four bytes. Our mm become metres, and our
++z (the main beam) becomes +y: (x, y, z) -> (x, z, -y).
 """
 
 from __future__ import annotations
@@ -50,9 +50,7 @@ def write_glb(pieces: Sequence[ColouredMesh], path: Path) -> None:
     def add(array: np.ndarray, target: int, accessor: dict[str, Any]) -> int:
         nonlocal offset
         chunks.append(array.tobytes())
-        views.append(
-            {"buffer": 0, "byteOffset": offset, "byteLength": len(chunks[-1]), "target": target}
-        )
+        views.append({"buffer": 0, "byteOffset": offset, "byteLength": len(chunks[-1]), "target": target})
         accessors.append({"bufferView": len(views) - 1, **accessor})
         offset += len(chunks[-1])
         return len(accessors) - 1
@@ -62,7 +60,7 @@ def write_glb(pieces: Sequence[ColouredMesh], path: Path) -> None:
         points = (piece.mesh.vertices @ _TO_FILE.T / 1000.0 + 0.0).astype("<f4")
         corners = piece.mesh.faces.astype("<u4").ravel()
         position = {"componentType": _FLOAT, "count": len(points), "type": "VEC3"}
-        # the specification wants the box of the numbers as stored; a 32-bit float prints exactly as a 64-bit one
+        # the box of the numbers as stored: a 32-bit float is exact as the 64-bit one that gets printed
         position |= {"min": points.min(axis=0).tolist(), "max": points.max(axis=0).tolist()}
         index = {"componentType": _UINT32, "count": len(corners), "type": "SCALAR"}
         primitive = {
@@ -99,8 +97,8 @@ def check_glb(
 ) -> None:
     """Raise FileCheckError unless the file holds just the expected (name, figures in mm, colour) pieces.
 
-    Closed, volume within chord_error_mm times the surface, box within chord_error_mm once turned back to mm and
-    z up, colour within the reader's 1/255. Second reader: trimesh.
+    Closed, volume within chord_error_mm times the surface, box within chord_error_mm once turned back to mm
+    and z up, colour within the reader's 1/255. Second reader: trimesh.
     """
     head = path.read_bytes()[:12]
     size = path.stat().st_size

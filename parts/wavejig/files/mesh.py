@@ -1,7 +1,8 @@
 """Closed triangle meshes, and the tessellation of solids into them. Lengths in mm.
 
-Vocabulary: *chord error* = furthest distance between a curved face and its flat triangles; *watertight* = every
-edge is run through exactly once in each direction, so the triangles bound a volume and agree on its outside.
+Vocabulary: *chord error* = furthest distance between a curved face and its flat triangles; *watertight* =
+every edge is run through exactly once in each direction, so the triangles bound a volume and agree on its
+outside.
 """
 
 from __future__ import annotations
@@ -10,12 +11,12 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
+from OCP.Bnd import Bnd_Box
 from OCP.BRep import BRep_Tool
 from OCP.BRepBndLib import BRepBndLib
 from OCP.BRepBuilderAPI import BRepBuilderAPI_Copy
 from OCP.BRepGProp import BRepGProp
 from OCP.BRepMesh import BRepMesh_IncrementalMesh
-from OCP.Bnd import Bnd_Box
 from OCP.GProp import GProp_GProps
 from OCP.TopAbs import TopAbs_FACE, TopAbs_REVERSED
 from OCP.TopExp import TopExp_Explorer
@@ -26,8 +27,8 @@ from wavejig.files.errors import MeshError
 
 CHORD_ERROR_MM = 0.02  # common practice, no source: a tenth of what a desktop printer holds
 ANGLE_DEG = 12.0  # common practice, no source: thin wires stay round to the eye
-# Corners nearer than this in x, y and z are one corner. It is below the step of a 32-bit float at 200 mm, which
-# is what an STL file can hold, and above the kernel's own noise.
+# Corners nearer than this in x, y and z are one corner. It is below the step of a 32-bit float at 200 mm, the
+# best an STL file can hold, and above the kernel's own noise.
 WELD_MM = 1e-5
 
 
@@ -90,7 +91,8 @@ class Mesh:
         """(m, 3) float64 outward unit normals; zero for a triangle without area."""
         cross = self._cross()
         length = np.linalg.norm(cross, axis=1, keepdims=True)
-        return np.divide(cross, length, out=np.zeros_like(cross), where=length > 0.0)
+        normals: np.ndarray = np.divide(cross, length, out=np.zeros_like(cross), where=length > 0.0)
+        return normals
 
     @property
     def bounds_mm(self) -> tuple[float, float, float, float, float, float]:
@@ -108,10 +110,10 @@ def tessellate(
 ) -> Mesh:
     """Triangles of a solid, within `chord_error_mm` of its faces and `angle_deg` from facet to facet.
 
-    shape: cadquery Shape holding closed solids; it is left untouched, and an earlier tessellation of it has no
-    say (the kernel would keep a finer one). name: the piece, used in messages.
-    Raises MeshError when a face cannot be meshed or the result does not close, ValueError for a chord error or
-    angle that is not positive.
+    shape: cadquery Shape holding closed solids; it is left untouched, and an earlier tessellation of it has
+    no say (the kernel would keep a finer one). name: the piece, used in messages and files.
+    Raises MeshError when a face cannot be meshed or the result does not close, ValueError for a chord error
+    or angle that is not positive.
     """
     if not (chord_error_mm > 0.0 and 0.0 < angle_deg <= 90.0):
         raise ValueError(
@@ -166,8 +168,8 @@ def _face_triangles(name: str, face: Any) -> tuple[np.ndarray, np.ndarray]:
 def _weld(vertices: np.ndarray, faces: np.ndarray) -> dict[str, np.ndarray]:
     """Merge corners that coincide, drop triangles this closes and corners no triangle uses.
 
-    Along each axis, sorted values with no gap above WELD_MM are one value: unlike rounding, this parts no pair
-    that lies across a rounding step.
+    Along each axis, sorted values with no gap above WELD_MM are one value: unlike rounding, this parts no
+    pair that lies across a rounding step.
     """
     keys = np.empty(vertices.shape, dtype=np.int64)
     for axis in range(3):

@@ -2,8 +2,8 @@
 
 The kernel keeps state across the files of one process: settings (the unit among them), which are set for the
 call and put back, and a counter of assembly links, whose numbers are rewritten from 1 in each file. Its own
-colour writer goes by memory address, so colours are attached here, part by part. The header carries no clock and
-no folder. So the same solids give the same bytes.
+colour writer goes by memory address, so colours are attached here, part by part. The header carries no clock
+and no folder. So the same solids give the same bytes.
 """
 
 from __future__ import annotations
@@ -89,7 +89,7 @@ def write_step(solids: Sequence[NamedSolid], path: Path, title: str) -> None:
 
 @contextmanager
 def kernel_settings() -> Iterator[None]:
-    """Our settings of the kernel's STEP translator, and its silence, for the time of a `with`; then as before."""
+    """Our settings of the kernel's STEP translator, and its silence, during a `with`; then as before."""
     STEPControl_Controller.Init_s()
     before = {key: Interface_Static.CVal_s(key) for key in _SETTINGS}
     messenger = Message.DefaultMessenger_s()
@@ -119,7 +119,7 @@ def encoded(name: str) -> str:
 
 
 def _document(names: Sequence[str], shapes: Sequence[Any], title: str) -> tuple[Any, list[Any]]:
-    """A kernel document of our own, in no application's list, one label for each shape; and the shapes in it."""
+    """A kernel document in no application's list, with a label for each shape; and the shapes in it."""
     document = TDocStd_Document(TCollection_ExtendedString("BinXCAF"))
     XCAFDoc_DocumentTool.SetLengthUnit_s(document, 0.001)
     tool = XCAFDoc_DocumentTool.ShapeTool_s(document.Main())
@@ -164,7 +164,9 @@ def _placed_copy(shape: Any) -> Any:
     """
     place = shape.Location()
     bare = BRepBuilderAPI_Copy(shape.Located(TopLoc_Location()), True, False).Shape()
-    return bare if place.IsIdentity() else BRepBuilderAPI_Transform(bare, place.Transformation(), True).Shape()
+    return (
+        bare if place.IsIdentity() else BRepBuilderAPI_Transform(bare, place.Transformation(), True).Shape()
+    )
 
 
 def _set_name(label: Any, name: str) -> None:

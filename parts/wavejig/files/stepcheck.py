@@ -132,7 +132,8 @@ def _colour(document: Any, label: Any) -> Colour | None:
     colour = Quantity_Color()
     for kind in (XCAFDoc_ColorGen, XCAFDoc_ColorSurf):
         if colours.GetColor_s(target, kind, colour):
-            return tuple(colour.Values(Quantity_TOC_sRGB))  # type: ignore[return-value]
+            red, green, blue = colour.Values(Quantity_TOC_sRGB)
+            return red, green, blue
     return None
 
 

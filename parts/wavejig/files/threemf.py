@@ -1,7 +1,7 @@
 """3MF: several named closed meshes with their unit, for slicers.
 
-Source: 3MF Core Specification 1.x, 3MF Consortium: package parts, namespace, model, object, build. The archive
-carries a fixed date and order, so that the same meshes give the same bytes.
+Source: 3MF Core Specification 1.x, 3MF Consortium (from memory): package parts, namespace, model, object,
+build. The archive carries a fixed date and order, so that the same meshes give the same bytes.
 """
 
 from __future__ import annotations
@@ -93,6 +93,6 @@ def _object_xml(number: int, name: str, mesh: Mesh) -> str:
     faces = mesh.faces.ravel().tolist()
     triangles = ('<triangle v1="%d" v2="%d" v3="%d"/>\n' * len(mesh.faces)) % tuple(faces)
     return (
-        f'<object id="{number}" type="model" name={quoteattr(name)}>\n<mesh>\n<vertices>\n{vertices}</vertices>\n'
-        f"<triangles>\n{triangles}</triangles>\n</mesh>\n</object>\n"
+        f'<object id="{number}" type="model" name={quoteattr(name)}>\n<mesh>\n'
+        f"<vertices>\n{vertices}</vertices>\n<triangles>\n{triangles}</triangles>\n</mesh>\n</object>\n"
     )

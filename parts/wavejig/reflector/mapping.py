@@ -135,11 +135,11 @@ def _excess_mm(lip: TrayLip, w: np.ndarray, s: np.ndarray) -> np.ndarray:
     """How far beyond the lip's end the points (w, s) lie; 0 or less on the lip."""
     reaches = []
     for end in (lip.left, lip.right):
-        eared = np.full_like(w, end.half_mm)
+        reach = np.full_like(w, end.half_mm)
         if end.ear_mm is not None:
-            # within a hair below the ear too, so that its own edge belongs to it
-            eared = np.where(w >= end.ear_mm - _ON_SHEET_MM, end.ear_base_mm + end.ear_slope * w, eared)
-        reaches.append(eared)
+            # the ear's root is rounded, by up to half its height above the bend: that is sheet too
+            reach = np.where(w >= end.ear_mm / 2.0, end.ear_base_mm + end.ear_slope * w, reach)
+        reaches.append(reach)
     excess: np.ndarray = np.maximum(-s - reaches[0], s - reaches[1])
     return excess
 

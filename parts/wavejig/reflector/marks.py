@@ -19,6 +19,9 @@ from wavejig.reflector.outline import inside
 MARGIN_MM = 1.5
 """Least distance of a mark's box from anything cut or bent, and from other marks."""
 
+_TOUCH_MM = 1e-6
+"""A box whose margin just touches the cut edge is clear of it."""
+
 _HEIGHTS_MM = (4.0, 3.0, 2.5, 2.0)
 _READING_DEG = {"y+": 0.0, "x-": 90.0, "y-": 180.0, "x+": -90.0}
 """How text is turned so that it reads upright when that edge hangs uppermost."""
@@ -114,7 +117,7 @@ def _free_spot(
         free &= np.any((spots + half < a) | (spots - half > b), axis=1)
     spots = spots[free]
     order = np.argsort(np.hypot(*(spots - panel.wish).T), kind="stable")
-    rim = _rim(half)
+    rim = _rim(half - _TOUCH_MM)
     for spot in spots[order]:
         if inside(spot + rim, loop).all():
             found: np.ndarray = spot

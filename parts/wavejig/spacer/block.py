@@ -15,14 +15,17 @@ from dataclasses import dataclass
 import numpy as np
 
 from wavejig.design.model import Design
-from wavejig.spacer import keepout, marks, profile
-from wavejig.spacer.keepout import Keepout, Wires
+from wavejig.geometry.plane import Contour
+from wavejig.spacer import marks, profile
+from wavejig.spacer.keepout import limits_mm
 from wavejig.spacer.model import BlockPiece, Carry, Layer
-from wavejig.spacer.profile import Columns, Frame
+from wavejig.spacer.profile import STEP_MM, Columns
+from wavejig.spacer.side import Hump, Side, highest_block, in_the_way, slack_across_mm, slack_along_mm
+
+Fault = tuple[str, str]  # what fails (a key of `plan`'s remedies), and the numbers
 
 # Proportions: common practice, no source.
 ARM_DEPTHS = (0.5, 0.44, 0.38, 0.32, 0.26, 0.2, 0.15, 0.1)  # share of a hump's height arms reach down
-HUMP_FLOOR = 0.35  # a hump is wire that rises above this share of the highest
 CARRY_WIDTH_MM = (4.0, 12.0)  # least and greatest reach of an arm beyond the wire it meets first
 ARM_GAP_MM = 4.0  # arms nearer to each other than this become one
 SPINE_MM = 12.0  # wanted width: room for a grip and for lettering
@@ -30,73 +33,39 @@ BRACE_MM = 6.0  # least width of the spine below the wire; above it the rim may 
 LIFT_PLAY_MM = 0.5  # beyond the wire before the piece is lifted
 RIM_ABOVE_CENTRE = 0.3  # rim's top above the wire's centre, in diameters: half a wire to clip down on
 LEAST_FLOOR_MM = 1.2  # plastic below the wire
-GRIP_MM = 10.0  # how far the grip stands up over the rim
-GRIP_THICKNESS_MM = 4.0
-GRIP_LENGTH_MM = 24.0
+GRIP_MM = (24.0, 4.0, 10.0)  # length, thickness, height over the rim
+_HALF_MM = 0.5  # travels are told, and spines made, in these steps
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Trial:
-    """A piece with arms of one depth, and what is wrong with it (code -> numbers)."""
+    """A piece with arms of one depth, and what is wrong with it."""
 
     piece: BlockPiece | None
     spine_mm: float
-    faults: tuple[tuple[str, str], ...]
+    faults: tuple[Fault, ...]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
-class Side:
-    """What a piece of one withdrawal direction must hold and avoid, as curves over its columns."""
+class _Plan:
+    """Curves of one piece over the columns `span`: least v of its floor and of its rim, and its outer v."""
 
-    frame: Frame
-    columns: Columns
-    wire: np.ndarray  # centreline of the in-plane main wire, outermost
-    edge: np.ndarray  # outermost edge of all wire, clearance included
-    bare_edge: np.ndarray  # the same without clearance
-    blocked: np.ndarray  # outermost edge of keep-outs inside the lobes
-    outer: tuple[Keepout, ...]  # keep-outs wholly beyond the wire
-    humps: tuple[tuple[int, int], ...]
-    base_mm: float
-    peak_mm: float
+    span: slice
+    low: np.ndarray
+    rim: np.ndarray
+    rim_top: float  # highest v any rim must stay beyond
+    spine: float
+    travel: float
+    pulled: float  # greatest v while it is pulled
 
-
-def side(design: Design, wires: Wires, discs: tuple[Keepout, ...], frame: Frame) -> Side:
-    """Look at the radiator along a withdrawal direction."""
-    uv = frame.local(wires.points[:, :2])
-    chords = [frame.local(chain) for chain in wires.chords]
-    reach = 30.0
-    columns = Columns.over(float(uv[:, 0].min()) - reach, float(uv[:, 0].max()) + reach)
-    wire = np.max([columns.line(chain) for chain in chords], axis=0)
-    there = np.isfinite(wire)
-    peak, base = float(wire[there].max()), max(0.0, float(wire[there].min()))
-    clearance = design.printer.clearance_mm
-    edge = profile.widened(columns.envelope(uv, wires.radius_mm + clearance))
-    bare = columns.envelope(uv, wires.radius_mm)
-    off = ~wires.flat
-    blocked = columns.envelope(uv[off], wires.radius_mm[off] + clearance + keepout.HARDWARE_PLAY_MM)
-    centres = frame.local(np.array([[d.x_mm, d.y_mm] for d in discs]))
-    inner = np.array([c[1] - d.radius_mm < peak for c, d in zip(centres, discs, strict=True)])
-    radii = np.array([d.radius_mm for d in discs])
-    blocked = profile.widened(np.maximum(blocked, columns.envelope(centres[inner], radii[inner])))
-    floor = base + HUMP_FLOOR * (peak - base)
-    humps = tuple(r for r in profile.runs(wire >= floor) if (r[1] - r[0]) * profile.STEP_MM >= 3.0)
-    return Side(
-        frame=frame,
-        columns=columns,
-        wire=wire,
-        edge=edge,
-        bare_edge=bare,
-        blocked=blocked,
-        outer=tuple(d for d, is_inner in zip(discs, inner, strict=True) if not is_inner),
-        humps=humps,
-        base_mm=base,
-        peak_mm=peak,
-    )
+    @property
+    def v_out(self) -> float:
+        return self.rim_top + self.spine
 
 
-def make_piece(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name: str) -> Trial:
+def make_piece(design: Design, s: Side, humps: tuple[Hump, ...], name: str) -> Trial:
     """The best piece that carries these humps: the deepest arms that leave a full spine, else the widest."""
-    best: Trial | None = None
+    best = None
     for depth in ARM_DEPTHS:
         trial = _trial(design, s, humps, name, depth)
         if not trial.faults and trial.spine_mm >= SPINE_MM - 1e-9:
@@ -107,225 +76,187 @@ def make_piece(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name
     return best
 
 
-def _rank(trial: Trial) -> tuple[float, float]:
-    return (-float(len(trial.faults)), trial.spine_mm)
-
-
-def _trial(design: Design, s: Side, humps: tuple[tuple[int, int], ...], name: str, depth: float) -> Trial:
-    columns, u = s.columns, s.columns.u
-    wall = max(2.0, 5.0 * design.printer.nozzle_mm)
-    faults: list[tuple[str, str]] = []
-
-    arm = np.full(u.size, np.inf)  # least v of the arms; inf where there is none
-    for number, hump in enumerate(humps):
-        faults += _arms(design, s, hump, number, depth, wall, arm)
-    reached = np.flatnonzero(np.isfinite(arm))
-    if not reached.size:
-        return Trial(piece=None, spine_mm=0.0, faults=tuple(faults))
-    first, last = int(reached[0]), int(reached[-1])
-    span = slice(first, last + 1)
-    armed = np.isfinite(arm)
-
-    # the rim keeps twice the clearance from wire no arm carries: bent corners, wire between the arms
-    rim_at = np.where(armed, s.edge, s.edge + design.printer.clearance_mm)
-    rim_top = float(rim_at[span].max())
-    travel = math.ceil(2.0 * (float((s.edge - np.minimum(arm, rim_top))[span].max()) + LIFT_PLAY_MM)) / 2.0
-    rest, pulled, across = keepout.limits_mm(design, s.frame)
-    spine = math.floor(2.0 * min(SPINE_MM, rest - rim_top, pulled - travel - rim_top)) / 2.0
-    if spine < wall:
-        need = rim_top + wall + (travel if pulled - travel < rest else 0.0)
-        have = min(rest, pulled)
-        faults.append(
-            (
-                "travel" if pulled < math.inf else "base",
-                f"needs {need:.1f} mm from the middle and has {have:.1f} mm",
-            )
-        )
-        spine = wall
-    v_out = rim_top + spine
-    low = np.maximum(np.where(armed, arm, min(rim_top, v_out - BRACE_MM)), s.blocked)
-    low = profile.without_spikes(low[span], wall)
-    if float(low.max()) > v_out - wall:
-        faults.append(("blocked", _what_blocks(s, u[first], u[last], v_out - wall)))
-        low = np.minimum(low, v_out - wall)
-    travel = max(travel, math.ceil(2.0 * (float((s.edge[span] - low).max()) + LIFT_PLAY_MM)) / 2.0)
-    if v_out + travel > pulled + 1e-6 and not any(code == "travel" for code, _ in faults):
-        faults.append(("travel", f"needs {v_out + travel:.1f} mm from the middle and has {pulled:.1f} mm"))
-    widest = max(-float(u[first]), float(u[last]))
-    if widest > across:
-        faults.append(("width", f"reaches {widest:.1f} mm to the side and has {across:.1f} mm"))
-    for disc in _in_the_way(
-        s, float(u[first]), float(u[last]), v_out + (travel if pulled < math.inf else 1e9)
-    ):
-        faults.append(
-            ("blocked", f"{disc.what} at ({disc.x_mm:.1f}, {disc.y_mm:.1f}) mm stands in its way out")
-        )
-
-    rim = profile.without_spikes(np.maximum(low, rim_at[span]), 3.0 * design.printer.nozzle_mm)
-    covered = design.radiator.covered_diameter_mm
-    seat = design.radiator.standoff_mm - covered / 2.0
-    rim_z = design.radiator.standoff_mm + RIM_ABOVE_CENTRE * covered
-    if seat < LEAST_FLOOR_MM:
-        faults.append(
-            ("low", f"leaves {seat:.2f} mm of plastic below the wire and needs {LEAST_FLOOR_MM:g} mm")
-        )
-        return Trial(piece=None, spine_mm=spine, faults=tuple(faults))
-    here = Columns(u=u[span])
-    end = here.u.size - 1
-    layers = [
-        Layer(bottom_mm=0.0, top_mm=seat, contour=profile.above(here, low, 0, end, v_out, s.frame)),
-        Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, rim, 0, end, v_out, s.frame)),
-    ]
-    band_low = rim_top
-    band_high = v_out
-    if spine >= GRIP_THICKNESS_MM + marks.LEAST_BAND_MM:
-        half = min(GRIP_LENGTH_MM, 0.6 * (u[last] - u[first])) / 2.0
-        middle = (u[first] + u[last]) / 2.0
-        band_high = v_out - GRIP_THICKNESS_MM
-        corners = [
-            (middle - half, band_high),
-            (middle + half, band_high),
-            (middle + half, v_out),
-            (middle - half, v_out),
-        ]
-        grip = profile.Contour.polygon(s.frame.world(corners))
-        layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + GRIP_MM, contour=grip))
-    text, engraved = marks.piece_marks(
-        name,
-        design.name,
-        design.radiator.standoff_mm,
-        (float(u[first]), float(u[last]), band_low, band_high),
-        s.frame,
-    )
-    piece = BlockPiece(
-        name=name,
-        withdrawal=s.frame.direction,
-        travel_mm=travel,
-        available_mm=pulled - v_out,
-        layers=tuple(layers),
-        carries=_carries(s, humps, span, low),
-        lobes=len(humps),
-        slack_along_mm=_slack_along(s, span, rim),
-        slack_across_mm=_slack_across(s, span, rim),
-        text=text,
-        marks=engraved,
-        marks_z_mm=rim_z,
-        marks_depth_mm=min(marks.DEPTH_MM, (rim_z - seat) / 2.0),
-        mark_width_mm=max(marks.LINE_MM, 1.25 * design.printer.nozzle_mm),
-    )
-    return Trial(piece=piece, spine_mm=spine, faults=tuple(faults))
-
-
-def _arms(
-    design: Design,
-    s: Side,
-    hump: tuple[int, int],
-    number: int,
-    depth: float,
-    wall: float,
-    arm: np.ndarray,
-) -> list[tuple[str, str]]:
-    """Cut the two arms of one hump into the curve `arm`; what is missing comes back as faults."""
-    i, j = hump
-    heights = s.wire[i : j + 1]
-    top = float(heights.max())
-    at_top = np.flatnonzero(heights >= top - 1e-6)
-    peak = i + int(at_top[at_top.size // 2])
-    low = profile.without_spikes(np.maximum(top - depth * (top - s.base_mm), s.blocked), wall)
-    carried = np.zeros(s.columns.u.size, dtype=bool)
-    carried[i : j + 1] = heights - _seat_margin_mm(design) >= low[i : j + 1]
-    least = least_carry_mm(design)
-    want = float(np.clip(0.35 * (j - i) * profile.STEP_MM / 2.0, *CARRY_WIDTH_MM))
-    cheek = float(s.edge[peak] - s.wire[peak]) + wall
-    u = s.columns.u
-    faults, spans = [], []
-    for word, a, b in (("before", i, peak), ("after", peak, j)):
-        found = [
-            (a + p, a + q)
-            for p, q in profile.runs(carried[a : b + 1])
-            if (q - p) * profile.STEP_MM >= least - 1e-9
-        ]
-        if not found:
-            faults.append(
-                ("carry", f"carries less than {least:.1f} mm of wire {word} the peak of hump {number + 1}")
-            )
-            continue
-        wide = [r for r in found if (r[1] - r[0]) * profile.STEP_MM >= want] or [
-            max(found, key=lambda r: r[1] - r[0])
-        ]
-        p, q = wide[0] if word == "before" else wide[-1]
-        if word == "before":
-            spans.append((u[p] - cheek, min(u[p] + want, u[q])))
-        else:
-            spans.append((max(u[q] - want, u[p]), u[q] + cheek))
-    if len(spans) == 2 and spans[1][0] - spans[0][1] < ARM_GAP_MM:
-        spans = [(spans[0][0], spans[1][1])]
-    for start, end in spans:
-        a, b = s.columns.index(start), s.columns.index(end)
-        arm[a : b + 1] = np.minimum(arm[a : b + 1], low[a : b + 1])
-    return faults
-
-
 def least_carry_mm(design: Design) -> float:
     """Shortest stretch of wire, across the pull, that counts as a support."""
     return max(1.0, design.radiator.covered_diameter_mm)
 
 
-def _seat_margin_mm(design: Design) -> float:
-    """Wire's centreline must lie this far inside an arm's end to rest on it."""
-    return max(0.3, design.radiator.covered_diameter_mm / 4.0)
+def _rank(trial: Trial) -> tuple[float, float]:
+    return (-float(len(trial.faults)), trial.spine_mm)
 
 
-def _carries(s: Side, humps: tuple[tuple[int, int], ...], span: slice, low: np.ndarray) -> tuple[Carry, ...]:
-    out = []
-    full = np.full(s.columns.u.size, np.inf)
-    full[span] = low
+def _trial(design: Design, s: Side, humps: tuple[Hump, ...], name: str, depth: float) -> Trial:
+    faults: list[Fault] = []
+    arm = np.full(s.columns.u.size, np.inf)
+    for number, hump in enumerate(humps, start=1):
+        faults += _cut_arms(design, s, hump, number, depth, arm)
+    if not np.any(np.isfinite(arm)):
+        return Trial(piece=None, spine_mm=0.0, faults=(*faults, ("carry", "finds no wire to carry")))
+    p, more = _lay_out(design, s, arm)
+    faults += more
+    r = design.radiator
+    seat = r.standoff_mm - r.covered_diameter_mm / 2.0
+    if seat < LEAST_FLOOR_MM:
+        message = f"leaves {seat:.2f} mm of plastic below the wire and needs {LEAST_FLOOR_MM:g} mm"
+        return Trial(piece=None, spine_mm=p.spine, faults=(*faults, ("low", message)))
+    piece = _draw(design, s, humps, name, p, seat)
+    return Trial(piece=piece, spine_mm=p.spine, faults=tuple(faults))
+
+
+def _cut_arms(design: Design, s: Side, hump: Hump, number: int, depth: float, arm: np.ndarray) -> list[Fault]:
+    """Write the least v of one hump's two arms into `arm`; what is missing comes back as faults."""
+    wall = _wall_mm(design)
+    top = float(s.wire[hump.peak])
+    low = profile.without_spikes(np.maximum(top - depth * (top - s.base_mm), s.blocked), wall)
+    # the centreline must lie a little inside an arm's end for the wire to rest on it
+    margin = max(0.3, design.radiator.covered_diameter_mm / 4.0)
+    carried = s.wire - margin >= low
+    least = least_carry_mm(design)
+    want = float(np.clip(0.35 * (hump.last - hump.first) * STEP_MM / 2.0, *CARRY_WIDTH_MM))
+    # the rim's cheek stands beside the wire where the arm meets it first
+    cheek = float(s.edge[hump.peak] - s.wire[hump.peak]) + wall
     u = s.columns.u
-    for number, (i, j) in enumerate(humps):
-        heights = s.wire[i : j + 1]
-        at_top = np.flatnonzero(heights >= float(heights.max()) - 1e-6)
-        peak = i + int(at_top[at_top.size // 2])
-        for word, a, b in (("before", i, peak), ("after", peak, j)):
-            for p, q in profile.runs(s.wire[a : b + 1] >= full[a : b + 1]):
-                p, q = a + p, a + q
-                ends = s.frame.world([(float(u[p]), float(s.wire[p])), (float(u[q]), float(s.wire[q]))])
-                run = np.column_stack([u[p : q + 1], s.wire[p : q + 1]])
+    faults: list[Fault] = []
+    spans: list[tuple[float, float]] = []
+    for word, a, b in (("before", hump.first, hump.peak), ("after", hump.peak, hump.last)):
+        found = [
+            (a + i, a + j) for i, j in profile.runs(carried[a : b + 1]) if (j - i) * STEP_MM >= least - 1e-9
+        ]
+        if not found:
+            faults.append(
+                ("carry", f"carries less than {least:.1f} mm of wire {word} the peak of its lobe {number}")
+            )
+            continue
+        wide = [r for r in found if (r[1] - r[0]) * STEP_MM >= want]
+        wide = wide or [max(found, key=lambda r: r[1] - r[0])]
+        if word == "before":
+            i, j = wide[0]
+            spans.append((u[i] - cheek, min(u[i] + want, u[j])))
+        else:
+            i, j = wide[-1]
+            spans.append((max(u[j] - want, u[i]), u[j] + cheek))
+    if len(spans) == 2 and spans[1][0] - spans[0][1] < ARM_GAP_MM:
+        spans = [(spans[0][0], spans[1][1])]
+    for start, end in spans:
+        cut = slice(s.columns.index(start), s.columns.index(end) + 1)
+        arm[cut] = np.minimum(arm[cut], low[cut])
+    return faults
+
+
+def _lay_out(design: Design, s: Side, arm: np.ndarray) -> tuple[_Plan, list[Fault]]:
+    """Spine, travel and rim for given arms (inf where there is none)."""
+    faults: list[Fault] = []
+    u, wall = s.columns.u, _wall_mm(design)
+    armed = np.isfinite(arm)
+    reached = np.flatnonzero(armed)
+    span = slice(int(reached[0]), int(reached[-1]) + 1)
+    # twice the clearance from wire no arm carries: bent corners, wire between the arms
+    rim_at = np.where(armed, s.edge, s.edge + design.printer.clearance_mm)[span]
+    rim_top = float(rim_at.max())
+    travel = _travel_mm(s.edge[span], np.minimum(arm[span], rim_top))
+    rest, pulled, across = limits_mm(design, s.frame)
+    spine = math.floor(min(SPINE_MM, rest - rim_top, pulled - travel - rim_top) / _HALF_MM) * _HALF_MM
+    if spine < wall:
+        lipped = pulled < math.inf
+        need = rim_top + wall + (travel if lipped else 0.0)
+        faults.append(
+            (
+                "travel" if lipped else "base",
+                f"needs {need:.1f} mm from the sheet's middle to "
+                f"{'the fold, to be pulled out,' if lipped else 'its edge'} and has {rest:.1f} mm",
+            )
+        )
+        spine = wall
+    v_out = rim_top + spine
+    low = np.where(armed, arm, min(rim_top, v_out - BRACE_MM))[span]
+    low = profile.without_spikes(np.maximum(low, s.blocked[span]), wall)
+    if float(low.max()) > v_out - wall:
+        x, y = highest_block(s, span)
+        faults.append(
+            ("blocked", f"is cut in two by solder, hardware or bent wire that reaches ({x:.1f}, {y:.1f}) mm")
+        )
+        low = np.minimum(low, v_out - wall)
+    travel = max(travel, _travel_mm(s.edge[span], low))
+    if v_out + travel > pulled + 1e-6 and not faults:
+        faults.append(
+            ("travel", f"needs {v_out + travel:.1f} mm from the sheet's middle and has {pulled:.1f} mm")
+        )
+    widest = max(-float(u[span][0]), float(u[span][-1]))
+    if widest > across:
+        faults.append(("width", f"reaches {widest:.1f} mm across and the flat base {across:.1f} mm"))
+    way = v_out + travel if pulled < math.inf else math.inf
+    for disc in in_the_way(s, float(u[span][0]), float(u[span][-1]), way):
+        place = f"({disc.x_mm:.1f}, {disc.y_mm:.1f}) mm"
+        faults.append(("blocked", f"meets {disc.what} at {place} on its way out"))
+    rim = profile.without_spikes(np.maximum(low, rim_at), 3.0 * design.printer.nozzle_mm)
+    return (
+        _Plan(span=span, low=low, rim=rim, rim_top=rim_top, spine=spine, travel=travel, pulled=pulled),
+        faults,
+    )
+
+
+def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan, seat: float) -> BlockPiece:
+    """The piece itself: layers, lettering, and what it does to the wire."""
+    r = design.radiator
+    here = Columns(u=s.columns.u[p.span])
+    start, end = float(here.u[0]), float(here.u[-1])
+    rim_z = r.standoff_mm + RIM_ABOVE_CENTRE * r.covered_diameter_mm
+    layers = [
+        Layer(bottom_mm=0.0, top_mm=seat, contour=profile.above(here, p.low, p.v_out, s.frame)),
+        Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, p.rim, p.v_out, s.frame)),
+    ]
+    length, thick, rise = GRIP_MM
+    band_top = p.v_out
+    if p.spine >= thick + marks.LEAST_BAND_MM:
+        band_top = p.v_out - thick
+        half, middle = min(length, 0.6 * (end - start)) / 2.0, (start + end) / 2.0
+        corners = [(middle - half, band_top), (middle + half, band_top)]
+        corners += [(middle + half, p.v_out), (middle - half, p.v_out)]
+        grip = Contour.polygon(s.frame.world(corners))
+        layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + rise, contour=grip))
+    band = (start, end, p.rim_top, band_top)
+    text, strokes = marks.piece_marks(name, design.name, r.standoff_mm, band, s.frame)
+    return BlockPiece(
+        name=name,
+        withdrawal=s.frame.direction,
+        travel_mm=p.travel,
+        available_mm=p.pulled - p.v_out,
+        layers=tuple(layers),
+        carries=_carries(s, humps, p),
+        lobes=len(humps),
+        slack_along_mm=slack_along_mm(s, p.span, p.rim),
+        slack_across_mm=slack_across_mm(s, p.span, p.rim),
+        text=text,
+        marks=strokes,
+        marks_z_mm=rim_z,
+        marks_depth_mm=min(marks.DEPTH_MM, (rim_z - seat) / 2.0),
+        mark_width_mm=max(marks.LINE_MM, 1.25 * design.printer.nozzle_mm),
+    )
+
+
+def _carries(s: Side, humps: tuple[Hump, ...], p: _Plan) -> tuple[Carry, ...]:
+    """Stretches of wire over the floor, on either side of each hump's peak; grazes left out."""
+    out = []
+    low = np.full(s.columns.u.size, np.inf)
+    low[p.span] = p.low
+    u = s.columns.u
+    for number, hump in enumerate(humps):
+        for word, a, b in (("before", hump.first, hump.peak), ("after", hump.peak, hump.last)):
+            for i, j in profile.runs(s.wire[a : b + 1] >= low[a : b + 1]):
+                run = np.column_stack([u, s.wire])[a + i : a + j + 1]
                 length = float(np.linalg.norm(np.diff(run, axis=0), axis=1).sum())
-                if length < 0.5:
-                    continue  # a graze, not a support
-                out.append(Carry(lobe=number, side=word, start=ends[0], end=ends[1], length_mm=length))
+                if length < STEP_MM * 10.0:
+                    continue
+                first, last = s.frame.world([(float(run[k, 0]), float(run[k, 1])) for k in (0, -1)])
+                out.append(Carry(lobe=number, side=word, start=first, end=last, length_mm=length))
     return tuple(out)
 
 
-def _slack_along(s: Side, span: slice, rim: np.ndarray) -> float:
-    return float((rim - s.bare_edge[span]).min())
+def _travel_mm(edge: np.ndarray, low: np.ndarray) -> float:
+    """Pull after which a floor that starts at `low` is clear of wire that reaches `edge`."""
+    return math.ceil((float((edge - low).max()) + LIFT_PLAY_MM) / _HALF_MM) * _HALF_MM
 
 
-def _slack_across(s: Side, span: slice, rim: np.ndarray) -> float:
-    """Greatest of the two side shifts at which the wire first meets the rim; infinite past 5 mm."""
-    padded = np.full(s.columns.u.size, np.inf)
-    padded[span] = rim
-    worst = 0.0
-    for sign in (-1, 1):
-        for k in range(1, round(5.0 / profile.STEP_MM)):
-            if np.any(np.roll(s.bare_edge, sign * k) > padded):
-                worst = max(worst, k * profile.STEP_MM)
-                break
-        else:
-            return math.inf
-    return worst
-
-
-def _in_the_way(s: Side, u_low: float, u_high: float, v_high: float) -> list[Keepout]:
-    out = []
-    for disc in s.outer:
-        du, dv = s.frame.local(np.array([[disc.x_mm, disc.y_mm]]))[0]
-        if u_low - disc.radius_mm < du < u_high + disc.radius_mm and dv - disc.radius_mm < v_high:
-            out.append(disc)
-    return out
-
-
-def _what_blocks(s: Side, u_low: float, u_high: float, v: float) -> str:
-    column = int(np.argmax(np.where((s.columns.u >= u_low) & (s.columns.u <= u_high), s.blocked, -np.inf)))
-    x, y = s.frame.world([(float(s.columns.u[column]), float(s.blocked[column]))])[0]
-    return f"solder, hardware or wire out of the plane near ({x:.1f}, {y:.1f}) mm reaches into its spine"
+def _wall_mm(design: Design) -> float:
+    """Thinnest arm, rim and spine: five lines of the nozzle, at least 2 mm."""
+    return max(2.0, 5.0 * design.printer.nozzle_mm)

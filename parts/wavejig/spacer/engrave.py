@@ -18,7 +18,7 @@ from OCP.TopoDS import TopoDS_Shell
 
 from wavejig.spacer.outline import Region
 
-_LEVEL_MM = 1e-6
+_LEVEL_MM = 1e-5
 
 
 def ring(points: np.ndarray, z_mm: float) -> cq.Wire:
@@ -69,4 +69,4 @@ def _closed(faces: Sequence[cq.Face]) -> cq.Solid:
 
 def _at_height(face: cq.Face, z_mm: float) -> bool:
     box = face.BoundingBox()
-    return abs(box.zmin - z_mm) < _LEVEL_MM + 1e-6 and abs(box.zmax - z_mm) < _LEVEL_MM + 1e-6
+    return bool(max(abs(box.zmin - z_mm), abs(box.zmax - z_mm)) < _LEVEL_MM)

@@ -78,8 +78,8 @@ def _level_chains(radiator: Radiator, height_mm: float) -> tuple[np.ndarray, ...
     found = tuple(np.concatenate(chain) for chain in chains if chain)
     if not found:
         raise ValueError(
-            f"no stretch of the main wire lies at the standoff of {height_mm:g} mm, so no spacer can carry it; "
-            "check the standoff and the corners' z"
+            f"no stretch of the main wire lies at the standoff of {height_mm:g} mm, so no spacer can "
+            "carry it; check the standoff and the corners' z"
         )
     return found
 

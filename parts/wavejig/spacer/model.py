@@ -66,7 +66,7 @@ class BlockPiece:
 class Post:
     """A post that stays: a hexagon with a channel for the wire in its top and a screw hole from below.
 
-    channel: the wire's centreline over the post in plan, as a chain of points; seat_z_mm: what the wire
+    channels: each wire's centreline over the post in plan, as a chain of points; seat_z_mm: what the wire
     rests on; hole: for the screw to form its thread in, hole_depth_mm deep from below.
     """
 
@@ -74,7 +74,7 @@ class Post:
     outline: Contour
     top_mm: float
     seat_z_mm: float
-    channel: tuple[Point2, ...]
+    channels: tuple[tuple[Point2, ...], ...]
     channel_width_mm: float
     hole: Circle
     hole_depth_mm: float

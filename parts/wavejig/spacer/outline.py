@@ -1,10 +1,11 @@
-"""Plane regions with holes, for bodies that carry engraving or a channel. Uses shapely; called by `solid` only.
+"""Plane regions with holes, for bodies that carry engraving or a channel. Uses shapely, for `solid` only.
 
 A region is an outer ring and its holes, each (n, 2) x, y in mm, not repeating the first point.
 """
 
 from __future__ import annotations
 
+import math
 from collections.abc import Iterable
 from dataclasses import dataclass
 from typing import Any
@@ -40,13 +41,17 @@ def grooves(marks: Iterable[Stroke], width_mm: float) -> tuple[Region, ...]:
     )
 
 
-def channelled(contour: Contour, path: Iterable[tuple[float, float]], width_mm: float) -> tuple[Region, ...]:
-    """What is left of a contour's inside beside a channel of `width_mm` along a chain of points."""
+def channelled(
+    contour: Contour, chains: Iterable[Iterable[tuple[float, float]]], width_mm: float
+) -> tuple[Region, ...]:
+    """What is left of a contour's inside beside channels of `width_mm` along chains of points."""
     half = width_mm / 2.0
-    # segments per quarter turn that keep the chords' error: cos(step/2) = 1 - error/half
-    quarter = max(4, round(np.pi / 4.0 / np.arccos(1.0 - min(_CHORD_ERROR_MM / half, 0.5))))
-    channel = LineString(list(path)).buffer(half, cap_style="square", quad_segs=quarter)
-    return _regions(Polygon(contour.points()).difference(channel))
+    # chords per quarter turn that stay within the error: half (1 - cos(step/2)) = error
+    quarter = max(4, math.ceil(math.pi / 4.0 / math.acos(1.0 - min(_CHORD_ERROR_MM / half, 0.5))))
+    channels = union_all(
+        [LineString(list(chain)).buffer(half, cap_style="square", quad_segs=quarter) for chain in chains]
+    )
+    return _regions(Polygon(contour.points()).difference(channels))
 
 
 def _regions(shape: Any) -> tuple[Region, ...]:

@@ -3,33 +3,34 @@
 from __future__ import annotations
 
 import math
+from types import MappingProxyType
 
-import numpy as np
-
-from wavejig.design.model import Conflict, Design
+from wavejig.design.model import Conflict, Design, Point2
 from wavejig.radiator.model import Radiator
 from wavejig.spacer import block
 from wavejig.spacer.keepout import Wires, keepouts, loose_hardware, wires
-from wavejig.spacer.model import BlockPiece, Spacer
+from wavejig.spacer.model import BlockPiece, Post, Spacer
 from wavejig.spacer.posts import plan_posts
 from wavejig.spacer.profile import Frame
+from wavejig.spacer.side import Hump, Side, look
 
 ACROSS_Y = ((0.0, 1.0), (0.0, -1.0))
 ACROSS_X = ((1.0, 0.0), (-1.0, 0.0))
-# A side shift of more than this is worth telling: soldering by eye is then the better guide.
+# A side shift of more than this is worth telling: the eye places the wire better. Common practice.
 LOOSE_MM = 1.0
-_KEYS = {
-    "travel": ("reflector.base", "Make the base wider, give that edge no lip, or use posts."),
-    "base": ("reflector.base", "Make the base wider."),
-    "width": ("reflector.base", "Make the base wider across the pull, or use posts."),
-    "blocked": (
-        "spacer.style",
-        'Move the connector or hole, use a smaller connector or a tube, or style = "posts".',
-    ),
-    "carry": ("radiator.side", "Use longer sides, a smaller connector or a tube, or posts."),
-    "low": ("radiator.standoff", "Use a larger standoff."),
-    "bed": ("printer.bed", "Use a larger printer, or posts."),
-}
+_LOBES = MappingProxyType({"quad": 1, "biquad": 2, "double-biquad": 4, "twin-loop": 2, "path": 1})
+_REMEDIES = MappingProxyType(
+    {
+        "travel": ("reflector.base", "Make the base wider, leave that edge without a lip, or use posts."),
+        "base": ("reflector.base", "Make the base wider."),
+        "width": ("reflector.base", "Make the base wider that way, or use posts."),
+        "blocked": ("spacer.style", "Move what stands there, use a smaller connector or a tube, or posts."),
+        "carry": ("radiator.side", "Use longer sides, a smaller connector or a tube, or posts."),
+        "lobes": ("spacer.style", "Give the y edges more room, or use posts."),
+        "low": ("radiator.standoff", "Use a larger standoff."),
+        "bed": ("printer.bed", "Use a larger printer, or posts."),
+    }
+)
 
 
 def plan(design: Design, radiator: Radiator) -> Spacer:
@@ -39,22 +40,20 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
     roomy), then along +x and -x. Raises ValueError when no wire lies in the standoff plane.
     """
     sampled = wires(design, radiator)
+    pieces: tuple[BlockPiece, ...] = ()
+    posts: tuple[Post, ...] = ()
+    notes: tuple[str, ...] = ()
     if design.spacer.style == "posts":
         posts, conflicts = plan_posts(design, radiator, sampled)
-        notes = (
-            ("Fix the wire in each post's channel with a drop of weatherproof adhesive.",) if posts else ()
-        )
-        return _spacer(design, (), posts, conflicts, notes)
-    upright, faults = _halves(design, radiator, sampled, ACROSS_Y)
-    if faults:
-        sideways, more = _halves(design, radiator, sampled, ACROSS_X)
-        if not more:
-            upright, faults = sideways, more
-    notes = [*_late_bolts(design, upright), *_loose(upright)]
-    return _spacer(design, upright, (), faults, tuple(notes))
-
-
-def _spacer(design: Design, pieces, posts, conflicts, notes) -> Spacer:  # type: ignore[no-untyped-def]
+        if posts:
+            notes = ("Fix the wire in each post's channel with a drop of weatherproof adhesive.",)
+    else:
+        pieces, conflicts = _halves(design, radiator, sampled, ACROSS_Y)
+        if conflicts:
+            other, still = _halves(design, radiator, sampled, ACROSS_X)
+            if not still:
+                pieces, conflicts = other, still
+        notes = (*_late_bolts(design, pieces), *_loose(pieces))
     return Spacer(
         style=design.spacer.style,
         plastic=design.spacer.plastic,
@@ -68,49 +67,52 @@ def _spacer(design: Design, pieces, posts, conflicts, notes) -> Spacer:  # type:
 
 
 def _halves(
-    design: Design, radiator: Radiator, sampled: Wires, directions: tuple[tuple[float, float], ...]
+    design: Design, radiator: Radiator, sampled: Wires, directions: tuple[Point2, Point2]
 ) -> tuple[tuple[BlockPiece, ...], tuple[Conflict, ...]]:
+    """Both halves of a block that come out along these directions."""
     discs = keepouts(design, radiator)
+    wanted = _LOBES[design.radiator.family]
     pieces: list[BlockPiece] = []
     conflicts: list[Conflict] = []
+    held = 0
     for letter, direction in zip("ab", directions, strict=True):
-        s = block.side(design, sampled, discs, Frame(direction=direction))
-        done, faults = _split(design, s, s.humps, f"spacer-{letter}")
-        pieces += done
-        conflicts += faults
+        s = look(design, sampled, discs, Frame(direction=direction))
+        made, told = _split(design, s, s.humps, f"spacer-{letter}")
+        pieces += made
+        conflicts += told
+        held = held + len(s.humps) if directions is ACROSS_X else max(held, len(s.humps))
+    if held < wanted:
+        conflicts.append(_conflict("lobes", "the block", f"carries {held} of {wanted} lobes"))
     return tuple(pieces), tuple(conflicts)
 
 
+def _conflict(code: str, who: str, numbers: str) -> Conflict:
+    key, remedy = _REMEDIES[code]
+    return Conflict(topic="spacer", key=key, message=f"{who} {numbers}", remedy=remedy)
+
+
 def _split(
-    design: Design, s: block.Side, humps: tuple[tuple[int, int], ...], name: str
+    design: Design, s: Side, humps: tuple[Hump, ...], name: str
 ) -> tuple[list[BlockPiece], list[Conflict]]:
     """One piece for all humps, or one for each half of them where the bed is too small."""
     trial = block.make_piece(design, s, humps, name)
-    faults = list(trial.faults)
-    if trial.piece is not None and not fits_bed(design, trial.piece):
-        if len(humps) > 1:
-            half = len(humps) // 2
-            pieces: list[BlockPiece] = []
-            conflicts: list[Conflict] = []
-            for number, part in enumerate((humps[:half], humps[half:]), start=1):
-                more, told = _split(design, s, part, f"{name}{number}")
-                pieces += more
-                conflicts += told
-            return pieces, conflicts
-        x, y, z = extent_mm(trial.piece)
-        p = design.printer
-        faults.append(
-            (
-                "bed",
-                f"measures {x:.0f} x {y:.0f} x {z:.0f} mm and the bed holds "
-                f"{p.bed_x_mm:g} x {p.bed_y_mm:g} x {p.bed_z_mm:g} mm",
-            )
-        )
-    told = []
-    for code, numbers in faults:
-        key, remedy = _KEYS[code]
-        told.append(Conflict(topic="spacer", key=key, message=f"{name} {numbers}", remedy=remedy))
-    return ([] if trial.piece is None else [trial.piece]), told
+    conflicts = [_conflict(code, name, numbers) for code, numbers in trial.faults]
+    if trial.piece is None:
+        return [], conflicts
+    if fits_bed(design, trial.piece):
+        return [trial.piece], conflicts
+    if len(humps) > 1:
+        half = len(humps) // 2
+        left, told = _split(design, s, humps[:half], f"{name}1")
+        right, also = _split(design, s, humps[half:], f"{name}2")
+        return [*left, *right], [*told, *also]
+    x, y, z = extent_mm(trial.piece)
+    p = design.printer
+    bed = f"{p.bed_x_mm:g} x {p.bed_y_mm:g} x {p.bed_z_mm:g} mm"
+    conflicts.append(
+        _conflict("bed", name, f"measures {x:.0f} x {y:.0f} x {z:.0f} mm and the printer holds {bed}")
+    )
+    return [trial.piece], conflicts
 
 
 def extent_mm(piece: BlockPiece) -> tuple[float, float, float]:
@@ -154,8 +156,6 @@ def _loose(pieces: tuple[BlockPiece, ...]) -> list[str]:
     for piece in pieces:
         across = piece.slack_across_mm
         if across > LOOSE_MM:
-            free = "freely" if not np.isfinite(across) else f"by {across:.1f} mm"
-            out.append(
-                f"{piece.name} lets the wire move {free} across the pull: centre it over the connector by eye."
-            )
+            free = "freely" if math.isinf(across) else f"by {across:.1f} mm"
+            out.append(f"{piece.name} lets the wire move {free} across its pull: centre the wire by eye.")
     return out

@@ -9,9 +9,9 @@ import numpy as np
 
 from wavejig.design.model import Conflict, Design, Point2
 from wavejig.geometry.plane import Circle, Contour
+from wavejig.radiator.model import Radiator
 from wavejig.spacer.keepout import Keepout, Wires, flat_half_mm, keepouts
 from wavejig.spacer.model import Post
-from wavejig.radiator.model import Radiator
 from wavejig.stock.hardware import screw, tap_drill_mm
 
 # Proportions: common practice, no source.
@@ -19,18 +19,18 @@ WALL_MM = 2.4  # plastic round the screw, and beside the channel
 FLOOR_MM = 2.0  # plastic between the screw's end and the wire
 SCREW_GRIP = 1.5  # least thread engaged, in screw diameters
 MOST_GRIP = 4.0  # more thread than this holds no better
-OFF_WIRE_MM = 0.5  # the wire must cross the post this near its middle, or the channel breaks its edge
+MOST_ASIDE_MM = 6.0  # the wire may round the corner this far from the post's axis
 
 
 def plan_posts(
-    design: Design, radiator: Radiator, wires: Wires
+    design: Design, radiator: Radiator, sampled: Wires
 ) -> tuple[tuple[Post, ...], tuple[Conflict, ...]]:
-    """A post at each of the design's places; what cannot be had becomes a conflict and that post is left out."""
+    """A post at each of the design's places. One that cannot be had becomes a conflict and is left out."""
     posts: list[Post] = []
     conflicts: list[Conflict] = []
     discs = keepouts(design, radiator)
     for number, at in enumerate(design.spacer.posts, start=1):
-        made = _post(design, wires, discs, number, at)
+        made = _post(design, sampled, discs, number, at)
         if isinstance(made, Conflict):
             conflicts.append(made)
         else:
@@ -47,29 +47,29 @@ def plan_posts(
 
 
 def _post(
-    design: Design, wires: Wires, discs: tuple[Keepout, ...], number: int, at: Point2
+    design: Design, sampled: Wires, discs: tuple[Keepout, ...], number: int, at: Point2
 ) -> Post | Conflict:
     r = design.radiator
     covered, height = r.covered_diameter_mm, r.standoff_mm
     width = covered + 2.0 * design.printer.clearance_mm
     thread = screw(design.spacer.post_screw)
     where = f"the post at ({at[0]:.1f}, {at[1]:.1f}) mm"
-    away = np.hypot(*(wires.points[:, :2] - np.array(at)).T)
-    nearest = int(np.argmin(np.where(wires.flat, away, np.inf)))
-    # the wire rounds the corner inside the point the post is asked for: stand under the wire itself
-    middle = (float(wires.points[nearest, 0]), float(wires.points[nearest, 1]))
-    rounding = r.bend_radius_mm if r.lobe_diameter_mm is None else r.lobe_diameter_mm
-    if away[nearest] > max(rounding, covered):
+    away = np.hypot(*(sampled.points[:, :2] - np.array(at)).T)
+    # the sheet's hole is under the corner; the wire rounds it, a little inside
+    aside = float(away[sampled.flat].min())
+    if aside > MOST_ASIDE_MM:
         return _conflict(
             "spacer.style",
-            f"{where} misses the wire in the standoff plane by {away[nearest]:.1f} mm",
-            'Use style = "block", or move the corner.',
+            f"{where} is {aside:.1f} mm from the nearest wire in the standoff plane and may be "
+            f"{MOST_ASIDE_MM:g} mm",
+            'Use style = "block", or a smaller bend radius.',
         )
     hole = tap_drill_mm(design.spacer.post_screw) + design.printer.hole_allowance_mm
-    # flats: the channel and both walls, and a wall all round the screw
-    across = math.ceil(2.0 * max(width + 2.0 * WALL_MM, hole + 2.0 * WALL_MM, 2.5 * thread.diameter_mm)) / 2.0
+    # across the flats: the channel and its walls, and a wall all round the screw
+    half = max(aside + width / 2.0 + WALL_MM, hole / 2.0 + WALL_MM)
+    across = math.ceil(4.0 * half) / 2.0
     circle = across / math.sqrt(3.0)
-    seat = height - covered / 2.0
+    seat, top = height - covered / 2.0, height + covered / 2.0
     depth = min(seat - FLOOR_MM, MOST_GRIP * thread.diameter_mm)
     if depth < SCREW_GRIP * thread.diameter_mm:
         return _conflict(
@@ -78,10 +78,15 @@ def _post(
             f"{SCREW_GRIP * thread.diameter_mm:.1f} mm",
             'Use style = "block", or a larger standoff.',
         )
-    over = np.hypot(*(wires.points[:, :2] - np.array(middle)).T) < circle + wires.radius_mm
-    stray = over & ~wires.flat
+    if top > design.printer.bed_z_mm:
+        return _conflict(
+            "printer.bed",
+            f"{where} is {top:.1f} mm tall and the printer holds {design.printer.bed_z_mm:g} mm",
+            "Use a larger printer.",
+        )
+    stray = ~sampled.flat & (away < circle + sampled.radius_mm)
     if np.any(stray):
-        off = wires.points[stray, 2] - height
+        off = sampled.points[stray, 2] - height
         worst = float(off[np.argmax(np.abs(off))])
         return _conflict(
             "spacer.style",
@@ -90,55 +95,64 @@ def _post(
             'Use style = "block".',
         )
     for disc in discs:
-        room = math.dist(middle, (disc.x_mm, disc.y_mm)) - disc.radius_mm
+        room = math.dist(at, (disc.x_mm, disc.y_mm)) - disc.radius_mm
         if room < circle:
             return _conflict(
                 "spacer.style",
-                f"{where}, {2 * circle:.1f} mm over its corners, has {max(room, 0.0):.1f} mm beside {disc.what} and "
-                f"needs {circle:.1f} mm",
+                f"{where}, {2 * circle:.1f} mm over its corners, has {max(room, 0.0):.1f} mm beside "
+                f"{disc.what} and needs {circle:.1f} mm",
                 'Use style = "block", or a longer side.',
             )
-    for axis, value in zip("xy", middle, strict=True):
+    for axis, value in zip("xy", at, strict=True):
         room = flat_half_mm(design, axis, 1 if value > 0 else -1) - abs(value)
         if room < circle:
             return _conflict(
                 "reflector.base",
-                f"{where} stands {max(room, 0.0):.1f} mm from the end of the flat base along {axis} and needs {circle:.1f} mm",
+                f"{where} stands {max(room, 0.0):.1f} mm from the end of the flat base along {axis} and "
+                f"needs {circle:.1f} mm",
                 "Make the base larger.",
             )
-    outward = math.atan2(middle[1], middle[0])
-    corners = [
-        (
-            middle[0] + circle * math.cos(outward + math.radians(30.0 + 60.0 * k)),
-            middle[1] + circle * math.sin(outward + math.radians(30.0 + 60.0 * k)),
-        )
-        for k in range(6)
-    ]
     return Post(
         name=f"spacer-post-{number}",
-        outline=Contour.polygon(corners),
-        top_mm=height + covered / 2.0,
+        outline=_hexagon(at, circle),
+        top_mm=top,
         seat_z_mm=seat,
-        channel=_channel(wires, middle, circle + width),
+        channels=_channels(sampled, at, circle + width),
         channel_width_mm=width,
-        hole=Circle(x_mm=middle[0], y_mm=middle[1], diameter_mm=hole),
+        hole=Circle(x_mm=at[0], y_mm=at[1], diameter_mm=hole),
         hole_depth_mm=depth,
         screw=thread.name,
     )
 
 
-def _channel(wires: Wires, middle: Point2, reach_mm: float) -> tuple[Point2, ...]:
-    """The stretch of wire that passes `middle`, as far as `reach_mm` from it."""
-    for chain in wires.chords:
-        away = np.hypot(*(chain - np.array(middle)).T)
-        hits = [i for i, (a, b) in enumerate(pairwise(chain)) if _distance(np.array(middle), a, b) < reach_mm]
-        if hits and float(away[max(hits[0], 0) : hits[-1] + 2].min()) < reach_mm:
-            part = chain[hits[0] : hits[-1] + 2]
-            return tuple((float(x), float(y)) for x, y in part)
-    raise AssertionError("the post's middle was taken from this wire")
+def _hexagon(at: Point2, circle_mm: float) -> Contour:
+    """A hexagon with two flats across the line to the sheet's middle, so that all posts look alike."""
+    outward = math.atan2(at[1], at[0])
+    turns = [outward + math.radians(30.0 + 60.0 * k) for k in range(6)]
+    return Contour.polygon(
+        [(at[0] + circle_mm * math.cos(t), at[1] + circle_mm * math.sin(t)) for t in turns]
+    )
+
+
+def _channels(sampled: Wires, at: Point2, reach_mm: float) -> tuple[tuple[Point2, ...], ...]:
+    """The stretches of wire over a post, each from before the post to beyond it."""
+    out = []
+    for chain in sampled.chords:
+        near = [i for i, (a, b) in enumerate(pairwise(chain)) if _distance(np.array(at), a, b) < reach_mm]
+        for first, last in _stretches(near):
+            out.append(tuple((float(x), float(y)) for x, y in chain[first : last + 2]))
+    return tuple(out)
+
+
+def _stretches(numbers: list[int]) -> list[tuple[int, int]]:
+    """First and last of each run of consecutive numbers."""
+    breaks = [k for k in range(1, len(numbers)) if numbers[k] != numbers[k - 1] + 1]
+    starts, ends = [0, *breaks], [*(k - 1 for k in breaks), len(numbers) - 1]
+    return [(numbers[a], numbers[b]) for a, b in zip(starts, ends, strict=True)] if numbers else []
 
 
 def _distance(p: np.ndarray, a: np.ndarray, b: np.ndarray) -> float:
+    """From a point to a chord."""
     along = b - a
     square = float(along @ along)
     t = 0.0 if square < 1e-18 else float(np.clip((p - a) @ along / square, 0.0, 1.0))

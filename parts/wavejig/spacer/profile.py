@@ -96,7 +96,8 @@ class Columns:
 def widened(curve: np.ndarray) -> np.ndarray:
     """Each column raised to its neighbours: what lies between two columns is then covered too."""
     padded = np.concatenate([[-np.inf], curve, [-np.inf]])
-    return np.maximum(np.maximum(padded[:-2], padded[1:-1]), padded[2:])
+    raised: np.ndarray = np.maximum(np.maximum(padded[:-2], padded[1:-1]), padded[2:])
+    return raised
 
 
 def without_spikes(curve: np.ndarray, width_mm: float) -> np.ndarray:
@@ -104,7 +105,7 @@ def without_spikes(curve: np.ndarray, width_mm: float) -> np.ndarray:
     n = max(1, round(width_mm / STEP_MM)) + 1
     if n >= curve.size:
         return np.full(curve.size, curve.max())
-    highest = np.lib.stride_tricks.sliding_window_view(curve, n).max(axis=1)
+    highest: np.ndarray = np.lib.stride_tricks.sliding_window_view(curve, n).max(axis=1)
     padded = np.concatenate([np.full(n - 1, np.inf), highest, np.full(n - 1, np.inf)])
     out: np.ndarray = np.lib.stride_tricks.sliding_window_view(padded, n).min(axis=1)
     return out
@@ -116,18 +117,16 @@ def runs(mask: np.ndarray) -> list[tuple[int, int]]:
     return [(int(a), int(b) - 1) for a, b in zip(edges[::2], edges[1::2], strict=True)]
 
 
-def above(columns: Columns, low: np.ndarray, first: int, last: int, top_mm: float, frame: Frame) -> Contour:
-    """Outline of what lies between the curve `low` and v = `top_mm`, columns first to last, in x, y."""
-    u = columns.u[first : last + 1]
-    v = low[first : last + 1]
+def above(columns: Columns, low: np.ndarray, top_mm: float, frame: Frame) -> Contour:
+    """Outline, in x and y, of what lies between the curve `low` (one v per column) and v = `top_mm`."""
+    u, v = columns.u, low
     points: list[tuple[float, float]] = [(float(u[0]), float(v[0]))]
     start = 0
     for i in np.flatnonzero(np.abs(np.diff(v)) > _UPRIGHT_MM).tolist():
         # the upright edge stands on the side that leaves less material
         edge = float(u[i + 1] if v[i] > v[i + 1] else u[i])
         points += _simple(u[start : i + 1], v[start : i + 1])[1:]
-        points += [(edge, float(v[i])), (edge, float(v[i + 1]))]
-        points.append((float(u[i + 1]), float(v[i + 1])))
+        points += [(edge, float(v[i])), (edge, float(v[i + 1])), (float(u[i + 1]), float(v[i + 1]))]
         start = i + 1
     points += _simple(u[start:], v[start:])[1:]
     points += [(float(u[-1]), top_mm), (float(u[0]), top_mm)]
@@ -168,8 +167,7 @@ def _without_repeats(points: list[tuple[float, float]]) -> list[tuple[float, flo
 
 
 def _straight(a: tuple[float, float], b: tuple[float, float], c: tuple[float, float]) -> bool:
+    """Whether a, b, c follow each other on one straight."""
     ux, uy, vx, vy = b[0] - a[0], b[1] - a[1], c[0] - b[0], c[1] - b[1]
-    return (
-        abs(ux * vy - uy * vx) < 1e-9 * max(1.0, math.hypot(ux, uy) * math.hypot(vx, vy))
-        and ux * vx + uy * vy > 0
-    )
+    small = 1e-9 * max(1.0, math.hypot(ux, uy) * math.hypot(vx, vy))
+    return abs(ux * vy - uy * vx) < small and ux * vx + uy * vy > 0

@@ -64,7 +64,7 @@ def _block_solid(piece: BlockPiece) -> cq.Solid:
 
 def _post_solid(post: Post) -> cq.Solid:
     bodies = [_prism(post.outline, 0.0, post.seat_z_mm)]
-    for region in channelled(post.outline, post.channel, post.channel_width_mm):
+    for region in channelled(post.outline, post.channels, post.channel_width_mm):
         bodies.append(_prism(region, post.seat_z_mm, post.top_mm))
     hole = cq.Solid.makeCylinder(
         post.hole.diameter_mm / 2.0, post.hole_depth_mm, cq.Vector(post.hole.x_mm, post.hole.y_mm, 0.0)
@@ -86,7 +86,8 @@ def _one(name: str, bodies: Sequence[cq.Solid]) -> cq.Solid:
 def _checked(name: str, solids: Sequence[cq.Solid]) -> cq.Solid:
     if len(solids) != 1 or not solids[0].isValid():
         raise SpacerSolidError(
-            f"{name}: the kernel made {len(solids)} bodies and needs one valid closed body; report this design"
+            f"{name}: the kernel made {len(solids)} bodies and needs one valid closed body; "
+            "report this design"
         )
     return solids[0]
 

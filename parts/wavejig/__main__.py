@@ -1,0 +1,7 @@
+"""`python -m wavejig` is the command `wavejig`."""
+
+import sys
+
+from wavejig.cli import main
+
+sys.exit(main())

@@ -1,0 +1,219 @@
+"""Every file of a pack: made from the inspected design, written, read back. Loads the CAD kernel.
+
+The steps run in order and each notes its files for the manifest. A file that does not come back as it was
+written stops the build.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from pathlib import Path
+from typing import Any
+
+from wavejig.files.design_json import check_design_json, design_data, write_design_json
+from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
+from wavejig.files.dxfcheck import check_dxf
+from wavejig.files.glb import ColouredMesh, check_glb, write_glb
+from wavejig.files.manifest import Entry, check_manifest, write_manifest
+from wavejig.files.mesh import Measure, Mesh, measure, tessellate
+from wavejig.files.step import NamedSolid, write_step
+from wavejig.files.stepcheck import check_step
+from wavejig.files.stl import check_stl, write_stl
+from wavejig.files.tables import check_bend_table, write_bend_table
+from wavejig.files.threemf import check_3mf, write_3mf
+from wavejig.fixture.solid import printables as fixture_printables
+from wavejig.radiator.drawing import views
+from wavejig.radiator.solid import piece_solid
+from wavejig.reflector.flat import FlatPattern, flat_pattern, with_kerf
+from wavejig.reflector.solid import tray_solid
+from wavejig.shop import Inspection
+from wavejig.spacer.solid import printables as spacer_printables
+
+Colour = tuple[float, float, float]
+
+# How parts look on a screen; taste, no source.
+_METAL_COLOURS: dict[str, Colour] = {
+    "copper": (0.80, 0.45, 0.28),
+    "tinned-copper": (0.78, 0.76, 0.72),
+    "brass": (0.80, 0.68, 0.32),
+    "bronze": (0.66, 0.50, 0.26),
+    "laminate-fr4": (0.72, 0.52, 0.30),
+}
+_OTHER_METAL: Colour = (0.72, 0.73, 0.75)
+_PLASTIC: Colour = (0.30, 0.45, 0.60)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Step:
+    """One stage of a build, for progress and for timing."""
+
+    title: str
+    run: Callable[[], None]
+
+
+class PackFiles:
+    """Writes one pack into `root`, a fresh folder."""
+
+    def __init__(self, inspection: Inspection, root: Path) -> None:
+        assert inspection.radiator and inspection.tray and inspection.spacer and inspection.fixture
+        self.inspection = inspection
+        self.design = inspection.design
+        self.radiator = inspection.radiator
+        self.tray = inspection.tray
+        self.spacer = inspection.spacer
+        self.fixture = inspection.fixture
+        self.root = root
+        self.entries: list[Entry] = []
+        self.assembly: list[NamedSolid] = []
+        self.meshes: dict[str, tuple[Mesh, Measure]] = {}
+        self.pattern: FlatPattern = flat_pattern(self.tray, self.design.name)
+
+    def steps(self) -> Iterator[Step]:
+        """The stages, in order."""
+        yield Step(title="radiator", run=self.write_radiator)
+        yield Step(title="reflector", run=self.write_reflector)
+        yield Step(title="spacer", run=self.write_spacer)
+        yield Step(title="fixture", run=self.write_fixture)
+        yield Step(title="assembly", run=self.write_assembly)
+        yield Step(title="design.json", run=self.write_design)
+
+    def finish(self, versions: dict[str, str]) -> None:
+        """The manifest, and the last look at the whole folder."""
+        write_manifest(self.root, self.entries, versions)
+        check_manifest(self.root)
+
+    def totals(self) -> tuple[int, int]:
+        """Number of files and bytes on disk, manifest included."""
+        sizes = [p.stat().st_size for p in self.root.rglob("*") if p.is_file()]
+        return len(sizes), sum(sizes)
+
+    # -- parts --------------------------------------------------------------------------------------
+
+    def write_radiator(self) -> None:
+        """radiator.step, radiator.dxf, bend-table.csv."""
+        metal = _METAL_COLOURS.get(self.design.radiator.metal.name, _OTHER_METAL)
+        solids = [
+            NamedSolid(
+                name=f"radiator {p.role}" if p.role != "tube" else "tube",
+                shape=piece_solid(p),
+                colour=metal if p.role not in ("tube", "inner") else _METAL_COLOURS["copper"],
+            )
+            for p in self.radiator.pieces
+        ]
+        self._step(solids, "radiator/radiator.step", "radiator")
+        self.assembly += solids
+        layers: list[Layer] = []
+        for view in views(self.radiator):
+            layers.append(
+                Layer(name=f"{view.role}-outline", entities=(*view.outlines, *view.ends_on), colour=7)
+            )
+            layers.append(
+                Layer(name=f"{view.role}-centreline", entities=view.centrelines, colour=1, linetype="CENTER")
+            )
+        self._dxf(tuple(ly for ly in layers if ly.entities), "radiator/radiator.dxf", "radiator", cut=False)
+        path = self._path("radiator/bend-table.csv")
+        write_bend_table(self.radiator, path)
+        check_bend_table(path, self.radiator)
+        self._note("radiator/bend-table.csv", "csv", "radiator", "mm")
+
+    def write_reflector(self) -> None:
+        """tray.step, the blank with bends and marks, and the cut-only blanks in both versions."""
+        metal = _METAL_COLOURS.get(self.design.reflector.metal.name, _OTHER_METAL)
+        solid = NamedSolid(name="reflector", shape=tray_solid(self.tray), colour=metal)
+        self._step([solid], "reflector/tray.step", "reflector")
+        self.assembly.append(solid)
+        pattern = self.pattern
+        if self.design.cutter.offset_in_file:
+            pattern = with_kerf(pattern, self.design.cutter.kerf_mm)
+        drawing = Drawing(
+            cut=(pattern.outline, *pattern.holes),
+            bends=tuple(
+                BendLine(start=b.line[0], end=b.line[1], direction="up", angle_deg=b.angle_deg)
+                for b in pattern.bends
+            ),
+            marks=pattern.marks,
+        )
+        area = pattern.area_mm2
+        self._dxf(drawing.layers(), "reflector/blank.dxf", "reflector", area=area)
+        bare = Drawing(cut=drawing.cut).layers()
+        self._dxf(bare, "reflector/blank-cut.dxf", "reflector", area=area)
+        self._dxf(bare, "reflector/blank-cut-r12-mm.dxf", "reflector", area=area, version="R12")
+
+    def write_spacer(self) -> None:
+        """The printed standoff."""
+        for part in spacer_printables(self.design, self.radiator, self.spacer):
+            self._printable(part.name, part.solid, "spacer")
+            self.assembly.append(NamedSolid(name=part.name, shape=part.placed(), colour=_PLASTIC))
+
+    def write_fixture(self) -> None:
+        """The bending fixture and the check nest, a file a printed piece."""
+        for part in fixture_printables(self.fixture):
+            self._printable(part.name, part.solid, "fixture")
+
+    def write_assembly(self) -> None:
+        """The antenna put together, for the eye: STEP and GLB."""
+        self._step(self.assembly, "assembly.step", "assembly")
+        pieces: list[tuple[ColouredMesh, Measure]] = []
+        for solid in self.assembly:
+            mesh = tessellate(solid.shape, name=solid.name)
+            pieces.append((ColouredMesh(mesh=mesh, colour=solid.colour), measure(solid.shape)))
+        path = self._path("assembly.glb")
+        write_glb([piece for piece, _ in pieces], path)
+        check_glb(path, [(piece.mesh.name, m, piece.colour) for piece, m in pieces])
+        self._note("assembly.glb", "glb", "assembly", "m")
+
+    def write_design(self) -> None:
+        """design.json."""
+        data = design_data(self.design, self.radiator, self.pattern, self.inspection.findings)
+        path = self._path("design.json")
+        write_design_json(data, path)
+        check_design_json(path, data)
+        self._note("design.json", "json", "design", "mm")
+
+    # -- files --------------------------------------------------------------------------------------
+
+    def _printable(self, name: str, shape: Any, part: str) -> None:
+        """STEP, STL and 3MF of one printed piece."""
+        self._step([NamedSolid(name=name, shape=shape, colour=_PLASTIC)], f"{part}/{name}.step", part)
+        mesh, figures = tessellate(shape, name=name), measure(shape)
+        title = f"{self.design.name} {name}"
+        stl, threemf = self._path(f"{part}/{name}.stl"), self._path(f"{part}/{name}.3mf")
+        write_stl(mesh, stl, title)
+        check_stl(stl, figures)
+        self._note(f"{part}/{name}.stl", "stl", part, "mm")
+        write_3mf([mesh], threemf, title)
+        check_3mf(threemf, {name: figures})
+        self._note(f"{part}/{name}.3mf", "3mf", part, "mm")
+
+    def _step(self, solids: list[NamedSolid], name: str, part: str) -> None:
+        path = self._path(name)
+        write_step(solids, path, f"{self.design.name} {part}")
+        check_step(path, solids)
+        self._note(name, "step", part, "mm")
+
+    def _dxf(
+        self,
+        layers: tuple[Layer, ...],
+        name: str,
+        part: str,
+        *,
+        area: float | None = None,
+        version: Any = "R2010",
+        cut: bool = True,
+    ) -> None:
+        path = self._path(name)
+        write_dxf(layers, path, version=version, title=f"{self.design.name} {part}")
+        if cut:
+            check_dxf(path, layers, version=version, cut_area_mm2=area)
+        else:
+            check_dxf(path, layers, version=version)
+        self._note(name, "dxf", part, "mm")
+
+    def _path(self, name: str) -> Path:
+        path = self.root / name
+        path.parent.mkdir(exist_ok=True)
+        return path
+
+    def _note(self, path: str, kind: str, part: str, units: str) -> None:
+        self.entries.append(Entry(path=path, kind=kind, part=part, units=units))

@@ -1,0 +1,132 @@
+"""Runs the walk from recipe to pack, and writes a pack whole or not at all.
+
+A pack is built in a hidden folder beside its place, every file read back with a second reader, and only
+then swapped in. Whatever fails before the swap leaves the earlier pack as it was.
+"""
+
+from __future__ import annotations
+
+import contextlib
+import os
+import shutil
+import tempfile
+from collections.abc import Callable, Iterator
+from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
+
+import wavejig
+from wavejig.design import resolve
+from wavejig.recipe import RecipeError, RecipeFile, read_recipe
+from wavejig.shop import Inspection, inspect
+
+if TYPE_CHECKING:  # the kernel is loaded by `build` alone, after the design has been judged
+    from wavejig.files.packfiles import PackFiles
+
+Progress = Callable[[str], None]
+_STAGE, _OLD = ".building-", ".replaced-"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Built:
+    """A pack on disk."""
+
+    folder: Path
+    files: int
+    bytes: int
+    inspection: Inspection
+
+
+class CannotBeMadeError(Exception):
+    """The design has error findings; no pack was written."""
+
+    def __init__(self, inspection: Inspection) -> None:
+        self.inspection = inspection
+        super().__init__(f"{inspection.design.name} cannot be made")
+
+
+def inspect_recipe(path: Path) -> tuple[RecipeFile, Inspection]:
+    """Read, resolve and judge a recipe. Raises RecipeError with lines; OSError when unreadable."""
+    recipe_file = read_recipe(path)
+    try:
+        design = resolve(recipe_file.recipe)
+    except RecipeError as err:
+        raise recipe_file.error(err.problems) from err
+    return recipe_file, inspect(design)
+
+
+def build(path: Path, out: Path, progress: Progress = lambda _: None) -> Built:
+    """Build the pack of a recipe into `out`/<name>/.
+
+    Raises RecipeError (exit 2), CannotBeMadeError (exit 1), OSError (exit 3); FileCheckError or a kernel
+    error when a file does not come back as it was written, which is a fault of ours.
+    """
+    progress("reading the recipe")
+    _, inspection = inspect_recipe(path)
+    if not inspection.can_be_made:
+        raise CannotBeMadeError(inspection)
+    progress("loading the CAD kernel")
+    from wavejig.files.packfiles import PackFiles
+
+    with staging(out, inspection.design.name) as stage:
+        files = PackFiles(inspection, stage)
+        for step in files.steps():
+            progress(step.title)
+            step.run()
+        progress("checking the pack")
+        files.finish(_versions())
+        count, size = files.totals()
+    return Built(folder=out / inspection.design.name, files=count, bytes=size, inspection=inspection)
+
+
+@contextlib.contextmanager
+def staging(out: Path, name: str) -> Iterator[Path]:
+    """A fresh folder beside the pack's place; swapped in when the block ends well, removed otherwise."""
+    out.mkdir(parents=True, exist_ok=True)
+    final = out / name
+    if final.exists() and not (final / "manifest.json").is_file() and any(final.iterdir()):
+        raise FileExistsError(
+            17, "this folder exists and is not a pack of ours; move it away or use --out", str(final)
+        )
+    _clear_leftovers(out, name)
+    stage = Path(tempfile.mkdtemp(prefix=f".{name}{_STAGE}", dir=out))
+    try:
+        yield stage
+        _swap(stage, final)
+    except BaseException:  # ctrl-C too: nothing may be left behind
+        shutil.rmtree(stage, ignore_errors=True)
+        raise
+
+
+def _swap(stage: Path, final: Path) -> None:
+    """Put the new pack in the old one's place; the old one comes back if the second step fails."""
+    stage.chmod(0o755)  # mkdtemp's folders are private; a pack is to be shared
+    if not final.exists():
+        stage.rename(final)
+        return
+    old = final.with_name(f".{final.name}{_OLD}{os.getpid()}")
+    final.rename(old)
+    try:
+        stage.rename(final)
+    except BaseException:
+        old.rename(final)
+        raise
+    shutil.rmtree(old, ignore_errors=True)
+
+
+def _clear_leftovers(out: Path, name: str) -> None:
+    """Undo what a killed build left: bring back a pack caught between the two renames, drop the rest."""
+    for old in sorted(out.glob(f".{name}{_OLD}*")):
+        if not (out / name).exists():
+            old.rename(out / name)
+        else:
+            shutil.rmtree(old, ignore_errors=True)
+    for stage in out.glob(f".{name}{_STAGE}*"):
+        shutil.rmtree(stage, ignore_errors=True)
+
+
+def _versions() -> dict[str, str]:
+    from importlib.metadata import version
+
+    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "trimesh", "shapely")
+    return {"wavejig": wavejig.__version__, **{name: version(name) for name in libraries}}

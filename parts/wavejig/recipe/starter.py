@@ -1,0 +1,14 @@
+"""The commented recipe that `wavejig new` writes."""
+
+from __future__ import annotations
+
+import re
+from importlib.resources import files
+
+
+def starter(stem: str) -> str:
+    """The starter recipe, named after the file it goes into as far as a name allows."""
+    name = re.sub(r"[^A-Za-z0-9_-]+", "-", stem).strip("-._")[:48].strip("-._") or "my-antenna"
+    return (
+        files("wavejig.recipe").joinpath("starter.toml").read_text(encoding="utf-8").replace("@name@", name)
+    )
