@@ -118,6 +118,26 @@ def test_marks_without_room_are_reported_not_squeezed_in(sheet: Sheet) -> None:
     assert pattern.marks
 
 
+def test_marks_do_not_overlap(sheet: Sheet) -> None:
+    """On 47 x 9 mm the upper mark stands 3 high (36 wide); 3 mm remain below it, a line of 2 needs 3.5."""
+    pattern = flat_pattern(plan(sheet("", base_x_mm=47.0, base_y_mm=9.0)))
+    assert pattern.unplaced == ("THIS FACE TO RADIATOR",)
+    taller = flat_pattern(plan(sheet("", base_x_mm=47.0, base_y_mm=9.6)))
+    assert taller.unplaced == ()
+
+
+def test_marks_on_a_lip_wider_at_its_tip_stay_inside_it(sheet: Sheet) -> None:
+    pattern = flat_pattern(
+        plan(sheet(corner_style="mitre", angle_deg=20.0, base_x_mm=32.0, base_y_mm=32.0, height_mm=40.0))
+    )
+    outline = Polygon(pattern.outline.points(0.001))
+    lettered = {max("xy", key=lambda a: abs(m.points[0]["xy".index(a)])) for m in pattern.marks}
+    assert lettered == {"x", "y"}
+    for mark in pattern.marks:
+        assert outline.contains(LineString(mark.points))
+        assert LineString(mark.points).distance(outline.exterior) > 1.49
+
+
 @pytest.mark.parametrize("kerf", [0.1, 0.2, 0.38])
 def test_kerf_moves_every_cut_by_half_of_it(pattern: FlatPattern, kerf: float) -> None:
     """Steiner's formula for a loop of tangent pieces, A + L d + pi d^2; and shapely's own buffer."""

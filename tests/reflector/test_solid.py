@@ -146,3 +146,8 @@ def test_size_and_place_of_a_standing_tray(sheet: Sheet) -> None:
     assert solid.isInside(cq.Vector(43.2 + 1.01 * diagonal, 0.0, 1.0 - 1.01 * diagonal))
     assert solid.isInside(cq.Vector(43.2 + 1.79 * diagonal, 0.0, 1.0 - 1.79 * diagonal))
     assert not solid.isInside(cq.Vector(43.2 + 1.81 * diagonal, 0.0, 1.0 - 1.81 * diagonal))
+
+
+def test_faces_in_one_plane_are_one_face(sheet: Sheet) -> None:
+    """A channel: base 2, bends 2 x 2, flanges 2 x 2, tips 2, their round corners 4, sides 2."""
+    assert len(tray_solid(plan(sheet("y-y+"))).Faces()) == 18

@@ -11,10 +11,11 @@ import numpy as np
 import pytest
 from hypothesis import assume, given
 from hypothesis import strategies as st
-from shapely.geometry import Polygon
+from shapely.geometry import LineString, Polygon
 
-from wavejig.design.model import Hole, Lip, ReflectorDesign
-from wavejig.reflector.tray import CornerPractice, TrayError, hole_edge_to_bend_mm, plan
+from wavejig.design.model import CutterDesign, Hole, Lip, ReflectorDesign
+from wavejig.reflector.flat import flat_pattern, with_kerf
+from wavejig.reflector.tray import CornerPractice, TrayError, corner_practice, hole_edge_to_bend_mm, plan
 
 Sheet = Callable[..., ReflectorDesign]
 INCH = 25.4
@@ -225,3 +226,35 @@ def test_a_hole_over_the_cut_edge_of_a_flat_sheet_is_refused(sheet: Sheet) -> No
         plan(sheet("", holes=_hole(63.5, 0.0, 4.0)))
     with pytest.raises(TrayError, match="cuts the edge"):
         plan(sheet("", holes=_hole(200.0, 0.0, 4.0)))
+
+
+def test_short_lips_are_rounded_on_the_flange_only(sheet: Sheet) -> None:
+    """Lips 2.4 high have 0.6 of flange: the full width must still stand at the end of the bend."""
+    tray = plan(sheet("y-y+", height_mm=2.4))
+    assert tray.lips[0].flange_mm == pytest.approx(0.6)
+    y = max(lip.bend_end_mm for lip in tray.lips)
+    blank = Polygon(tray.outline.points(0.0005))
+    across = blank.intersection(LineString([(-200.0, y), (200.0, y)]))
+    assert across.length == pytest.approx(130.0, abs=1e-6)
+    at_tip = blank.intersection(LineString([(-200.0, y + 0.59), (200.0, y + 0.59)]))
+    assert at_tip.length < 130.0
+
+
+@pytest.mark.parametrize("kerf", [0.2, 1.0, 2.0])
+@pytest.mark.parametrize("style", ["relief", "mitre"])
+@pytest.mark.parametrize("angle", [5.0, 90.0])
+def test_corners_suit_the_cutter(sheet: Sheet, kerf: float, style: str, angle: float) -> None:
+    """Whatever the kerf, half of it fits every inner radius and all of it fits the mitre's gap."""
+    cutter = CutterDesign(
+        process="waterjet",
+        kerf_mm=kerf,
+        offset_in_file=True,
+        smallest_hole_mm=2.0,
+        stock_x_mm=1e3,
+        stock_y_mm=1e3,
+    )
+    practice = corner_practice(cutter)
+    pattern = flat_pattern(plan(sheet(angle_deg=angle, corner_style=style), practice))
+    cut = with_kerf(pattern, kerf)
+    assert Polygon(cut.outline.points(0.001)).is_valid
+    assert (practice == CornerPractice()) == (kerf < 0.25)

@@ -19,6 +19,7 @@ from wavejig.stock.hardware import screws
 SOLDER_GAP_MM = 0.1  # between surfaces that solder joins by capillarity
 FOOT_PLAY_MM = 0.3  # foot hole over the leg's diameter
 FOOT_PROUD_MM = 0.5  # how far a foot stands out behind the sheet, for its solder cone
+LEAST_WEB_MM = 1.0  # of sheet between two holes
 SHORT_CLEARANCE_MM = 1.0  # bare metal of the other polarity
 INNER_CLEARANCE_MM = 0.4  # bare wire to the tube's inner conductor, where its insulation still stands
 LUG_THICKNESS_MM = 0.5
@@ -146,6 +147,10 @@ def _place_legs(r: FeedRequest) -> tuple[FeedDesign, tuple[Conflict, ...]]:
         least = max(c.dielectric_diameter_mm, c.pin_diameter_mm) / 2.0 + leg / 2.0 + 0.5 - offset
         most = c.flange_mm / 2.0 - leg / 2.0 - 0.3 - offset
         foot_bottom, foot_hole = c.flange_thickness_mm + 0.05, 0.0
+    elif ground == "sheet":
+        # the foot's hole must leave a web of sheet to the connector's, or the cutter burns through
+        web = max(r.sheet_thickness_mm, LEAST_WEB_MM)
+        least = max(least, hole / 2.0 + web + foot_hole / 2.0 - offset)
     elif ground == "lug":
         foot_bottom, foot_hole = LUG_THICKNESS_MM, 0.0
     spacing = r.leg_spacing_mm

@@ -18,7 +18,6 @@ from typing import Literal
 
 import ezdxf
 from ezdxf.document import Drawing as DxfDocument
-from ezdxf.filemanagement import new
 from ezdxf.layouts.layout import Modelspace
 
 from wavejig.files.errors import DrawingError
@@ -100,7 +99,7 @@ def write_dxf(layers: Sequence[Layer], path: Path, *, version: Version = "R2010"
     """
     check_layers(layers)
     with _fixed_metadata():
-        document = new(version)
+        document = DxfDocument.new(version)
         if version != "R12":
             document.header["$INSUNITS"] = 4  # mm
             document.header["$MEASUREMENT"] = 1  # metric

@@ -1,8 +1,8 @@
 """GLB: coloured named meshes in one file to look at, for browsers and viewers.
 
-Source: glTF 2.0 Specification, Khronos Group 2021 (ISO/IEC 12113:2022, from memory): metres, y up, linear base
-colours, 12-byte header, then a JSON and a binary chunk, each padded to four bytes. Our mm become metres, and our
-+z (the main beam) becomes +y: (x, y, z) -> (x, z, -y).
+Source: glTF 2.0 Specification, Khronos Group 2021 (ISO/IEC 12113:2022, from memory): metres, y up, linear
+base colours, 12-byte header, then a JSON and a binary chunk, each padded to four bytes. Our mm become metres,
+and our +z (the main beam) becomes +y: (x, y, z) -> (x, z, -y).
 """
 
 from __future__ import annotations

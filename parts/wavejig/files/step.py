@@ -35,7 +35,7 @@ from OCP.TopExp import TopExp_Explorer
 from OCP.TopLoc import TopLoc_Location
 from OCP.XCAFDoc import XCAFDoc_DocumentTool
 
-from wavejig.files.names import clean_name, clean_unique_names
+from wavejig.files.names import ascii_name, clean_unique_names
 
 Colour = tuple[float, float, float]
 # The kernel's own settings while we write and read; whatever they were before comes back after.
@@ -64,7 +64,7 @@ def write_step(solids: Sequence[NamedSolid], path: Path, title: str) -> None:
     Raises ValueError when there is no solid, two share a name, one is not a valid closed solid or a colour is
     off its scale; OSError when the file cannot be written; RuntimeError when the kernel cannot translate it.
     """
-    names = clean_unique_names((solid.name for solid in solids), path.name)
+    names = clean_unique_names((step_name(solid.name) for solid in solids), path.name)
     for solid in solids:
         _require_solid(path.name, solid)
     with kernel_settings():
@@ -107,15 +107,12 @@ def kernel_settings() -> Iterator[None]:
             messenger.AddPrinter(printer)
 
 
-def encoded(name: str) -> str:
-    r"""A name in printable ASCII as ISO 10303-21 writes it: \X2\ and \X4\ for the rest, no backslash."""
-    out = []
-    for c in clean_name(name).replace("\\", "_"):
-        if " " <= c <= "~":
-            out.append(c)
-        else:
-            out.append(f"\\X2\\{ord(c):04X}\\X0\\" if ord(c) <= 0xFFFF else f"\\X4\\{ord(c):08X}\\X0\\")
-    return "".join(out)
+def step_name(name: str) -> str:
+    """A name in the printable ASCII that every reader of STEP agrees on, without its escape sign.
+
+    ISO 10303-21 can write other letters as directives, but the kernel breaks long lines inside them.
+    """
+    return ascii_name(name).replace("\\", "_")
 
 
 def _document(names: Sequence[str], shapes: Sequence[Any], title: str) -> tuple[Any, list[Any]]:
@@ -170,7 +167,7 @@ def _placed_copy(shape: Any) -> Any:
 
 
 def _set_name(label: Any, name: str) -> None:
-    TDataStd_Name.Set_s(label, TCollection_ExtendedString(encoded(name)))
+    TDataStd_Name.Set_s(label, TCollection_ExtendedString(step_name(name)))
 
 
 def _number_links(model: Any) -> None:
@@ -186,7 +183,7 @@ def _number_links(model: Any) -> None:
 def _fixed_header(model: Any, title: str) -> None:
     """Header without clock, folder or person. ISO 10303-21 asks for the fields; they may be empty."""
     header = APIHeaderSection_MakeHeader(model)
-    header.SetName(TCollection_HAsciiString(encoded(title)))
+    header.SetName(TCollection_HAsciiString(step_name(title)))
     header.SetTimeStamp(TCollection_HAsciiString("1980-01-01T00:00:00"))
     header.SetAuthorValue(1, TCollection_HAsciiString(""))
     header.SetOrganizationValue(1, TCollection_HAsciiString(""))

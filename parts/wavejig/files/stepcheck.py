@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
@@ -21,13 +22,15 @@ from OCP.XCAFDoc import XCAFDoc_ColorGen, XCAFDoc_ColorSurf, XCAFDoc_DocumentToo
 
 from wavejig.files.errors import FileCheckError
 from wavejig.files.mesh import measure
-from wavejig.files.names import clean_name
 from wavejig.files.reread import check_names
-from wavejig.files.step import Colour, NamedSolid, kernel_settings
+from wavejig.files.step import Colour, NamedSolid, kernel_settings, step_name
 
 VOLUME_TOLERANCE = 1e-6  # relative; a file keeps some 15 digits, the rest is the kernel's own repair
 BOUNDS_TOLERANCE_MM = 1e-4
 COLOUR_TOLERANCE = 1e-3
+_STRING = re.compile(rb"'(?:[^']|'')*'")
+_ENTITY = re.compile(rb"#(\d+)\s*(=?)")
+_STATEMENT = re.compile(rb"#\d+\s*=\s*\w*\s*\(.*\)", re.DOTALL)
 
 
 def check_step(path: Path, expected: Sequence[NamedSolid]) -> None:
@@ -36,18 +39,35 @@ def check_step(path: Path, expected: Sequence[NamedSolid]) -> None:
     Compared: mm as the file's unit; each part by name; valid by the kernel's check; number of solids; volume
     within 1e-6 of itself; box within 1e-4 mm; colour. Raises OSError when the file cannot be opened.
     """
-    with path.open("rb") as stream:
-        if not stream.read(13) == b"ISO-10303-21;":
-            raise FileCheckError(path, "something else", "a file that begins ISO-10303-21;")
-        stream.seek(max(13, path.stat().st_size - 64))
-        if not stream.read().rstrip().endswith(b"END-ISO-10303-21;"):
-            raise FileCheckError(path, "a file cut short", "END-ISO-10303-21; at its end")
+    _check_structure(path)
     with kernel_settings():
         parts = _read_parts(path)
-    check_names(path, set(parts), {_as_stored(solid.name) for solid in expected})
+    check_names(path, set(parts), {step_name(solid.name) for solid in expected})
     for solid in expected:
-        shape, colour = parts[_as_stored(solid.name)]
+        shape, colour = parts[step_name(solid.name)]
         _check_part(path, solid, shape, colour)
+
+
+def _check_structure(path: Path) -> None:
+    """Raise unless the text is whole: begin, end, and no entity asked for that is not there.
+
+    The kernel does not survive a file with such gaps, so they are looked for before it gets to see it.
+    """
+    data = path.read_bytes()
+    if not data.startswith(b"ISO-10303-21;"):
+        raise FileCheckError(path, "something else", "a file that begins ISO-10303-21;")
+    if not data.rstrip().endswith(b"END-ISO-10303-21;"):
+        raise FileCheckError(path, "a file cut short", "END-ISO-10303-21; at its end")
+    body = _STRING.sub(b"''", data)
+    defined = {number for number, equals in _ENTITY.findall(body) if equals}
+    missing = {number for number, _ in _ENTITY.findall(body)} - defined
+    if missing or not defined:
+        first = f"#{min(map(int, missing))}" if missing else "all"
+        raise FileCheckError(path, f"{first} of the entities missing", "every entity that is referred to")
+    statements = [part.strip() for part in body.split(b";")]
+    broken = [part for part in statements if part.startswith(b"#") and not _STATEMENT.fullmatch(part)]
+    if broken:
+        raise FileCheckError(path, f"a broken statement {broken[0][:60]!r}", "#n = NAME(...)")
 
 
 def _check_part(path: Path, expected: NamedSolid, shape: Any, colour: Colour | None) -> None:
@@ -135,7 +155,3 @@ def _colour(document: Any, label: Any) -> Colour | None:
             red, green, blue = colour.Values(Quantity_TOC_sRGB)
             return red, green, blue
     return None
-
-
-def _as_stored(name: str) -> str:
-    return clean_name(name).replace("\\", "_")

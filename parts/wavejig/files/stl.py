@@ -1,7 +1,8 @@
 """Binary STL: one closed mesh, 84 + 50 n bytes, little-endian, mm by custom (the format has no unit).
 
 Source of the layout: StereoLithography Interface Specification, 3D Systems, 1988 (from memory): 80-byte
-header, 32-bit count, then per triangle the normal, three corners (12 x 32-bit float) and two bytes of nothing.
+header, 32-bit count, then per triangle the normal, three corners (12 x 32-bit float) and two bytes of
+nothing.
 """
 
 from __future__ import annotations

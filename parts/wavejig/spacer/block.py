@@ -188,7 +188,10 @@ def _lay_out(design: Design, s: Side, arm: np.ndarray) -> tuple[_Plan, list[Faul
     for disc in in_the_way(s, float(u[span][0]), float(u[span][-1]), way):
         place = f"({disc.x_mm:.1f}, {disc.y_mm:.1f}) mm"
         faults.append(("blocked", f"meets {disc.what} at {place} on its way out"))
+    here = Columns(u=u[span])
+    low = profile.settled(here, low)
     rim = profile.without_spikes(np.maximum(low, rim_at), 3.0 * design.printer.nozzle_mm)
+    rim = profile.settled(here, np.where((rim_at <= low) & (rim - low < STEP_MM), low, rim), low)
     return (
         _Plan(span=span, low=low, rim=rim, rim_top=rim_top, spine=spine, travel=travel, pulled=pulled),
         faults,
@@ -203,7 +206,7 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
     rim_z = r.standoff_mm + RIM_ABOVE_CENTRE * r.covered_diameter_mm
     layers = [
         Layer(bottom_mm=0.0, top_mm=seat, contour=profile.above(here, p.low, p.v_out, s.frame)),
-        Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, p.rim, p.v_out, s.frame)),
+        Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, p.rim, p.v_out, s.frame, p.low)),
     ]
     length, thick, rise = GRIP_MM
     band_top = p.v_out

@@ -8,17 +8,17 @@ Lengths in mm. Imports numpy only.
 
 from __future__ import annotations
 
-import itertools
 import math
 from collections.abc import Iterable
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 
 from wavejig.geometry.plane import Contour
 
 STEP_MM = 0.05  # column width: a tenth of the finest nozzle's line
-# Nearest approach of a simplified outline to the curve it stands for; below what a printer resolves.
+# How far a smoothed outline may be off the curve it stands for; below what a printer resolves.
 _OUTLINE_ERROR_MM = 0.01
 # A jump of more than this from one column to the next is drawn as an upright edge.
 _UPRIGHT_MM = 8.0 * STEP_MM
@@ -79,7 +79,7 @@ class Columns:
     def line(self, points: np.ndarray) -> np.ndarray:
         """Greatest v of the chords through `points` in order, per column; -inf where there is none."""
         top = np.full(self.u.size, -np.inf)
-        for (u0, v0), (u1, v1) in itertools.pairwise(points.tolist()):
+        for (u0, v0), (u1, v1) in pairwise(points.tolist()):
             low, high = min(u0, u1), max(u0, u1)
             i = math.ceil((low - float(self.u[0])) / STEP_MM - 1e-9)
             j = math.floor((high - float(self.u[0])) / STEP_MM + 1e-9)
@@ -117,27 +117,68 @@ def runs(mask: np.ndarray) -> list[tuple[int, int]]:
     return [(int(a), int(b) - 1) for a, b in zip(edges[::2], edges[1::2], strict=True)]
 
 
-def above(columns: Columns, low: np.ndarray, top_mm: float, frame: Frame) -> Contour:
-    """Outline, in x and y, of what lies between the curve `low` (one v per column) and v = `top_mm`."""
+def settled(columns: Columns, curve: np.ndarray, under: np.ndarray | None = None) -> np.ndarray:
+    """The curve with its fine steps smoothed into few straights, nowhere off by more than 0.01 mm.
+
+    under: a settled curve that `curve` does not pass below. The result keeps to that, and where both
+    are the same it has the same corners, so that layers built on them share their walls.
+    """
+    u, out = columns.u, curve.copy()
+    fixed = np.zeros(u.size, dtype=bool)
+    if under is not None:
+        same = np.abs(curve - under) < 1e-9
+        bend = np.zeros(u.size, dtype=bool)
+        bend[1:-1] = np.abs(np.diff(under, 2)) > 1e-9
+        ends = same & ~(np.roll(same, 1) & np.roll(same, -1))
+        fixed = same & (bend | ends)
+    for a, b in _stretches(curve, under):
+        held = fixed[a : b + 1].copy()
+        while True:
+            keep = _corners(u[a : b + 1], curve[a : b + 1], held, _OUTLINE_ERROR_MM)
+            smooth = np.interp(u[a : b + 1], u[a : b + 1][keep], curve[a : b + 1][keep])
+            low = np.zeros(keep.size, dtype=bool) if under is None else smooth < under[a : b + 1] - 1e-9
+            if not np.any(low):
+                break
+            held |= low
+        out[a : b + 1] = smooth
+    return out
+
+
+def above(
+    columns: Columns, low: np.ndarray, top_mm: float, frame: Frame, under: np.ndarray | None = None
+) -> Contour:
+    """Outline, in x and y, of what lies between the settled curve `low` and v = `top_mm`.
+
+    under: the settled curve of the layer below, if there is one; the outline then stays within that one's.
+    """
     u, v = columns.u, low
-    points: list[tuple[float, float]] = [(float(u[0]), float(v[0]))]
-    start = 0
-    for i in np.flatnonzero(np.abs(np.diff(v)) > _UPRIGHT_MM).tolist():
-        # the upright edge stands on the side that leaves less material
-        edge = float(u[i + 1] if v[i] > v[i + 1] else u[i])
-        points += _simple(u[start : i + 1], v[start : i + 1])[1:]
-        points += [(edge, float(v[i])), (edge, float(v[i + 1])), (float(u[i + 1]), float(v[i + 1]))]
-        start = i + 1
-    points += _simple(u[start:], v[start:])[1:]
+    stretches = _stretches(low, under)
+    points: list[tuple[float, float]] = []
+    for n, (a, b) in enumerate(stretches):
+        keep = _corners(u[a : b + 1], v[a : b + 1], np.zeros(b + 1 - a, dtype=bool), 1e-7)
+        points += [(float(x), float(y)) for x, y in zip(u[a : b + 1][keep], v[a : b + 1][keep], strict=True)]
+        if n + 1 < len(stretches):
+            # the upright edge to the next stretch stands on the side that leaves less material
+            edge = float(u[b + 1] if v[b] > v[b + 1] else u[b])
+            points += [(edge, float(v[b])), (edge, float(v[b + 1]))]
     points += [(float(u[-1]), top_mm), (float(u[0]), top_mm)]
     return Contour.polygon(_without_repeats(frame.world(points)))
 
 
-def _simple(u: np.ndarray, v: np.ndarray) -> list[tuple[float, float]]:
-    """Douglas-Peucker (1973): the fewest of the points, none left out further than the outline error."""
-    keep = np.zeros(u.size, dtype=bool)
+def _stretches(curve: np.ndarray, under: np.ndarray | None) -> list[tuple[int, int]]:
+    """First and last column of each stretch without a jump, in the curve or in the one below it."""
+    jump = np.abs(np.diff(curve)) > _UPRIGHT_MM
+    if under is not None:
+        jump |= np.abs(np.diff(under)) > _UPRIGHT_MM
+    after = (np.flatnonzero(jump) + 1).tolist()
+    return list(zip([0, *after], [*(i - 1 for i in after), curve.size - 1], strict=True))
+
+
+def _corners(u: np.ndarray, v: np.ndarray, held: np.ndarray, error_mm: float) -> np.ndarray:
+    """Douglas-Peucker (1973): which points to keep, `held` among them, so that none left out is off by more."""
+    keep = held.copy()
     keep[[0, -1]] = True
-    stack = [(0, u.size - 1)]
+    stack = list(pairwise(np.flatnonzero(keep).tolist()))
     while stack:
         a, b = stack.pop()
         if b - a < 2:
@@ -145,10 +186,10 @@ def _simple(u: np.ndarray, v: np.ndarray) -> list[tuple[float, float]]:
         du, dv = u[b] - u[a], v[b] - v[a]
         away = np.abs((u[a + 1 : b] - u[a]) * dv - (v[a + 1 : b] - v[a]) * du) / math.hypot(du, dv)
         worst = int(np.argmax(away))
-        if away[worst] > _OUTLINE_ERROR_MM:
+        if away[worst] > error_mm:
             keep[a + 1 + worst] = True
             stack += [(a, a + 1 + worst), (a + 1 + worst, b)]
-    return [(float(a), float(b)) for a, b in zip(u[keep], v[keep], strict=True)]
+    return keep
 
 
 def _without_repeats(points: list[tuple[float, float]]) -> list[tuple[float, float]]:
