@@ -72,7 +72,9 @@ def render_dxf(source: Path, target: Path) -> None:
     figure = plt.figure(figsize=(11, 8))
     axes = figure.add_axes((0.0, 0.0, 1.0, 1.0))
     config = Configuration(background_policy=BackgroundPolicy.WHITE)
-    Frontend(RenderContext(document), MatplotlibBackend(axes), config=config).draw_layout(document.modelspace())
+    Frontend(RenderContext(document), MatplotlibBackend(axes), config=config).draw_layout(
+        document.modelspace()
+    )
     figure.savefig(target, dpi=100)
     plt.close(figure)
 

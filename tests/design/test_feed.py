@@ -50,7 +50,9 @@ def test_calliper_figures_replace_the_table() -> None:
     wide = design(feed={"calliper": {"rear_cutout": "14 mm", "pin_bore": "1.5 mm"}})
     assert wide.feed.connector_hole_mm == 14.0
     assert wide.feed.pin_joint == "lap"
-    assert math.dist(wide.feed.foot, wide.feed.connector_at) > math.dist(design().feed.foot, design().feed.connector_at)
+    assert math.dist(wide.feed.foot, wide.feed.connector_at) > math.dist(
+        design().feed.foot, design().feed.connector_at
+    )
 
 
 @pytest.mark.parametrize("tube", ["tube-1.2", "tube-2.2", "tube-3.6"])

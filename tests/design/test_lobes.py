@@ -51,7 +51,10 @@ def test_quad_is_one_lobe_over_the_middle(side: float, angle: float, gap: float)
 
 
 @given(
-    d=st.floats(0.8, 4.0), ratio=st.floats(14.0, 60.0), angle=st.floats(70.0, 110.0), radius=st.floats(1.5, 3.0)
+    d=st.floats(0.8, 4.0),
+    ratio=st.floats(14.0, 60.0),
+    angle=st.floats(70.0, 110.0),
+    radius=st.floats(1.5, 3.0),
 )
 def test_four_lobe_crossings_run_straight_and_keep_two_diameters(
     d: float, ratio: float, angle: float, radius: float
@@ -78,7 +81,6 @@ def test_four_lobe_crossings_run_straight_and_keep_two_diameters(
     near, _, _ = closest_approach_mm(over, under)
     assert near >= 2.0 * d
     assert near <= 2.0 * d + 2.5 * lobes.JOG_MARGIN_MM + 0.5 * d
-
 
 
 def test_a_gap_wider_than_the_lobe_is_refused() -> None:

@@ -9,7 +9,15 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from wavejig.geometry.path import Arc, Line, PathBend, PathError, closest_approach_mm, path_from_bends, round_corners
+from wavejig.geometry.path import (
+    Arc,
+    Line,
+    PathBend,
+    PathError,
+    closest_approach_mm,
+    path_from_bends,
+    round_corners,
+)
 
 bend_rows = st.lists(
     st.builds(
@@ -26,7 +34,9 @@ bend_rows = st.lists(
 
 @given(rows=bend_rows, tail=st.floats(0.5, 60.0))
 def test_bend_table_to_centreline_and_back(rows: list[PathBend], tail: float) -> None:
-    path = path_from_bends(rows, tail, start=(1.0, -2.0, 3.0), direction=(0.0, 1.0, 0.0), normal=(0.0, 0.0, 1.0))
+    path = path_from_bends(
+        rows, tail, start=(1.0, -2.0, 3.0), direction=(0.0, 1.0, 0.0), normal=(0.0, 0.0, 1.0)
+    )
     back = path.bends()
     assert len(back) == len(rows)
     for i, (want, got) in enumerate(zip(rows, back, strict=True)):
@@ -44,7 +54,9 @@ def test_bend_table_to_centreline_and_back(rows: list[PathBend], tail: float) ->
 
 @given(rows=bend_rows, tail=st.floats(0.5, 60.0))
 def test_every_arc_meets_its_neighbours_and_its_own_middle(rows: list[PathBend], tail: float) -> None:
-    path = path_from_bends(rows, tail, start=(0.0, 0.0, 0.0), direction=(1.0, 0.0, 0.0), normal=(0.0, 0.0, 1.0))
+    path = path_from_bends(
+        rows, tail, start=(0.0, 0.0, 0.0), direction=(1.0, 0.0, 0.0), normal=(0.0, 0.0, 1.0)
+    )
     for a, b in zip(path.segments[:-1], path.segments[1:], strict=True):
         assert a.end == pytest.approx(b.start, abs=1e-9)
     for arc in path.arcs:

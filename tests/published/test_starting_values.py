@@ -12,7 +12,9 @@ from tests.designs import design
 
 
 @pytest.mark.parametrize("wire", ["1 mm", "1.5 mm", "1.8 mm", "2.5 mm2", "14 AWG", "2 mm"])
-@pytest.mark.parametrize("band", [["2.39 GHz", "2.41 GHz"], ["2.400 GHz", "2.4835 GHz"], ["2.44 GHz", "2.46 GHz"]])
+@pytest.mark.parametrize(
+    "band", [["2.39 GHz", "2.41 GHz"], ["2.400 GHz", "2.4835 GHz"], ["2.44 GHz", "2.46 GHz"]]
+)
 def test_two_lobes_at_2g4_start_within_common_practice(wire: str, band: list[str]) -> None:
     d = design(wire=wire, band=band)
     assert d.radiator.side_mm is not None

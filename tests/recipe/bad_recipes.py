@@ -35,7 +35,9 @@ def below(table: str, *lines: str) -> str:
 
 Row = tuple[str, str | bytes, int, int, str, tuple[str, ...]]
 
-PATH_CORNERS = '[["0 mm", "2 mm"], ["20 mm", "22 mm"], ["40 mm", "0 mm"], ["20 mm", "-22 mm"], ["0 mm", "-2 mm"]]'
+PATH_CORNERS = (
+    '[["0 mm", "2 mm"], ["20 mm", "22 mm"], ["40 mm", "0 mm"], ["20 mm", "-22 mm"], ["0 mm", "-2 mm"]]'
+)
 
 BAD: list[Row] = [
     # -- units and numbers

@@ -52,7 +52,11 @@ def test_bad_recipe(row: Row, command: str, tmp_path: Path, capsys: pytest.Captu
 
 def test_all_faults_come_at_once(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     path = tmp_path / "bad.toml"
-    path.write_text(GOOD.replace('"1.8 mm"', "1.8").replace('"biquad"', '"bquad"').replace("quantity = 2", "quantity = -1"))
+    path.write_text(
+        GOOD.replace('"1.8 mm"', "1.8")
+        .replace('"biquad"', '"bquad"')
+        .replace("quantity = 2", "quantity = -1")
+    )
     assert main(["check", str(path)]) == 2
     told = capsys.readouterr().err
     for key in ("quantity", "radiator.family", "radiator.wire"):

@@ -4,5 +4,5 @@ A writer (`write_*`) puts one file on disk and lets an OSError through; its chec
 with a second reader and raises FileCheckError on the first thing that is not as it should be. Same input,
 same bytes: no clock, no counter of the process, no folder name gets into a file.
 
-Lengths in mm. `dxf` and `names` are free of the CAD kernel; `mesh` and `step` load it.
+Lengths in mm. `dxf`, `dxfcheck` and `names` do without the CAD kernel; the rest loads it by way of `mesh`.
 """

@@ -11,7 +11,6 @@ from typing import Any
 import numpy as np
 from ezdxf.document import Drawing as DxfDocument
 from ezdxf.filemanagement import readfile
-from ezdxf.lldxf.const import DXFError
 from ezdxf.math import bulge_to_arc
 from shapely import Polygon, STRtree
 
@@ -79,7 +78,7 @@ def _read(path: Path, version: Version) -> DxfDocument:
             raise FileCheckError(path, "a file cut short", "EOF at its end")
     try:
         document = readfile(path)
-    except (DXFError, OSError, ValueError, LookupError, TypeError, AttributeError) as err:
+    except Exception as err:  # a reader meets a broken file with whatever it stumbles over
         reason = f"{type(err).__name__}: {err}"
         raise FileCheckError(path, f"a file its reader refuses ({reason})", f"a DXF {version}") from err
     if document.dxfversion != _ACADVER[version]:

@@ -9,6 +9,7 @@ class FileCheckError(ValueError):
     """A written file read back otherwise than it should: which file, what was found, what was expected."""
 
     def __init__(self, path: Path, found: str, expected: str) -> None:
+        found = " ".join(found.split())  # readers' own messages come in several lines
         super().__init__(f"{path.name}: found {found}, expected {expected}. Path: {path}")
         self.path = path
         self.found = found

@@ -12,7 +12,7 @@ import cadquery as cq
 from OCP.BRepBuilderAPI import BRepBuilderAPI_Sewing
 from OCP.TopoDS import TopoDS
 
-from wavejig.geometry.path import Line, Path, tangent_at_start
+from wavejig.geometry.path import Line, Path, Point, tangent_at_start
 from wavejig.radiator.model import Piece
 
 
@@ -37,46 +37,33 @@ def piece_solid(piece: Piece) -> cq.Solid:
 
 
 def _sweep(path: Path, diameter_mm: float) -> cq.Solid:
-    start = cq.Vector(*path.start)
-    heading = cq.Vector(*path.start_direction())
-    disc = cq.Face.makeFromWires(cq.Wire.makeCircle(diameter_mm / 2.0, start, heading), [])
     sewing = BRepBuilderAPI_Sewing(1e-6)
-    sewing.Add(disc.wrapped)
-    edge = disc.outerWire().Edges()[0]
-    end_cap = disc
-    for segment in path.segments:
+    last = len(path.segments) - 1
+    for number, segment in enumerate(path.segments):
+        # each segment starts from a disc of its own: dragging one disc along would gather rounding, and a
+        # straight a hair off its disc's normal is no longer a cylinder to the kernel
+        heading = cq.Vector(*tangent_at_start(segment))
+        disc = cq.Face.makeFromWires(
+            cq.Wire.makeCircle(diameter_mm / 2.0, cq.Vector(*segment.start), heading), []
+        )
         if isinstance(segment, Line):
-            along = cq.Vector(*segment.end) - cq.Vector(*segment.start)
-            swept = cq.Solid.extrudeLinear(end_cap, along)
+            swept = cq.Solid.extrudeLinear(disc, heading * segment.length_mm)
         else:
             centre = cq.Vector(*segment.centre)
-            axis_end = centre + cq.Vector(*segment.normal)
-            swept = _revolved(end_cap, segment.angle_deg, centre, axis_end)
-        sides, end_cap = _sides_and_end(swept, segment, diameter_mm)
-        for side in sides:
-            sewing.Add(side.wrapped)
-    sewing.Add(end_cap.wrapped)
+            swept = cq.Solid.revolve(disc, segment.angle_deg, centre, centre + cq.Vector(*segment.normal))
+        flat = [f for f in swept.Faces() if f.geomType() == "PLANE"]
+        for side in swept.Faces():
+            if side.geomType() != "PLANE":
+                sewing.Add(side.wrapped)
+        if number == 0:
+            sewing.Add(_nearest(flat, segment.start).wrapped)
+        if number == last:
+            sewing.Add(_nearest(flat, segment.end).wrapped)
     sewing.Perform()
-    del edge
-    shell = cq.Shell(TopoDS.Shell_s(sewing.SewedShape()))
-    solid = cq.Solid.makeSolid(shell)
-    if solid.Volume() < 0:
-        solid = cq.Solid(solid.wrapped.Reversed())
-    return solid
+    solid = cq.Solid.makeSolid(cq.Shell(TopoDS.Shell_s(sewing.SewedShape())))
+    return cq.Solid(solid.wrapped.Reversed()) if solid.Volume() < 0 else solid
 
 
-def _revolved(face: cq.Face, angle_deg: float, centre: cq.Vector, axis_end: cq.Vector) -> cq.Shape:
-    return cq.Solid.revolve(face, angle_deg, centre, axis_end)
-
-
-def _sides_and_end(swept: cq.Shape, segment: object, diameter_mm: float) -> tuple[list[cq.Face], cq.Face]:
-    sides = [f for f in swept.Faces() if f.geomType() != "PLANE"]
-    caps = [f for f in swept.Faces() if f.geomType() == "PLANE"]
-    end = segment.end  # type: ignore[attr-defined]
-    cap = min(caps, key=lambda f: (f.Center() - cq.Vector(*end)).Length)
-    return sides, cap
-
-
-def start_heading(path: Path) -> tuple[float, float, float]:
-    """Unit heading at the path's start."""
-    return tangent_at_start(path.segments[0])
+def _nearest(faces: list[cq.Face], point: Point) -> cq.Face:
+    at = cq.Vector(*point)
+    return min(faces, key=lambda f: (f.Center() - at).Length)

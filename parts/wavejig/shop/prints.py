@@ -17,12 +17,14 @@ SOLDER_MELTS_C = 183.0
 def spacer_findings(design: Design, spacer: Spacer) -> Iterator[Finding]:
     """What the spacer's plan found impossible, and heat near its plastic."""
     for c in spacer.conflicts:
-        yield Finding(
-            code="spacer-conflict", severity=ERROR, message=c.message, remedy=c.remedy, where=c.key
-        )
+        yield Finding(code="spacer-conflict", severity=ERROR, message=c.message, remedy=c.remedy, where=c.key)
     for note in spacer.notes:
         yield Finding(
-            code="spacer-note", severity=NOTE, message=note, remedy="See the spacer's own remarks.", where="spacer"
+            code="spacer-note",
+            severity=NOTE,
+            message=note,
+            remedy="See the spacer's own remarks.",
+            where="spacer",
         )
     material = plastic(spacer.plastic)
     if material.glass_transition_c < SOLDER_MELTS_C:
