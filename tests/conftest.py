@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import os
+
 import pytest
 from hypothesis import HealthCheck, settings
 
@@ -22,3 +24,18 @@ def pytest_collection_modifyitems(config: pytest.Config, items: list[pytest.Item
     if skip:
         config.hook.pytest_deselected(items=skip)
         items[:] = [item for item in items if "slow" not in item.keywords]
+
+
+def pytest_terminal_summary(terminalreporter: pytest.TerminalReporter) -> None:
+    """Say how many tests were skipped for want of a program, where it cannot be overlooked."""
+    skipped = terminalreporter.stats.get("skipped", [])
+    if skipped:
+        terminalreporter.write_sep("!", f"{len(skipped)} tests skipped: see the reasons above")
+
+
+@pytest.hookimpl(trylast=True)
+def pytest_sessionfinish(session: pytest.Session) -> None:
+    """Where every program is meant to be there (WAVEJIG_NO_SKIPS is set), a skip is a failure."""
+    reporter = session.config.pluginmanager.get_plugin("terminalreporter")
+    if os.environ.get("WAVEJIG_NO_SKIPS") and reporter is not None and reporter.stats.get("skipped"):
+        session.exitstatus = pytest.ExitCode.TESTS_FAILED
