@@ -81,7 +81,13 @@ def test_every_room_is_a_folder_or_module_of_the_package() -> None:
 
 @pytest.mark.parametrize(
     "arguments",
-    [["--help"], ["check", "recipes/saltmarsh-2g4.toml"], ["new", "--schema"], ["stock"], ["stock", "metals"]],
+    [
+        ["--help"],
+        ["check", "recipes/saltmarsh-2g4.toml"],
+        ["new", "--schema"],
+        ["stock"],
+        ["stock", "metals"],
+    ],
     ids=lambda a: " ".join(a),
 )
 def test_quick_commands_load_nothing_heavy(arguments: list[str]) -> None:

@@ -18,6 +18,8 @@ if TYPE_CHECKING:
 
 OK, CANNOT_BE_MADE, WRONG_INPUT, MACHINE = 0, 1, 2, 3
 
+_OPTIONS = ("--help", "--version", "--json", "--out", "--schema")
+
 _ABOUT = """\
 From one recipe to the files, tables and figures for making equal loop antennas."""
 
@@ -59,8 +61,7 @@ class _Parser(argparse.ArgumentParser):
             message = f'no command "{words[1]}"' + (f', did you mean "{near}"?' if near else "")
         elif message.startswith("unrecognized arguments"):
             word = message.split(": ", 1)[1].split()[0]
-            known = [o for a in self._actions for o in a.option_strings]
-            near = nearest(word, known)
+            near = nearest(word, _OPTIONS)
             message += f', did you mean "{near}"?' if near else ""
         sys.stderr.write(f"wavejig: {message}\nTry: wavejig --help\n")
         raise SystemExit(WRONG_INPUT)

@@ -5,6 +5,7 @@ from __future__ import annotations
 import dataclasses
 import importlib
 import math
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
@@ -252,7 +253,7 @@ def test_damage_by_another_program_is_caught(tmp_path: Path) -> None:
         contour = space.query("LWPOLYLINE[layer=='cut']").first
         contour.set_points([(x, y, 0.0) for x, y, _ in contour.get_points("xyb")], format="xyb")
 
-    harms = {
+    harms: dict[str, Callable[[Any], Any]] = {
         "an open contour": open_contour,
         "LWPOLYLINE 1 on layer cut with": straightened,
         "2 entities on layer cut": lambda space: space.delete_entity(space.query("CIRCLE").first),

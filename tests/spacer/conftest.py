@@ -59,13 +59,13 @@ def _named(name: str) -> Antenna:
     return antenna(NAMED[name])
 
 
-@pytest.fixture
+@pytest.fixture(scope="session")
 def named() -> Callable[[str], Antenna]:
     """One of the antennas above by name, made once."""
     return _named
 
 
-@pytest.fixture
+@pytest.fixture(scope="session")
 def make() -> Callable[[dict[str, Any]], Antenna]:
     """An antenna from recipe tables."""
     return antenna

@@ -7,6 +7,7 @@ import subprocess
 import sys
 from collections.abc import Callable
 from dataclasses import replace
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -24,8 +25,6 @@ from wavejig.spacer.model import BlockPiece, Spacer
 from wavejig.spacer.plan import plan
 from wavejig.spacer.profile import Columns, Frame
 from wavejig.stock.hardware import screw
-
-from conftest import antenna  # type: ignore[import-not-found]  # isort: skip
 
 Antenna = tuple[Design, Radiator]
 OUTLINE_MM = 0.02  # outlines are smoothed by 0.01 mm, and paths sampled as finely
@@ -61,7 +60,7 @@ def check_block(design: Design, radiator: Radiator, spacer: Spacer) -> None:
         assert floor.bottom_mm == 0.0
         assert floor.top_mm == rim.bottom_mm == pytest.approx(r.standoff_mm - r.covered_diameter_mm / 2.0)
         assert rim.top_mm > r.standoff_mm
-        for below, over in zip(shapes, shapes[1:], strict=False):
+        for below, over in pairwise(shapes):
             assert over.difference(below).area < 1e-6
         # the rim never comes nearer to the wire than the printer's clearance, at rest or pulled
         for travel in np.linspace(0.0, piece.travel_mm, 12):
@@ -119,9 +118,16 @@ def test_block_of(name: str, named: Callable[[str], Antenna]) -> None:
     tube=st.booleans(),
 )
 def test_blocks_of_many_shapes(
-    family: str, side: float, angle: float, wire_mm: float, standoff: float, clearance: float, tube: bool
+    make: Callable[..., Antenna],
+    family: str,
+    side: float,
+    angle: float,
+    wire_mm: float,
+    standoff: float,
+    clearance: float,
+    tube: bool,
 ) -> None:
-    design, radiator = antenna(
+    design, radiator = make(
         {
             "radiator": {
                 "family": family,
@@ -319,7 +325,7 @@ def test_posts_stand_under_the_corners_opposite_the_feed(named: Callable[[str], 
         assert hexagon.exterior.distance(Point(x, y)) >= post.hole.diameter_mm / 2.0 + 2.0
 
 
-def with_post(named_antenna: Antenna, x: float, y: float, **radiator: float) -> Antenna:
+def with_post(named_antenna: Antenna, x: float, y: float) -> Antenna:
     design, wires = named_antenna
     return replace(design, spacer=replace(design.spacer, style="posts", posts=((x, y),))), wires
 
@@ -450,7 +456,7 @@ def test_planning_loads_no_kernel() -> None:
     code = (
         "import sys, wavejig.spacer.plan\n"
         "heavy = {'cadquery', 'OCP', 'shapely', 'trimesh', 'matplotlib', 'scipy'} & set(sys.modules)\n"
-        "sys.exit(', '.join(sorted(heavy)))"
+        "sys.exit(', '.join(sorted(heavy)) or None)"
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False)
     assert done.returncode == 0, done.stderr

@@ -9,6 +9,7 @@ exact in spite of its 1/r.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,9 +22,8 @@ Array = NDArray[np.float64]
 Index = NDArray[np.int64]
 
 
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Shapes:
-    """Geometry of n elements, as they are or mirrored. Lengths in metres.
+class Shapes(NamedTuple):
+    """Geometry of n elements, as they are or mirrored; metres. A named tuple, so that compiled loops take it.
 
     corners (n, 3, 3): segments use the first two; normal (n, 3); along, outward (n, 3, 3): unit vectors of
     the sides from corner i to i + 1; area (n,); centre (n, 3); points (n, 3, 3): far points; moments
@@ -128,7 +128,11 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     radius = np.zeros(n)
     radius[wires] = effective_radii(model)
     kind, share, corners, centre, radius = (
-        kind[order], unknowns.share[order], corners[order], centre[order], radius[order]
+        kind[order],
+        unknowns.share[order],
+        corners[order],
+        centre[order],
+        radius[order],
     )
     size = np.linalg.norm(corners - centre[:, None], axis=2)
     size = np.where(kind == SEGMENT, size[:, 0], size.max(axis=1))
@@ -191,8 +195,14 @@ def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[S
         moments[fans, 0] = _fan_moments(bary, corners[fans], share[fans])
     return (
         Shapes(
-            corners=corners, normal=normal, along=along, outward=outward, area=area, centre=centre,
-            points=points, moments=moments,
+            corners=corners,
+            normal=normal,
+            along=along,
+            outward=outward,
+            area=area,
+            centre=centre,
+            points=points,
+            moments=moments,
         ),
         weights,
     )

@@ -205,5 +205,7 @@ def _port(data: object, where: str) -> Port:
         if isinstance(value, bool) or not isinstance(value, int):
             raise ModelError("file", f"{where}.{key}: need a whole number, got {value!r}")
     return Port(
-        wire=row["wire"], end=row["end"], impedance_ohm=_number(row.get("impedance", 50.0), f"{where}.impedance")
+        wire=row["wire"],
+        end=row["end"],
+        impedance_ohm=_number(row.get("impedance", 50.0), f"{where}.impedance"),
     )

@@ -203,7 +203,10 @@ class _Finder:
         for triangle, corner in members:
             rim = {int(v) for v in self.nodes.corners[triangle]} - {node}
             joined = [g for g in groups if g[0] & rim]
-            merged = (rim.union(*(g[0] for g in joined)), sum((g[1] for g in joined), []) + [(triangle, corner)])
+            merged = (
+                rim.union(*(g[0] for g in joined)),
+                sum((g[1] for g in joined), []) + [(triangle, corner)],
+            )
             groups = [g for g in groups if not g[0] & rim] + [merged]
         return [sorted(g[1]) for g in groups]
 

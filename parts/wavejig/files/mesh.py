@@ -11,9 +11,7 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
-from OCP.Bnd import Bnd_Box
 from OCP.BRep import BRep_Tool
-from OCP.BRepBndLib import BRepBndLib
 from OCP.BRepBuilderAPI import BRepBuilderAPI_Copy
 from OCP.BRepGProp import BRepGProp
 from OCP.BRepMesh import BRepMesh_IncrementalMesh
@@ -23,6 +21,7 @@ from OCP.TopExp import TopExp_Explorer
 from OCP.TopLoc import TopLoc_Location
 from OCP.TopoDS import TopoDS
 
+from wavejig.files.box import tight_box
 from wavejig.files.errors import MeshError
 
 CHORD_ERROR_MM = 0.02  # common practice, no source: a tenth of what a desktop printer holds
@@ -142,9 +141,7 @@ def measure(shape: Any) -> Measure:
     solid, skin = GProp_GProps(), GProp_GProps()
     BRepGProp.VolumeProperties_s(shape.wrapped, solid)
     BRepGProp.SurfaceProperties_s(shape.wrapped, skin)
-    box = Bnd_Box()
-    BRepBndLib.AddOptimal_s(shape.wrapped, box, False, False)
-    return Measure(volume_mm3=solid.Mass(), area_mm2=skin.Mass(), bounds_mm=box.Get())
+    return Measure(volume_mm3=solid.Mass(), area_mm2=skin.Mass(), bounds_mm=tight_box(shape))
 
 
 def _face_triangles(name: str, face: Any) -> tuple[np.ndarray, np.ndarray]:

@@ -127,10 +127,15 @@ def _syntax_problem(err: tomllib.TOMLDecodeError, text: str) -> Problem:
     row = rows[line - 1].strip() if line <= len(rows) else ""
     reason = re.sub(r"\s*\(at .*\)$", "", message)
     reason = "".join(c if c.isprintable() else f"\\x{ord(c):02x}" for c in reason)
-    fix = f"The TOML reader says: {reason[:120]}."
-    bare = re.fullmatch(r"([A-Za-z_]\w*)\s*=\s*([^\"'\[{].*?)\s*(#.*)?", row)
-    if bare and "Cannot overwrite" not in message:
-        fix += f' Quantities and words stand in quotes: {bare[1]} = "{bare[2][:40]}".'
+    bare = re.fullmatch(r"([A-Za-z_]\w*)\s*=\s*(.*?)\s*(#.*)?", row)
+    if "Illegal character '\\n'" in reason:
+        fix = "A quote is left open on this line."
+    elif "Cannot overwrite" in reason or "Cannot declare" in reason:
+        fix = "It stands here a second time; keep one of the two."
+    elif bare and bare[2][:1] not in ("", '"', "'", "[", "{"):
+        fix = f'Quantities and words stand in quotes: {bare[1]} = "{bare[2][:40]}".'
+    else:
+        fix = f"The TOML reader says: {reason[:120]}."
     return Problem(
         key=bare[1] if bare else "(syntax)", read=show(row), allowed='TOML: key = "value"', fix=fix, line=line
     )

@@ -12,12 +12,13 @@ from wavejig.radiator.feedlegs import PlanError
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.plan import plan as plan_radiator
 from wavejig.reflector.model import Tray, TrayError
+from wavejig.reflector.tray import corner_practice
 from wavejig.reflector.tray import plan as plan_tray
 from wavejig.shop.feed import conflict_findings, feed_findings, value_findings
 from wavejig.shop.finding import ERROR, Finding
 from wavejig.shop.outdoors import outdoor_findings
 from wavejig.shop.prints import fixture_findings, spacer_findings
-from wavejig.shop.sheet import fold_material_findings, sheet_findings
+from wavejig.shop.sheet import fold_material_findings, hole_findings, sheet_findings
 from wavejig.shop.wire import wire_findings
 from wavejig.spacer.model import Spacer
 from wavejig.spacer.plan import plan as plan_spacer
@@ -43,7 +44,11 @@ class Inspection:
 def inspect(design: Design) -> Inspection:
     """Plan and judge a design. Never raises for a design that merely cannot be made."""
     radiator, tray, spacer, fixture = None, None, None, None
-    found: list[Finding] = [*conflict_findings(design), *fold_material_findings(design)]
+    found: list[Finding] = [
+        *conflict_findings(design),
+        *fold_material_findings(design),
+        *hole_findings(design),
+    ]
     try:
         radiator = plan_radiator(design)
     except PlanError as err:
@@ -51,9 +56,13 @@ def inspect(design: Design) -> Inspection:
             _cannot("radiator-cannot-be-bent", str(err), "radiator", "Change the number the message names.")
         )
     try:
-        tray = plan_tray(design.reflector)
-    except (TrayError, ValueError) as err:
-        found.append(_cannot("tray-cannot-be-folded", str(err), "reflector", "Change the tray's numbers."))
+        tray = plan_tray(design.reflector, corner_practice(design.cutter))
+    except TrayError as err:
+        # holes that meet or leave the base have been told already, with their remedy
+        if not any(f.severity == ERROR and f.where.startswith("reflector.") for f in found):
+            found.append(
+                _cannot("tray-cannot-be-folded", str(err), "reflector", "Change the tray's numbers.")
+            )
     found += feed_findings(design)
     found += value_findings(design)
     found += outdoor_findings(design)

@@ -8,6 +8,7 @@ from collections.abc import Iterator
 
 from wavejig.design.model import Design
 from wavejig.forming.sheet import minimum_hole_edge_to_bend_mm
+from wavejig.reflector.flat import flat_pattern
 from wavejig.reflector.model import Tray
 from wavejig.reflector.tray import hole_edge_to_bend_mm
 from wavejig.shop.finding import ERROR, NOTE, WARNING, Finding
@@ -21,6 +22,7 @@ def sheet_findings(design: Design, tray: Tray) -> Iterator[Finding]:
     yield from _holes(design, tray)
     yield from _cutting(design)
     yield from _stock(design, tray)
+    yield from _marks(design, tray)
 
 
 def fold_material_findings(design: Design) -> Iterator[Finding]:
@@ -36,6 +38,22 @@ def fold_material_findings(design: Design) -> Iterator[Finding]:
         )
 
 
+def hole_findings(design: Design) -> Iterator[Finding]:
+    """Said before the tray is planned: holes that run into each other or nearly so."""
+    for a, b in itertools.combinations(design.reflector.holes, 2):
+        web = math.dist((a.x_mm, a.y_mm), (b.x_mm, b.y_mm)) - (a.diameter_mm + b.diameter_mm) / 2.0
+        if web < max(design.reflector.thickness_mm, 1.0) - 1e-9:
+            yield Finding(
+                code="holes-meet" if web <= 0.0 else "web-thin",
+                severity=ERROR if web <= 0.0 else WARNING,
+                message=f"the {a.purpose} hole at ({a.x_mm:.2f}, {a.y_mm:.2f}) and the {b.purpose} hole at "
+                f"({b.x_mm:.2f}, {b.y_mm:.2f}) mm "
+                + ("run into each other" if web <= 0.0 else f"leave {web:.2f} mm between them"),
+                remedy="Move one of them, or take a smaller connector, foot or screw.",
+                where="reflector.holes",
+            )
+
+
 def _folds(design: Design, tray: Tray) -> Iterator[Finding]:
     least = design.folding.smallest_flange_mm
     for height, angle in sorted({(lip.height_mm, lip.angle_deg) for lip in tray.lips}):
@@ -48,9 +66,9 @@ def _folds(design: Design, tray: Tray) -> Iterator[Finding]:
                 remedy="Make the lips higher, use thinner sheet, or give the shop's own smallest_flange.",
                 where="reflector.lip_height",
             )
-    if not tray.lips:
-        return
     r = design.reflector
+    if not tray.lips or not r.metal.foldable:
+        return
     need = minimum_inside_radius_mm(r.metal, r.thickness_mm)
     if r.inside_radius_mm < need - 1e-9:
         yield Finding(
@@ -109,18 +127,6 @@ def _holes(design: Design, tray: Tray) -> Iterator[Finding]:
                 remedy="Move it inwards, or drill it after folding.",
                 where="reflector.holes",
             )
-    for a, b in itertools.combinations(tray.holes, 2):
-        web = math.dist((a.x_mm, a.y_mm), (b.x_mm, b.y_mm)) - (a.diameter_mm + b.diameter_mm) / 2.0
-        if web < max(r.thickness_mm, 1.0) - 1e-9:
-            yield Finding(
-                code="holes-meet" if web <= 0.0 else "web-thin",
-                severity=ERROR if web <= 0.0 else WARNING,
-                message=f"the {a.purpose} hole at ({a.x_mm:.2f}, {a.y_mm:.2f}) and the {b.purpose} hole at "
-                f"({b.x_mm:.2f}, {b.y_mm:.2f}) mm "
-                + ("run into each other" if web <= 0.0 else f"leave {web:.2f} mm between them"),
-                remedy="Move one of them, or take a smaller connector, foot or screw.",
-                where="reflector.holes",
-            )
 
 
 def _cutting(design: Design) -> Iterator[Finding]:
@@ -165,4 +171,16 @@ def _stock(design: Design, tray: Tray) -> Iterator[Finding]:
             f"{design.cutter.stock_y_mm:g} mm with {margin:g} mm of margin all round",
             remedy="Use a larger stock_sheet, or a smaller base or lower lips.",
             where="cutter.stock_sheet",
+        )
+
+
+def _marks(design: Design, tray: Tray) -> Iterator[Finding]:
+    unplaced = flat_pattern(tray, design.name).unplaced
+    if unplaced:
+        yield Finding(
+            code="marks-left-out",
+            severity=NOTE,
+            message="no room on the blank for: " + ", ".join(unplaced),
+            remedy="Write it on by hand before folding.",
+            where="reflector.blank",
         )

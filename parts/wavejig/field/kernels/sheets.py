@@ -172,37 +172,28 @@ def _fan_points(v, share, nodes, weights, pos, vec, wgt):  # type: ignore[no-unt
 
 
 @njit(**OPTIONS)
-def _one_way(  # type: ignore[no-untyped-def]
-    pos,
-    vec,
-    wgt,
-    m,
-    halves,
-    v,
-    n,
-    s,
-    u,
-    area,
-    is_fan,
-    share,
-    nodes,
-    weights,
-    bary,
-    bw,
-    far_pts,
-    far_f,
-    factor,
-    out,
-):
+def _sheet_points(v, kind, share, bary, weights, nodes, wn, pos, vec, wgt):  # type: ignore[no-untyped-def]
+    """Points on a triangle or fan triangle, their number, and how many halves they carry."""
+    if kind == 2:
+        return _fan_points(v, share, nodes, wn, pos, vec, wgt), 1
+    return _triangle_points(v, bary, weights, pos, vec, wgt), 3
+
+
+@njit(**OPTIONS)
+def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, bary, bw, factor, out):  # type: ignore[no-untyped-def]
     """Adds factor times the interaction of m observation points with one source to out (20,).
 
     out: 0..8 vector 1/R by halves, 9..17 vector R, 18 scalar 1/R, 19 scalar R, all for unit charges.
     """
+    v = src.corners[q]
+    area = src.area[q]
+    far_pts = src.points[q]
+    far_f = src.moments[q]
     for g in range(m):
         x = pos[g, 0]
         y = pos[g, 1]
         z = pos[g, 2]
-        i0, mx, my, mz = _potential(x, y, z, v, n, s, u)
+        i0, mx, my, mz = _potential(x, y, z, v, src.normal[q], src.along[q], src.outward[q])
         w = factor * wgt[g]
         out[18] += w * i0 / area
         if is_fan:
@@ -253,6 +244,47 @@ def _one_way(  # type: ignore[no-untyped-def]
 
 
 @njit(**OPTIONS)
+def _by_points(v, w, bary, bw, out):  # type: ignore[no-untyped-def]
+    """Two triangles a little apart: both by points, in moments of position about each other's corners."""
+    m = bw.size
+    xyz = np.empty((m, 3))
+    for j in range(m):
+        for c in range(3):
+            xyz[j, c] = bary[j, 0] * w[0, c] + bary[j, 1] * w[1, c] + bary[j, 2] * w[2, c]
+    for i in range(m):
+        x = bary[i, 0] * v[0, 0] + bary[i, 1] * v[1, 0] + bary[i, 2] * v[2, 0]
+        y = bary[i, 0] * v[0, 1] + bary[i, 1] * v[1, 1] + bary[i, 2] * v[2, 1]
+        z = bary[i, 0] * v[0, 2] + bary[i, 1] * v[1, 2] + bary[i, 2] * v[2, 2]
+        g0 = g1 = g2 = g3 = 0.0
+        r0 = r1 = r2 = r3 = 0.0
+        for j in range(m):
+            r = math.sqrt((x - xyz[j, 0]) ** 2 + (y - xyz[j, 1]) ** 2 + (z - xyz[j, 2]) ** 2)
+            g = bw[j] / r
+            g0 += g
+            g1 += g * xyz[j, 0]
+            g2 += g * xyz[j, 1]
+            g3 += g * xyz[j, 2]
+            g = bw[j] * r
+            r0 += g
+            r1 += g * xyz[j, 0]
+            r2 += g * xyz[j, 1]
+            r3 += g * xyz[j, 2]
+        out[18] += bw[i] * g0
+        out[19] += bw[i] * r0
+        for a in range(3):
+            fx = 0.25 * bw[i] * (x - v[a, 0])
+            fy = 0.25 * bw[i] * (y - v[a, 1])
+            fz = 0.25 * bw[i] * (z - v[a, 2])
+            for b in range(3):
+                out[3 * a + b] += (
+                    fx * (g1 - w[b, 0] * g0) + fy * (g2 - w[b, 1] * g0) + fz * (g3 - w[b, 2] * g0)
+                )
+                out[9 + 3 * a + b] += (
+                    fx * (r1 - w[b, 0] * r0) + fy * (r2 - w[b, 1] * r0) + fz * (r3 - w[b, 2] * r0)
+                )
+
+
+@njit(**OPTIONS)
 def _shared_vertices(v, w, tolerance2):  # type: ignore[no-untyped-def]
     count = 0
     for i in range(3):
@@ -281,166 +313,71 @@ def _distance(v, centre, radius):  # type: ignore[no-untyped-def]
 
 
 @njit(**OPTIONS)
-def sheet_pairs(  # type: ignore[no-untyped-def]
-    first,
-    last,
-    ps,
-    qs,
-    kind,
-    size,
-    radius,
-    centre,
-    share,
-    t_v,
-    t_n,
-    t_s,
-    t_u,
-    t_area,
-    t_pts,
-    t_f,
-    s_v,
-    s_n,
-    s_s,
-    s_u,
-    s_area,
-    s_centre,
-    s_pts,
-    s_f,
-    b3,
-    w3,
-    b7,
-    w7,
-    b16,
-    w16,
-    g4,
-    wg4,
-    g6,
-    wg6,
-    g12,
-    wg12,
-    out,
-):
+def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sources, rules, out):  # type: ignore[no-untyped-def]
     """Fills out[first:last] (pairs, 20) for pairs of which at least q is sheet; p wire, triangle or fan.
 
-    t_ arrays are the observing elements, s_ arrays the same elements or their images as sources.
+    own, sources: the observing elements' shapes, and the same or their images. rules: triangle rules of 3, 7
+    and 16 points, then Gauss rules of 4, 6 and 12 points, each as points and weights.
     """
+    b3, w3, b7, w7, b16, w16, g4, wg4, g6, wg6, g12, wg12 = rules
     pos = np.empty((192, 3))
     vec = np.zeros((192, 3, 3))
     wgt = np.empty(192)
+    flipped = np.empty(20)
     for pair in range(first, last):
         p = ps[pair]
         q = qs[pair]
         res = out[pair]
+        fan = kind[q] == 2
         if kind[p] == 0:
-            length = 2.0 * size[p]
-            near = _distance(t_v[p], s_centre[q], size[q])
-            around = 1
-            if near < 4.0 * radius[p]:
-                around = 6
-            if near > 0.53 * length:
-                m = _tube_points(t_v[p], radius[p], s_centre[q], g4, wg4, around, pos, vec, wgt)
+            near = _distance(own.corners[p], sources.centre[q], size[q])
+            around = 6 if near < 4.0 * radius[p] else 1
+            if near > 1.0531 * size[p]:
+                nodes, weights = g4, wg4
             elif near > 0.0:
-                m = _tube_points(t_v[p], radius[p], s_centre[q], g6, wg6, around, pos, vec, wgt)
+                nodes, weights = g6, wg6
             else:
-                m = _tube_points(t_v[p], radius[p], s_centre[q], g12, wg12, around, pos, vec, wgt)
-            _one_way(
-                pos,
-                vec,
-                wgt,
-                m,
-                2,
-                s_v[q],
-                s_n[q],
-                s_s[q],
-                s_u[q],
-                s_area[q],
-                kind[q] == 2,
-                share[q],
-                g12,
-                wg12,
-                b3,
-                w3,
-                s_pts[q],
-                s_f[q],
-                1.0,
-                res,
-            )
+                nodes, weights = g12, wg12
+            m = _tube_points(own.corners[p], radius[p], sources.centre[q], nodes, weights, around, pos, vec, wgt)
+            _one_way(pos, vec, wgt, m, 2, sources, q, fan, share[q], g12, wg12, b3, w3, 1.0, res)
             continue
-        touching = _shared_vertices(t_v[p], s_v[q], 1e-12 * size[p] * size[q])
+        touching = _shared_vertices(own.corners[p], sources.corners[q], 1e-12 * size[p] * size[q])
+        if touching == 0 and kind[p] == 1 and kind[q] == 1:
+            d2 = 0.0
+            for c in range(3):
+                d2 += (own.centre[p, c] - sources.centre[q, c]) ** 2
+            if d2 > (0.9731 * (size[p] + size[q])) ** 2:
+                _by_points(own.corners[p], sources.corners[q], b7, w7, res)
+                continue
+        itself = direct and p == q
         ratio = size[p] / size[q]
-        # which side is observed: the smaller one, both for sizes alike (no dependence on numbering)
-        for way in range(2):
-            if way == 0 and ratio > 1.4737:
-                continue
-            if way == 1 and ratio * 1.4737 < 1.0:
-                continue
-            itself = direct and p == q
-            if itself and way == 1:
-                continue
-            factor = 1.0 if (itself or ratio > 1.4737 or ratio * 1.4737 < 1.0) else 0.5
-            o = p if way == 0 else q
-            ov = t_v[p] if way == 0 else s_v[q]
-            halves = 1 if kind[o] == 2 else 3
-            if kind[o] == 2:
-                m = _fan_points(ov, share[o], g4, wg4, pos, vec, wgt)
-            elif touching == 3:
-                m = _triangle_points(ov, b16, w16, pos, vec, wgt)
-            elif touching > 0:
-                m = _triangle_points(ov, b7, w7, pos, vec, wgt)
-            else:
-                m = _triangle_points(ov, b3, w3, pos, vec, wgt)
-            rays, wr = (g12, wg12) if touching > 0 else (g4, wg4)
-            bb, bw = (b7, w7) if touching > 0 else (b3, w3)
-            if way == 0:
-                _one_way(
-                    pos,
-                    vec,
-                    wgt,
-                    m,
-                    halves,
-                    s_v[q],
-                    s_n[q],
-                    s_s[q],
-                    s_u[q],
-                    s_area[q],
-                    kind[q] == 2,
-                    share[q],
-                    rays,
-                    wr,
-                    bb,
-                    bw,
-                    s_pts[q],
-                    s_f[q],
-                    factor,
-                    res,
-                )
-            else:
-                flipped = np.zeros(20)
-                _one_way(
-                    pos,
-                    vec,
-                    wgt,
-                    m,
-                    halves,
-                    t_v[p],
-                    t_n[p],
-                    t_s[p],
-                    t_u[p],
-                    t_area[p],
-                    kind[p] == 2,
-                    share[p],
-                    rays,
-                    wr,
-                    bb,
-                    bw,
-                    t_pts[p],
-                    t_f[p],
-                    factor,
-                    flipped,
-                )
-                for a in range(3):
-                    for b in range(3):
-                        res[3 * a + b] += flipped[3 * b + a]
-                        res[9 + 3 * a + b] += flipped[9 + 3 * b + a]
-                res[18] += flipped[18]
-                res[19] += flipped[19]
+        # observed on the smaller one, on both in turn if alike: nothing depends on the numbering
+        uneven = ratio > 1.4737 or ratio * 1.4737 < 1.0
+        factor = 1.0 if itself or uneven else 0.5
+        rays, wr = (g12, wg12) if touching > 0 else (g4, wg4)
+        inner, wi = b7, w7
+        outer, wo = b7, w7
+        if touching > 1:
+            outer, wo = b16, w16
+        if not (uneven and ratio > 1.0):
+            m, halves = _sheet_points(own.corners[p], kind[p], share[p], outer, wo, g4, wg4, pos, vec, wgt)
+            _one_way(pos, vec, wgt, m, halves, sources, q, fan, share[q], rays, wr, inner, wi, factor, res)
+        if itself:
+            for a in range(halves):
+                for b in range(a):
+                    for at in (0, 9):
+                        mean = 0.5 * (res[at + 3 * a + b] + res[at + 3 * b + a])
+                        res[at + 3 * a + b] = mean
+                        res[at + 3 * b + a] = mean
+        elif not (uneven and ratio < 1.0):
+            flipped[:] = 0.0
+            m, halves = _sheet_points(sources.corners[q], kind[q], share[q], outer, wo, g4, wg4, pos, vec, wgt)
+            _one_way(
+                pos, vec, wgt, m, halves, own, p, kind[p] == 2, share[p], rays, wr, inner, wi, factor, flipped
+            )
+            for a in range(3):
+                for b in range(3):
+                    res[3 * a + b] += flipped[3 * b + a]
+                    res[9 + 3 * a + b] += flipped[9 + 3 * b + a]
+            res[18] += flipped[18]
+            res[19] += flipped[19]

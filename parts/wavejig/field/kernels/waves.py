@@ -28,11 +28,36 @@ def _sin_cos(x):  # type: ignore[no-untyped-def]
     q = r * r
     s = r * (
         1.0
-        + q * (-1.0 / 6.0 + q * (1.0 / 120.0 + q * (-1.0 / 5040.0 + q * (1.0 / 362880.0
-        + q * (-1.0 / 39916800.0 + q * (1.0 / 6227020800.0 - q / 1307674368000.0))))))
+        + q
+        * (
+            -1.0 / 6.0
+            + q
+            * (
+                1.0 / 120.0
+                + q
+                * (
+                    -1.0 / 5040.0
+                    + q
+                    * (
+                        1.0 / 362880.0
+                        + q * (-1.0 / 39916800.0 + q * (1.0 / 6227020800.0 - q / 1307674368000.0))
+                    )
+                )
+            )
+        )
     )
-    c = 1.0 + q * (-0.5 + q * (1.0 / 24.0 + q * (-1.0 / 720.0 + q * (1.0 / 40320.0
-        + q * (-1.0 / 3628800.0 + q * (1.0 / 479001600.0 - q / 87178291200.0))))))
+    c = 1.0 + q * (
+        -0.5
+        + q
+        * (
+            1.0 / 24.0
+            + q
+            * (
+                -1.0 / 720.0
+                + q * (1.0 / 40320.0 + q * (-1.0 / 3628800.0 + q * (1.0 / 479001600.0 - q / 87178291200.0)))
+            )
+        )
+    )
     quarter = n - 4.0 * math.floor(n * 0.25)
     odd = quarter - 2.0 * math.floor(quarter * 0.5)
     sign_s = 1.0 - 2.0 * math.floor(quarter * 0.5)
@@ -56,9 +81,29 @@ def _green(k, x, y, z, sx, sy, sz, near, tiny2, gr, gi):  # type: ignore[no-unty
 
 @njit(**OPTIONS)
 def fill_rows(  # type: ignore[no-untyped-def]
-    k, factor, tiny2, members, row_first, row_last,
-    t_pts, t_f, t_w, t_q, s_pts, s_f, s_w, s_q,
-    hptr, hunk, hcoef, nptr, nother, npair, nflip, near_out, z,
+    k,
+    factor,
+    tiny2,
+    members,
+    row_first,
+    row_last,
+    t_pts,
+    t_f,
+    t_w,
+    t_q,
+    s_pts,
+    s_f,
+    s_w,
+    s_q,
+    hptr,
+    hunk,
+    hcoef,
+    nptr,
+    nother,
+    npair,
+    nflip,
+    near_out,
+    z,
 ):
     """Adds factor times the interactions of the member elements' rows in [row_first, row_last) to z.
 
@@ -94,8 +139,19 @@ def fill_rows(  # type: ignore[no-untyped-def]
             ei[:] = 0.0
             for i in range(3):
                 for j in range(3):
-                    _green(k, t_pts[p, i, 0], t_pts[p, i, 1], t_pts[p, i, 2], s_pts[j, 0, lo:hi],
-                           s_pts[j, 1, lo:hi], s_pts[j, 2, lo:hi], near[lo:hi], tiny2, gr[i, j], gi[i, j])
+                    _green(
+                        k,
+                        t_pts[p, i, 0],
+                        t_pts[p, i, 1],
+                        t_pts[p, i, 2],
+                        s_pts[j, 0, lo:hi],
+                        s_pts[j, 1, lo:hi],
+                        s_pts[j, 2, lo:hi],
+                        near[lo:hi],
+                        tiny2,
+                        gr[i, j],
+                        gi[i, j],
+                    )
                     wi = t_w[p, i]
                     wj = s_w[j, lo:hi]
                     for q in range(m):

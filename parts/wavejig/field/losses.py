@@ -1,0 +1,157 @@
+"""Losses and sleeves: impedance along wires and over sheets, added to the matrix where halves overlap.
+
+Surface impedance (1 + j) Rs with Rs = sqrt(pi f mu0 / sigma) (smooth metal much thicker than its skin
+depth; any text, e.g. Ramo, Whinnery and Van Duzer). A wire's current is even round it: Zs / (2 pi a) per
+metre. A sheet's current is the sum of its two faces'; all of it is taken to flow on one, which is nearly so
+for a reflector and never too low for it. An insulated wire has the sleeve's inductance,
+(mu0 / 2 pi)(1 - 1/er) ln(b/a) per metre: Richmond and Newman, Radio Science 11 (1976), from memory,
+re-derived; its capacitance is in the kernel's equivalent radius.
+"""
+
+from __future__ import annotations
+
+import math
+
+import numpy as np
+from numpy.typing import NDArray
+
+from wavejig.field.elements import Elements
+from wavejig.field.model import Insulation, Model
+from wavejig.field.quadrature import triangle_rule, unit_rule
+from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE
+from wavejig.field.units import MU_0_H_PER_M
+
+Array = NDArray[np.float64]
+Complex = NDArray[np.complex128]
+Index = NDArray[np.int64]
+
+
+def surface_resistance_ohm(frequency_hz: float, conductivity_s_per_m: float) -> float:
+    """Rs of smooth thick metal, ohm per square."""
+    return math.sqrt(math.pi * frequency_hz * MU_0_H_PER_M / conductivity_s_per_m)
+
+
+def sleeve_inductance_h_per_m(radius_m: float, insulation: Insulation) -> float:
+    """Inductance per metre that an insulating sleeve adds to a wire of its equivalent radius."""
+    ratio = insulation.outer_radius_m / radius_m
+    return MU_0_H_PER_M / (2.0 * math.pi) * (1.0 - 1.0 / insulation.permittivity) * math.log(ratio)
+
+
+def loss_rows(model: Model, elements: Elements, frequency_hz: float) -> tuple[Index, Index, Complex]:
+    """Entries (row, column, ohm) to add to the impedance matrix; repeated entries add up."""
+    series = _series_ohm_per_m(model, elements, frequency_hz)
+    sheet = 0.0 + 0.0j
+    if model.sheet_conductivity_s_per_m is not None:
+        sheet = (1.0 + 1.0j) * surface_resistance_ohm(frequency_hz, model.sheet_conductivity_s_per_m)
+    halves: list[tuple[Array, Array, Complex]] = []
+    wires = np.flatnonzero((elements.kind == SEGMENT) & (series != 0.0))
+    length = 2.0 * elements.size_m[wires]
+    for a in range(2):
+        for b in range(2):
+            overlap = length / (3.0 if a == b else 6.0)
+            halves.append((3.0 * wires + a, 3.0 * wires + b, series[wires] * overlap))
+    if sheet != 0.0:
+        halves += [(a, b, sheet * g) for a, b, g in _sheet_overlaps(model, elements)]
+    if not halves:
+        nothing = np.zeros(0, dtype=np.int64)
+        return nothing, nothing, np.zeros(0, dtype=np.complex128)
+    first = np.concatenate([h[0] for h in halves]).astype(np.int64)
+    second = np.concatenate([h[1] for h in halves]).astype(np.int64)
+    return _to_unknowns(elements, first, second, np.concatenate([h[2] for h in halves]))
+
+
+def _series_ohm_per_m(model: Model, elements: Elements, frequency_hz: float) -> Complex:
+    per_wire = np.zeros(max(len(model.wires), 1), dtype=np.complex128)
+    for i, w in enumerate(model.wires):
+        if w.conductivity_s_per_m is not None:
+            rs = surface_resistance_ohm(frequency_hz, w.conductivity_s_per_m)
+            per_wire[i] += (1.0 + 1.0j) * rs / (2.0 * math.pi * w.radius_m)
+        if w.insulation is not None:
+            per_wire[i] += 2.0j * math.pi * frequency_hz * sleeve_inductance_h_per_m(w.radius_m, w.insulation)
+    series = np.zeros(len(elements.kind), dtype=np.complex128)
+    wires = elements.kind == SEGMENT
+    series[wires] = per_wire[elements.source[wires]]
+    return series
+
+
+def _sheet_overlaps(model: Model, elements: Elements) -> list[tuple[Array, Array, Array]]:
+    """Integrals of current times current over each triangle: flat shapes and fans, (half, half, value)."""
+    rows = []
+    plain = np.flatnonzero(elements.kind == TRIANGLE)
+    bary, weights = triangle_rule(2)
+    corners = elements.shapes.corners[plain]
+    points = np.einsum("ij,njk->nik", bary, corners)
+    arms = (points[:, None] - corners[:, :, None]) / (2.0 * elements.shapes.area[plain])[:, None, None, None]
+    gram = np.einsum("naik,nbik,i,n->nab", arms, arms, weights, elements.shapes.area[plain])
+    for a in range(3):
+        for b in range(3):
+            rows.append((3.0 * plain + a, 3.0 * plain + b, gram[:, a, b]))
+    of_triangle = dict(zip(elements.source[plain].tolist(), plain.tolist(), strict=True))
+    by_source: dict[int, list[int]] = {}
+    for fan in np.flatnonzero(elements.kind == FAN).tolist():
+        by_source.setdefault(int(elements.source[fan]), []).append(fan)
+    for source, fans in by_source.items():
+        whole = of_triangle[source]
+        for fan in fans:
+            foot = _foot_radius(model, elements.shapes.corners[fan, 0])
+            own = _fan_overlap(elements, fan, foot)
+            rows.append(_row(3 * fan, 3 * fan, own))
+            for a in range(3):
+                cross = _fan_with(
+                    elements, fan, elements.shapes.corners[whole, a], elements.shapes.area[whole]
+                )
+                rows += [_row(3 * fan, 3 * whole + a, cross), _row(3 * whole + a, 3 * fan, cross)]
+    return rows
+
+
+def _row(first: int, second: int, value: float) -> tuple[Array, Array, Array]:
+    return np.array([float(first)]), np.array([float(second)]), np.array([value])
+
+
+def _foot_radius(model: Model, at: Array) -> float:
+    """Radius of the wire that stands at a point of the sheet: inside it the sheet carries nothing."""
+    best = min(
+        model.wires,
+        key=lambda w: min(
+            float(np.sum((np.array(w.start) - at) ** 2)), float(np.sum((np.array(w.end) - at) ** 2))
+        ),
+    )
+    return best.radius_m
+
+
+def _fan_overlap(elements: Elements, fan: int, foot: float) -> float:
+    """The fan's current with itself, from the wire's surface out: (share^2 / 2A) |e|^2 (1 - u^2)^2 / u."""
+    v = elements.shapes.corners[fan]
+    nodes, weights = unit_rule(6)
+    total = 0.0
+    for t, w in zip(nodes, weights, strict=True):
+        e2 = float(np.sum(((1.0 - t) * v[1] + t * v[2] - v[0]) ** 2))
+        u = min(foot / math.sqrt(e2), 0.9)
+        total += w * e2 * (-math.log(u) - (1.0 - u**2) + (1.0 - u**4) / 4.0)
+    return float(elements.share[fan] ** 2 * total / (2.0 * elements.shapes.area[fan]))
+
+
+def _fan_with(elements: Elements, fan: int, corner: Array, area: float) -> float:
+    """The fan's current with the triangle's flow from one of its corners."""
+    v = elements.shapes.corners[fan]
+    nodes, weights = unit_rule(4)
+    total = 0.0
+    for t, wt in zip(nodes, weights, strict=True):
+        e = (1.0 - t) * v[1] + t * v[2] - v[0]
+        for u, wu in zip(nodes, weights, strict=True):
+            total += wt * wu * (1.0 - u * u) * float(e @ (v[0] + u * e - corner))
+    return float(elements.share[fan] * total / (2.0 * area))
+
+
+def _to_unknowns(
+    elements: Elements, first: Index, second: Index, value: Complex
+) -> tuple[Index, Index, Complex]:
+    start = elements.half_start
+    a_count, b_count = start[first + 1] - start[first], start[second + 1] - start[second]
+    many = a_count * b_count
+    pair = np.repeat(np.arange(len(first)), many)
+    step = np.arange(len(pair)) - np.repeat(np.cumsum(many) - many, many)
+    a = start[first][pair] + step // b_count[pair]
+    b = start[second][pair] + step % b_count[pair]
+    scale = elements.half_coefficient[a] * elements.half_coefficient[b]
+    return elements.half_unknown[a], elements.half_unknown[b], value[pair] * scale
