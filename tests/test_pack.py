@@ -94,9 +94,8 @@ def test_design_json_keeps_the_contract_s_keys(data: dict[str, Any]) -> None:
 
 def test_bend_table_csv_alone_rebuilds_the_centreline(saltmarsh: Path, data: dict[str, Any]) -> None:
     """From the printed three digits, walked from the start of the centreline, to within a hundredth."""
-    rows = [
-        r for r in csv.DictReader((saltmarsh / "radiator/bend-table.csv").open(newline="")) if r["piece"] == "main"
-    ]
+    with (saltmarsh / "radiator/bend-table.csv").open(newline="") as stream:
+        rows = [r for r in csv.DictReader(stream) if r["piece"] == "main"]
     wire = data["radiator"]
     d = float(rows[0]["wire_diameter_mm"])
     first, second = wire["centreline"][0], wire["centreline"][1]

@@ -12,13 +12,15 @@ import numpy as np
 from numpy.typing import NDArray
 
 from wavejig.field.elements import Elements, Shapes
-from wavejig.field.kernels.waves import fill_rows
+from wavejig.field.kernels.waves import BLOCK, add_transpose, fill_rows
 from wavejig.field.losses import loss_rows
 from wavejig.field.model import Model
 from wavejig.field.statics import Statics, make_statics
-from wavejig.field.threads import count, in_shares
+from wavejig.field.threads import count, in_shares, side_by_side
 from wavejig.field.units import ETA_OHM, wavenumber
 
+Array = NDArray[np.float64]
+Index = NDArray[np.int64]
 Matrix = NDArray[np.complex128]
 
 
@@ -49,49 +51,55 @@ def impedance_matrix(
     size = elements.unknowns
     k = wavenumber(frequency_hz)
     z = np.zeros((size, size), dtype=np.complex128)
-    own = elements.shapes
+    observers = (elements.shapes.points, elements.shapes.moments, elements.weights, elements.charges)
     span = float(np.max(elements.size_m))
     owners = np.repeat(np.arange(len(elements.kind) * 3), np.diff(elements.half_start)) // 3
 
+    halves = (elements.half_start, elements.half_unknown, elements.half_coefficient)
+    cuts = _even_shares(owners, elements.half_unknown, size)
     for p in passes:
-        s = p.shapes
-        by_point = np.ascontiguousarray(np.transpose(s.points, (1, 2, 0)))
-        by_half = np.ascontiguousarray(np.transpose(s.moments, (1, 2, 3, 0)))
-        weights = np.ascontiguousarray(elements.weights.T)
-        charges = np.ascontiguousarray(elements.charges.T)
-        near = p.statics
+        t = p.statics
+        near_by = (t.start, t.other, t.pair, t.flip, t.integrals)
+        blocks = _blocks(elements, p.shapes)
+        factor = p.sign * k * ETA_OHM / (4.0 * np.pi)
 
         def rows(first: int, last: int) -> None:
             inside = (elements.half_unknown >= first) & (elements.half_unknown < last)
             members = np.unique(owners[inside])
             fill_rows(
-                k,
-                p.sign * k * ETA_OHM / (4.0 * np.pi),
-                (1e-12 * span) ** 2,
-                members,
-                first,
-                last,
-                own.points,
-                own.moments,
-                elements.weights,
-                elements.charges,
-                by_point,
-                by_half,
-                weights,
-                charges,
-                elements.half_start,
-                elements.half_unknown,
-                elements.half_coefficient,
-                near.start,
-                near.other,
-                near.pair,
-                near.flip,
-                near.integrals,
-                z,
+                k, factor, (1e-12 * span) ** 2, members, first, last, observers, blocks, halves, near_by, z
             )
 
-        in_shares(rows, size)
+        side_by_side(rows, cuts)
+    in_shares(lambda first, last: add_transpose(first, last, z), (size + 31) // 32)
     if losses:
         row, column, value = loss_rows(model, elements, frequency_hz)
         np.add.at(z, (row, column), value)
     return z
+
+
+def _blocks(elements: Elements, shapes: Shapes) -> tuple[Array, Array, Array, Array]:
+    """The sources in blocks, element last, the last block padded with elements that carry nothing."""
+    n = len(elements.kind)
+    count = -(-n // BLOCK)
+
+    def blocked(array: Array) -> Array:
+        padded = np.zeros((count * BLOCK, *array.shape[1:]))
+        padded[:n] = array
+        return np.moveaxis(padded.reshape(count, BLOCK, *array.shape[1:]), 1, -1)
+
+    return (
+        np.ascontiguousarray(blocked(shapes.points)).reshape(count, 3, 3 * BLOCK),
+        np.ascontiguousarray(blocked(shapes.moments).swapaxes(2, 3)).reshape(count, 3, 9 * BLOCK),
+        np.ascontiguousarray(blocked(elements.weights)).reshape(count, 3 * BLOCK),
+        np.ascontiguousarray(blocked(elements.charges)),
+    )
+
+
+def _even_shares(owners: Index, unknown: Index, size: int) -> list[int]:
+    """Cuts of the rows such that each share is as much work: an element meets only those after it."""
+    work = np.zeros(size)
+    np.add.at(work, unknown, (owners.max() + 1.0) - owners)
+    done = np.concatenate([[0.0], np.cumsum(work)])
+    shares = min(count(), max(1, size // 64))
+    return [int(np.searchsorted(done, done[-1] * i / shares)) for i in range(shares)] + [size]

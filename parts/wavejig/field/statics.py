@@ -91,8 +91,19 @@ def _sheet(
 
     def work(first: int, last: int) -> None:
         sheet_pairs(
-            first, last, direct, ps, qs, elements.kind, elements.size_m, elements.radius_m, elements.share,
-            elements.shapes, sources, rules, out,
+            first,
+            last,
+            direct,
+            ps,
+            qs,
+            elements.kind,
+            elements.size_m,
+            elements.radius_m,
+            elements.share,
+            elements.shapes,
+            sources,
+            rules,
+            out,
         )
 
     in_shares(work, len(which))

@@ -4,8 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from concurrent.futures import ThreadPoolExecutor
+from itertools import pairwise
 
-LEAST = 64  # items below which a second thread costs more than it saves
+LEAST = 8  # items below which a second thread costs more than it saves
 
 
 def count() -> int:
@@ -16,12 +17,16 @@ def count() -> int:
 
 
 def in_shares(work: Callable[[int, int], None], items: int) -> None:
-    """Call work(first, last) for shares of range(items), side by side; work must release the interpreter."""
+    """Call work(first, last) for equal shares of range(items), side by side."""
     shares = min(count(), max(1, items // LEAST))
-    if shares <= 1:
-        if items:
-            work(0, items)
-        return
-    cuts = [items * i // shares for i in range(shares + 1)]
-    with ThreadPoolExecutor(shares) as pool:
-        list(pool.map(work, cuts[:-1], cuts[1:]))
+    side_by_side(work, [items * i // shares for i in range(shares + 1)])
+
+
+def side_by_side(work: Callable[[int, int], None], cuts: list[int]) -> None:
+    """Call work(cut, next cut) for each share; work must release the interpreter to gain from it."""
+    shares = [(first, last) for first, last in pairwise(cuts) if last > first]
+    if len(shares) == 1:
+        work(*shares[0])
+    elif shares:
+        with ThreadPoolExecutor(len(shares)) as pool:
+            list(pool.map(lambda share: work(*share), shares))

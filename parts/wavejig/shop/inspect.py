@@ -6,8 +6,8 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from wavejig.design.model import Design
-from wavejig.fixture import stations as fixture_plan
 from wavejig.fixture.model import Fixture
+from wavejig.fixture.plan import plan as plan_fixture
 from wavejig.radiator.feedlegs import PlanError
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.plan import plan as plan_radiator
@@ -72,7 +72,7 @@ def inspect(design: Design) -> Inspection:
         found += wire_findings(design, radiator)
         spacer = plan_spacer(design, radiator)
         found += spacer_findings(design, spacer)
-        fixture = fixture_plan.plan(design, radiator)
+        fixture = plan_fixture(design, radiator)
         found += fixture_findings(design, fixture)
     return Inspection(
         design=design,

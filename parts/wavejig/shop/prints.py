@@ -50,7 +50,25 @@ def spacer_findings(design: Design, spacer: Spacer) -> Iterator[Finding]:
 
 def fixture_findings(design: Design, fixture: Fixture) -> Iterator[Finding]:
     """What the fixture's plan found impossible or awkward."""
-    for c in getattr(fixture, "conflicts", ()):
+    for c in fixture.conflicts:
         yield Finding(
             code="fixture-conflict", severity=ERROR, message=c.message, remedy=c.remedy, where=c.key
+        )
+    for note in fixture.notes:
+        yield Finding(
+            code="fixture-note",
+            severity=NOTE,
+            message=note,
+            remedy="Write or hold it by hand.",
+            where="fixture",
+        )
+    tiles = {p.name: len(p.tiles) for p in (fixture.board, fixture.nest) if len(p.tiles) > 1}
+    for name, count in tiles.items():
+        yield Finding(
+            code="fixture-tiled",
+            severity=NOTE,
+            message=f"the {name} is larger than the {design.printer.bed_x_mm:g} x {design.printer.bed_y_mm:g} mm bed "
+            f"and prints as {count} keyed tiles",
+            remedy="Join them on a flat table; a drop of glue in the keys keeps them there.",
+            where="printer.bed",
         )

@@ -28,7 +28,7 @@ Fault = tuple[str, str]  # what fails (a key of `plan`'s remedies), and the numb
 ARM_DEPTHS = (0.5, 0.44, 0.38, 0.32, 0.26, 0.2, 0.15, 0.1)  # share of a hump's height arms reach down
 CARRY_WIDTH_MM = (4.0, 12.0)  # least and greatest reach of an arm beyond the wire it meets first
 ARM_GAP_MM = 4.0  # arms nearer to each other than this become one
-SPINE_MM = 12.0  # wanted width: room for a grip and for lettering
+SPINE_MM = 13.0  # wanted width: room for a grip and for lettering
 BRACE_MM = 6.0  # least width of the spine below the wire; above it the rim may be narrower
 LIFT_PLAY_MM = 0.5  # beyond the wire before the piece is lifted
 RIM_ABOVE_CENTRE = 0.3  # rim's top above the wire's centre, in diameters: half a wire to clip down on
@@ -209,15 +209,16 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, p.rim, p.v_out, s.frame, p.low)),
     ]
     length, thick, rise = GRIP_MM
-    band_top = p.v_out
-    if p.spine >= thick + marks.LEAST_BAND_MM:
-        band_top = p.v_out - thick
+    # the flat top: beyond every rim, and beyond keep-outs that reach into the spine
+    band_low, band_top = float(p.rim.max()), p.v_out
+    if band_top - band_low >= thick + marks.LEAST_BAND_MM:
+        band_top -= thick
         half, middle = min(length, 0.6 * (end - start)) / 2.0, (start + end) / 2.0
         corners = [(middle - half, band_top), (middle + half, band_top)]
         corners += [(middle + half, p.v_out), (middle - half, p.v_out)]
         grip = Contour.polygon(s.frame.world(corners))
         layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + rise, contour=grip))
-    band = (start, end, p.rim_top, band_top)
+    band = (start, end, band_low, band_top)
     text, strokes = marks.piece_marks(name, design.name, r.standoff_mm, band, s.frame)
     return BlockPiece(
         name=name,

@@ -9,10 +9,12 @@ from wavejig.spacer.profile import Frame
 # Common practice, no source: what a 0.4 mm nozzle shows clearly.
 LINE_MM = 0.6
 DEPTH_MM = 0.6
-LEAST_TEXT_MM = 2.6
+LEAST_TEXT_MM = 2.5
 MOST_TEXT_MM = 5.0
-EDGE_MM = 0.9  # between lettering and an edge
+EDGE_MM = 0.7  # between lettering and an edge
+LEADING_MM = 0.9  # between two lines, groove to groove
 LEAST_BAND_MM = LEAST_TEXT_MM + LINE_MM + 2.0 * EDGE_MM
+_ARROW = 0.9  # width of the arrow's box beside the first line, in text heights
 
 
 def piece_marks(
@@ -22,30 +24,41 @@ def piece_marks(
     band: tuple[float, float, float, float],
     frame: Frame,
 ) -> tuple[str, tuple[Stroke, ...]]:
-    """The text and its strokes in x, y, with an arrow along the pull.
+    """The text (lines apart by " / ") and its strokes in x, y, with an arrow along the pull.
 
-    band: u from, u to, v from, v to of the flat top. The longest of "A name 15.35 mm", "A 15.35 mm" and
-    "A" that fits at a legible height is written; none where not even the letter fits.
+    band: u from, u to, v from, v to of the flat top. Of letter, name and standoff as much is written as
+    fits at a legible height, in one line or two; nothing where not even the letter fits.
     """
     u0, u1, v0, v1 = band
     letter = piece_name.rsplit("-", 1)[-1].upper()
-    most = min(MOST_TEXT_MM, v1 - v0 - 2.0 * EDGE_MM - LINE_MM)
-    room = u1 - u0 - 2.0 * EDGE_MM - LINE_MM
     size = f"{round(standoff_mm, 2):g} mm"
-    for text in (f"{letter} {recipe_name} {size}", f"{letter} {size}", letter):
-        wide = lettering.text_width_mm(text, 1.0) + 0.9  # an arrow's box beside it
-        height = min(most, room / wide)
+    tall = v1 - v0 - 2.0 * EDGE_MM - LINE_MM
+    room = u1 - u0 - 2.0 * EDGE_MM - LINE_MM
+    for lines in (
+        (f"{letter} {recipe_name} {size}",),
+        (f"{letter} {size}", recipe_name),
+        (letter, size),
+        (f"{letter} {size}",),
+        (letter,),
+    ):
+        gaps = (len(lines) - 1) * (LEADING_MM + LINE_MM)
+        widths = [lettering.text_width_mm(line, 1.0) for line in lines]
+        widths[0] += _ARROW
+        height = min(MOST_TEXT_MM, (tall - gaps) / len(lines), room / max(widths))
         if height >= LEAST_TEXT_MM - 1e-9:
             break
     else:
         return "", ()
-    left = (u0 + u1) / 2.0 - wide * height / 2.0
-    base = (v0 + v1) / 2.0 - height / 2.0
-    chains = [s.points for s in lettering.strokes(text, height, x_mm=left, y_mm=base)]
-    tip = left + (wide - 0.3) * height
-    chains.append(((tip, base), (tip, base + height)))
-    wing = 0.3 * height
-    chains.append(
-        ((tip - wing, base + height - wing), (tip, base + height), (tip + wing, base + height - wing))
-    )
-    return text, tuple(Stroke(points=tuple(frame.world(chain))) for chain in chains)
+    pitch = height + LEADING_MM + LINE_MM
+    chains: list[tuple[tuple[float, float], ...]] = []
+    top = (v0 + v1) / 2.0 + (height + (len(lines) - 1) * pitch) / 2.0
+    for number, (line, wide) in enumerate(zip(lines, widths, strict=True)):
+        left = (u0 + u1 - wide * height) / 2.0
+        base = top - height - number * pitch
+        chains += [s.points for s in lettering.strokes(line, height, x_mm=left, y_mm=base)]
+        if number == 0:
+            tip = (left + (wide - 0.3) * height, base + height)
+            wing = 0.3 * height
+            chains.append(((tip[0], base), tip))
+            chains.append(((tip[0] - wing, tip[1] - wing), tip, (tip[0] + wing, tip[1] - wing)))
+    return " / ".join(lines), tuple(Stroke(points=tuple(frame.world(chain))) for chain in chains)

@@ -101,7 +101,7 @@ def _split(
         return [], conflicts
     if fits_bed(design, trial.piece):
         return [trial.piece], conflicts
-    if len(humps) > 1:
+    if len(humps) > 1 and trial.piece.layers[-1].top_mm <= design.printer.bed_z_mm:
         half = len(humps) // 2
         left, told = _split(design, s, humps[:half], f"{name}1")
         right, also = _split(design, s, humps[half:], f"{name}2")

@@ -11,11 +11,12 @@ from dataclasses import dataclass
 import cadquery as cq
 
 from wavejig.design.model import Design
+from wavejig.geometry.engrave import engrave, prism
 from wavejig.geometry.plane import Contour
+from wavejig.geometry.region import Region, grooves
 from wavejig.radiator.model import Radiator
-from wavejig.spacer.engrave import engrave, prism
 from wavejig.spacer.model import BlockPiece, Post, Spacer
-from wavejig.spacer.outline import Region, channelled, grooves
+from wavejig.spacer.outline import channelled
 from wavejig.spacer.plan import fits_upright
 
 

@@ -338,7 +338,9 @@ def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sou
                 nodes, weights = g6, wg6
             else:
                 nodes, weights = g12, wg12
-            m = _tube_points(own.corners[p], radius[p], sources.centre[q], nodes, weights, around, pos, vec, wgt)
+            m = _tube_points(
+                own.corners[p], radius[p], sources.centre[q], nodes, weights, around, pos, vec, wgt
+            )
             _one_way(pos, vec, wgt, m, 2, sources, q, fan, share[q], g12, wg12, b3, w3, 1.0, res)
             continue
         touching = _shared_vertices(own.corners[p], sources.corners[q], 1e-12 * size[p] * size[q])
@@ -371,7 +373,9 @@ def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sou
                         res[at + 3 * b + a] = mean
         elif not (uneven and ratio < 1.0):
             flipped[:] = 0.0
-            m, halves = _sheet_points(sources.corners[q], kind[q], share[q], outer, wo, g4, wg4, pos, vec, wgt)
+            m, halves = _sheet_points(
+                sources.corners[q], kind[q], share[q], outer, wo, g4, wg4, pos, vec, wgt
+            )
             _one_way(
                 pos, vec, wgt, m, halves, own, p, kind[p] == 2, share[p], rays, wr, inner, wi, factor, flipped
             )

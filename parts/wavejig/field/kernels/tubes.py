@@ -57,23 +57,34 @@ def _tube_integrals(rho, z, length, a, nodes, weights):  # type: ignore[no-untyp
 
 
 @njit(**OPTIONS)
-def _close(v, a, w, b, along, along_w, ring, ring_w, cosine, straight, factor, flip, out):  # type: ignore[no-untyped-def]
+def _across(r, u, length):  # type: ignore[no-untyped-def]
+    """The part of r square to u (of that length)."""
+    dot = (r[0] * u[0] + r[1] * u[1] + r[2] * u[2]) / length**2
+    return r - dot * u
+
+
+@njit(**OPTIONS)
+def _size(r):  # type: ignore[no-untyped-def]
+    return math.sqrt(r[0] ** 2 + r[1] ** 2 + r[2] ** 2)
+
+
+@njit(**OPTIONS)
+def _close(v, a, w, b, along, along_w, ring, ring_w, factor, flip, out):  # type: ignore[no-untyped-def]
     """Adds the interaction of tube v (radius a, observed) and tube w (radius b, source), near each other."""
     u = v[1] - v[0]
     s = w[1] - w[0]
-    length = math.sqrt(u[0] ** 2 + u[1] ** 2 + u[2] ** 2)
-    source = math.sqrt(s[0] ** 2 + s[1] ** 2 + s[2] ** 2)
-    around = 1
-    p = np.zeros(3)
+    length = _size(u)
+    source = _size(s)
+    cosine = (u[0] * s[0] + u[1] * s[1] + u[2] * s[2]) / (length * source)
+    # the ring's first direction lies in the plane of both tubes, so that it turns with the model
+    p = _across(0.5 * (w[0] + w[1]) - 0.5 * (v[0] + v[1]), u, length)
+    if _size(p) < 1e-6 * a:
+        p = _across(s, u, length)
     q = np.zeros(3)
-    if not straight:
+    around = 1
+    if _size(p) > 1e-6 * a:
         around = 8
-        # the ring's first direction: square to the axis, in the plane of both, so that it turns with the model
-        middle = 0.5 * (w[0] + w[1]) - 0.5 * (v[0] + v[1])
-        dot = (middle[0] * u[0] + middle[1] * u[1] + middle[2] * u[2]) / length**2
-        p = middle - dot * u
-        size = math.sqrt(p[0] ** 2 + p[1] ** 2 + p[2] ** 2)
-        p *= a / size
+        p *= a / _size(p)
         q[0] = (u[1] * p[2] - u[2] * p[1]) / length
         q[1] = (u[2] * p[0] - u[0] * p[2]) / length
         q[2] = (u[0] * p[1] - u[1] * p[0]) / length
@@ -137,15 +148,11 @@ def tube_pairs(first, last, direct, ps, qs, t_v, s_v, radius, g4, wg4, g6, wg6, 
         gap = _gap(v, w)
         close = gap < 0.731 * max(length, source) or gap < 4.037 * (a + b)
         if close:
-            middle = 0.5 * (w[0] + w[1]) - 0.5 * (v[0] + v[1])
-            dot = (middle[0] * u[0] + middle[1] * u[1] + middle[2] * u[2]) / length
-            off2 = middle[0] ** 2 + middle[1] ** 2 + middle[2] ** 2 - dot * dot
-            straight = abs(cosine) > 1.0 - 1e-10 and off2 < 1e-8 * min(a, b) ** 2
             if direct and p == q:
-                _close(v, a, w, b, g6, wg6, g10, wg10, cosine, True, 1.0, False, res)
+                _close(v, a, w, b, g6, wg6, g10, wg10, 1.0, False, res)
             else:
-                _close(v, a, w, b, g6, wg6, g10, wg10, cosine, straight, 0.5, False, res)
-                _close(w, b, v, a, g6, wg6, g10, wg10, cosine, straight, 0.5, True, res)
+                _close(v, a, w, b, g6, wg6, g10, wg10, 0.5, False, res)
+                _close(w, b, v, a, g6, wg6, g10, wg10, 0.5, True, res)
         for i in range(g4.size):
             for j in range(g4.size):
                 r = v[0] + g4[i] * u - w[0] - g4[j] * s

@@ -66,145 +66,141 @@ def _sin_cos(x):  # type: ignore[no-untyped-def]
 
 
 @njit(**OPTIONS)
-def _green(k, x, y, z, sx, sy, sz, near, tiny2, gr, gi):  # type: ignore[no-untyped-def]
-    """exp(-jkR)/R, less 1/R - k^2 R/2 where near is 1 (added elsewhere in closed form)."""
-    for q in range(sx.size):
-        dx = x - sx[q]
-        dy = y - sy[q]
-        dz = z - sz[q]
+def _green(k, x, y, z, xyz, near, tiny2, at, gr, gi):  # type: ignore[no-untyped-def]
+    """exp(-jkR)/R to a block of points, less 1/R - k^2 R/2 where near is 1 (added elsewhere in closed form)."""
+    for q in range(BLOCK):
+        dx = x - xyz[q]
+        dy = y - xyz[BLOCK + q]
+        dz = z - xyz[2 * BLOCK + q]
         r = math.sqrt(dx * dx + dy * dy + dz * dz + tiny2)
         kr = k * r
         s, c = _sin_cos(kr)
-        gr[q] = (c - near[q] * (1.0 - 0.5 * kr * kr)) / r
-        gi[q] = -s / r
+        gr[at + q] = (c - near[q] * (1.0 - 0.5 * kr * kr)) / r
+        gi[at + q] = -s / r
 
 
 @njit(**OPTIONS)
-def fill_rows(  # type: ignore[no-untyped-def]
-    k,
-    factor,
-    tiny2,
-    members,
-    row_first,
-    row_last,
-    t_pts,
-    t_f,
-    t_w,
-    t_q,
-    s_pts,
-    s_f,
-    s_w,
-    s_q,
-    hptr,
-    hunk,
-    hcoef,
-    nptr,
-    nother,
-    npair,
-    nflip,
-    near_out,
-    z,
-):
-    """Adds factor times the interactions of the member elements' rows in [row_first, row_last) to z.
+def _scalars(wi, wj, g, out):  # type: ignore[no-untyped-def]
+    """Potential between unit charges spread over the points of one element and each of a block."""
+    for q in range(BLOCK):
+        total = 0.0
+        for i in range(3):
+            at = 3 * i * BLOCK + q
+            total += wi[i] * (
+                wj[q] * g[at] + wj[BLOCK + q] * g[at + BLOCK] + wj[2 * BLOCK + q] * g[at + 2 * BLOCK]
+            )
+        out[q] = total
 
-    z (rows, n) complex. t_: by element first; s_: by element last. hptr, hunk, hcoef: the unknowns each half
-    belongs to. nptr, nother, npair, nflip: each element's neighbours and their static pair in near_out.
+
+@njit(**OPTIONS)
+def _vectors(f, h, g, pot, charge, out):  # type: ignore[no-untyped-def]
+    """Real or imaginary part for all halves of one element (f) and one half of each of a block (h)."""
+    for q in range(BLOCK):
+        x = charge[q] * pot[q]
+        e0 = f[27] * x
+        e1 = f[28] * x
+        e2 = f[29] * x
+        for i in range(3):
+            at = 3 * i * BLOCK + q
+            for c in range(3):
+                to = 3 * c * BLOCK + q
+                x = h[to] * g[at] + h[to + BLOCK] * g[at + BLOCK] + h[to + 2 * BLOCK] * g[at + 2 * BLOCK]
+                e0 += f[3 * i + c] * x
+                e1 += f[9 + 3 * i + c] * x
+                e2 += f[18 + 3 * i + c] * x
+        out[q] = e0
+        out[BLOCK + q] = e1
+        out[2 * BLOCK + q] = e2
+
+
+@njit(**OPTIONS)
+def fill_rows(k, factor, tiny2, members, row_first, row_last, own, blocks, halves, near_by, z):  # type: ignore[no-untyped-def]
+    """Adds factor times half the interactions of the member elements' rows in [row_first, row_last) to z.
+
+    Each pair of elements once, so that z plus its transpose is the whole. own: points, moments, weights,
+    charges by element; blocks: the sources' points (blocks, 3 points, 3 * BLOCK), moments (blocks, 3 halves,
+    9 * BLOCK: component, point), weights (blocks, 3 * BLOCK), charges (blocks, 3, BLOCK). halves: start,
+    unknown, coefficient of the unknowns each half belongs to. near_by: start, other, pair, flip of each
+    element's neighbours, and the pairs' static integrals.
     """
-    n = s_q.shape[1]
+    points, moments, weights, charges = own
+    s_pts, s_f, s_w, s_q = blocks
+    hptr, hunk, hcoef = halves
+    nptr, nother, npair, nflip, integrals = near_by
+    n = points.shape[0]
     size = z.shape[1]
-    near = np.zeros(n)
-    gr = np.empty((3, 3, BLOCK))
-    gi = np.empty((3, 3, BLOCK))
-    vr = np.empty(BLOCK)
-    vi = np.empty(BLOCK)
-    er = np.empty((3, 3, BLOCK))
-    ei = np.empty((3, 3, BLOCK))
+    near = np.zeros(s_w.shape[0] * BLOCK)
+    gr = np.empty(9 * BLOCK)
+    gi = np.empty(9 * BLOCK)
+    er = np.empty((3, 3 * BLOCK))
+    ei = np.empty((3, 3 * BLOCK))
     pr = np.empty(BLOCK)
     pi = np.empty(BLOCK)
-    row_r = np.empty((3, size))
-    row_i = np.empty((3, size))
+    row = np.empty((size, 8))  # one cache line for an unknown: three halves, real and imaginary
+    f = np.empty(30)
     k2 = 1.0 / (k * k)
     for member in range(members.size):
         p = members[member]
-        row_r[:] = 0.0
-        row_i[:] = 0.0
+        row[:] = 0.0
+        for a in range(3):
+            f[27 + a] = -k2 * charges[p, a]
+            for i in range(3):
+                for c in range(3):
+                    f[9 * a + 3 * i + c] = moments[p, a, i, c]
         for e in range(nptr[p], nptr[p + 1]):
             near[nother[e]] = 1.0
-        for lo in range(0, n, BLOCK):
-            m = min(BLOCK, n - lo)
-            hi = lo + m
-            pr[:m] = 0.0
-            pi[:m] = 0.0
-            er[:] = 0.0
-            ei[:] = 0.0
+        for block in range(p // BLOCK, s_w.shape[0]):
+            lo = block * BLOCK
             for i in range(3):
                 for j in range(3):
                     _green(
                         k,
-                        t_pts[p, i, 0],
-                        t_pts[p, i, 1],
-                        t_pts[p, i, 2],
-                        s_pts[j, 0, lo:hi],
-                        s_pts[j, 1, lo:hi],
-                        s_pts[j, 2, lo:hi],
-                        near[lo:hi],
+                        points[p, i, 0],
+                        points[p, i, 1],
+                        points[p, i, 2],
+                        s_pts[block, j],
+                        near[lo : lo + BLOCK],
                         tiny2,
-                        gr[i, j],
-                        gi[i, j],
+                        (3 * i + j) * BLOCK,
+                        gr,
+                        gi,
                     )
-                    wi = t_w[p, i]
-                    wj = s_w[j, lo:hi]
-                    for q in range(m):
-                        pr[q] += wi * wj[q] * gr[i, j, q]
-                        pi[q] += wi * wj[q] * gi[i, j, q]
-                for b in range(3):
-                    for c in range(3):
-                        f0 = s_f[b, 0, c, lo:hi]
-                        f1 = s_f[b, 1, c, lo:hi]
-                        f2 = s_f[b, 2, c, lo:hi]
-                        g0 = t_f[p, 0, i, c]
-                        g1 = t_f[p, 1, i, c]
-                        g2 = t_f[p, 2, i, c]
-                        for q in range(m):
-                            xr = f0[q] * gr[i, 0, q] + f1[q] * gr[i, 1, q] + f2[q] * gr[i, 2, q]
-                            xi = f0[q] * gi[i, 0, q] + f1[q] * gi[i, 1, q] + f2[q] * gi[i, 2, q]
-                            er[0, b, q] += g0 * xr
-                            ei[0, b, q] += g0 * xi
-                            er[1, b, q] += g1 * xr
-                            ei[1, b, q] += g1 * xi
-                            er[2, b, q] += g2 * xr
-                            ei[2, b, q] += g2 * xi
+            _scalars(weights[p], s_w[block], gr, pr)
+            _scalars(weights[p], s_w[block], gi, pi)
             for b in range(3):
-                qb = s_q[b, lo:hi]
-                for q in range(m):
-                    vr[q] = k2 * qb[q] * pr[q]
-                    vi[q] = k2 * qb[q] * pi[q]
-                for a in range(3):
-                    qa = t_q[p, a]
-                    for q in range(m):
-                        er[a, b, q] -= qa * vr[q]
-                        ei[a, b, q] -= qa * vi[q]
-            for q in range(m):
+                _vectors(f, s_f[block, b], gr, pr, s_q[block, b], er[b])
+                _vectors(f, s_f[block, b], gi, pi, s_q[block, b], ei[b])
+            if lo <= p:
+                for b in range(3):
+                    for a in range(3):
+                        er[b, a * BLOCK + p - lo] *= 0.5
+                        ei[b, a * BLOCK + p - lo] *= 0.5
+            for q in range(max(p - lo, 0), min(BLOCK, n - lo)):
                 for b in range(3):
                     h = 3 * (lo + q) + b
                     for e in range(hptr[h], hptr[h + 1]):
                         u = hunk[e]
                         w = hcoef[e]
                         for a in range(3):
-                            row_r[a, u] += w * er[a, b, q]
-                            row_i[a, u] += w * ei[a, b, q]
+                            row[u, 2 * a] += w * er[b, a * BLOCK + q]
+                            row[u, 2 * a + 1] += w * ei[b, a * BLOCK + q]
         for e in range(nptr[p], nptr[p + 1]):
             q = nother[e]
             near[q] = 0.0
-            st = near_out[npair[e]]
+            if q < p:
+                continue
+            part = 0.5 if q == p else 1.0
+            st = integrals[npair[e]]
             scalar = k2 * (st[18] - 0.5 * k * k * st[19])
             for a in range(3):
                 for b in range(3):
                     at = 3 * b + a if nflip[e] else 3 * a + b
-                    value = st[at] - 0.5 * k * k * st[9 + at] - t_q[p, a] * s_q[b, q] * scalar
+                    value = part * (
+                        st[at] - 0.5 * k * k * st[9 + at] - charges[p, a] * charges[q, b] * scalar
+                    )
                     h = 3 * q + b
-                    for f in range(hptr[h], hptr[h + 1]):
-                        row_r[a, hunk[f]] += hcoef[f] * value
+                    for d in range(hptr[h], hptr[h + 1]):
+                        row[hunk[d], 2 * a] += hcoef[d] * value
         for a in range(3):
             h = 3 * p + a
             for e in range(hptr[h], hptr[h + 1]):
@@ -213,7 +209,23 @@ def fill_rows(  # type: ignore[no-untyped-def]
                     continue
                 w = factor * hcoef[e]
                 for v in range(size):
-                    z[u, v] += complex(-w * row_i[a, v], w * row_r[a, v])
+                    z[u, v] += complex(-w * row[v, 2 * a + 1], w * row[v, 2 * a])
+
+
+@njit(**OPTIONS)
+def add_transpose(first, last, z):  # type: ignore[no-untyped-def]
+    """z becomes z plus its transpose, for tiles first to last of its upper triangle's 32-row bands."""
+    n = z.shape[0]
+    for band in range(first, last):
+        lo = 32 * band
+        hi = min(lo + 32, n)
+        for left in range(lo, n, 32):
+            right = min(left + 32, n)
+            for u in range(lo, hi):
+                for v in range(max(left, u), right):
+                    total = z[u, v] + z[v, u]
+                    z[u, v] = total
+                    z[v, u] = total
 
 
 @njit(**OPTIONS)

@@ -16,7 +16,7 @@ from OCP.BRepLib import BRepLib
 from OCP.ShapeFix import ShapeFix_Shell
 from OCP.TopoDS import TopoDS_Shell
 
-from wavejig.spacer.outline import Region
+from wavejig.geometry.region import Region
 
 _LEVEL_MM = 1e-5
 
@@ -35,23 +35,38 @@ def prism(region: Region, bottom_mm: float, top_mm: float) -> cq.Solid:
 
 
 def engrave(solid: cq.Solid, grooves: Sequence[Region], floor_mm: float, top_mm: float) -> cq.Solid:
-    """Sink grooves from the largest flat face at height `top_mm` down to `floor_mm`.
+    """Sink grooves from the flat faces at height `top_mm` down to `floor_mm`.
 
-    The grooves must lie inside that face, apart from each other and from its edges.
+    Each groove must lie inside one of those faces, apart from the others and from its edges. Raises
+    ValueError for one that lies in none.
     """
     faces = solid.Faces()
-    tops = [f for f in faces if _at_height(f, top_mm)]
-    top = max(tops, key=lambda f: f.Area())
-    kept = [f for f in faces if not f.isSame(top)]
-    holes: list[cq.Wire] = []
+    tops = [f for f in faces if f.geomType() == "PLANE" and _at_height(f, top_mm)]
+    kept = [f for f in faces if not any(f.isSame(top) for top in tops)]
+    holes: list[list[cq.Wire]] = [[] for _ in tops]
     for groove in grooves:
+        owner = _owner(tops, groove, top_mm)
         sides = prism(groove, floor_mm, top_mm).Faces()
         (lid,) = [f for f in sides if _at_height(f, top_mm)]
-        holes.append(lid.outerWire())
+        holes[owner].append(lid.outerWire())
         kept += [f for f in sides if not f.isSame(lid)]
         kept += [cq.Face.makeFromWires(island) for island in lid.innerWires()]
-    kept.append(cq.Face.makeFromWires(top.outerWire(), [*top.innerWires(), *holes]))
+    for top, wires in zip(tops, holes, strict=True):
+        kept.append(cq.Face.makeFromWires(top.outerWire(), [*top.innerWires(), *wires]) if wires else top)
     return _closed(kept)
+
+
+def _owner(tops: Sequence[cq.Face], groove: Region, top_mm: float) -> int:
+    """Which top face a groove lies in."""
+    x, y = groove.outer[0]
+    point = cq.Vertex.makeVertex(float(x), float(y), top_mm)
+    if len(tops) == 1:
+        return 0
+    for number, top in enumerate(tops):
+        box = top.BoundingBox()
+        if box.xmin <= x <= box.xmax and box.ymin <= y <= box.ymax and point.distance(top) < _LEVEL_MM:
+            return number
+    raise ValueError(f"engraving at ({x:.2f}, {y:.2f}) mm lies in no flat face at height {top_mm:g} mm")
 
 
 def _closed(faces: Sequence[cq.Face]) -> cq.Solid:

@@ -1,0 +1,380 @@
+"""Is a model sound? Refusals by name (ModelError), and remarks where the answer deserves less trust.
+
+The limits on thinness and segment length are common practice for piecewise-linear currents on thin wires,
+no source; what they cost is measured in the tests.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+from numpy.typing import NDArray
+
+from wavejig.field.errors import ModelError, Remark
+from wavejig.field.model import Model
+from wavejig.field.unknowns import Nodes, merge_points, wire_ends
+from wavejig.field.units import wavenumber
+
+Array = NDArray[np.float64]
+Index = NDArray[np.int64]
+
+LONG = 0.1  # of a wavelength: longer segments and sides are remarked on
+FAR_TOO_LONG = 0.25  # of a wavelength: refused
+THICK = 1.0 / 30.0  # of a wavelength: a radius above it is not thin
+MOST_UNKNOWNS = 20_000  # 6 GiB of matrix
+SLIVER = 1e-6  # area over the longest side squared: no triangle
+
+
+def examine(model: Model, highest_hz: float, *, nodes: Nodes | None = None) -> tuple[Remark, ...]:
+    """Refuse what cannot be solved at the highest frequency; return what to know about the rest.
+
+    nodes: merge_points(model) if it is known. Raises ModelError, its code the name of the fault.
+    """
+    _numbers(model)
+    nodes = merge_points(model) if nodes is None else nodes
+    ends = wire_ends(model)
+    _sheet(model, nodes)
+    _wires(model, nodes, ends)
+    _ports(model, nodes)
+    if model.plane is not None:
+        _ground(model, nodes, ends)
+    _crossings(model, nodes, ends)
+    if len(model.wires) and len(model.triangles):
+        _through_sheet(model, nodes, ends)
+    return (*_lengths(model, ends, highest_hz), *_thin(model, ends, highest_hz))
+
+
+def _numbers(model: Model) -> None:
+    if not model.wires and not len(model.triangles):
+        raise ModelError("empty model", "there is neither wire nor sheet")
+    size = len(model.wires) + 1.5 * len(model.triangles)
+    if size > MOST_UNKNOWNS:
+        raise ModelError(
+            "too large", f"about {size:.0f} unknowns, at most {MOST_UNKNOWNS} are solved; use a coarser mesh"
+        )
+    if model.plane not in (None, "z=0"):
+        raise ModelError("plane", f'got {model.plane!r}, allowed are null and "z=0"')
+    if not np.isfinite(model.triangles).all():
+        raise ModelError("not a number", "a triangle has a coordinate that is not finite")
+    sheet = model.sheet_conductivity_s_per_m
+    if sheet is not None and not (np.isfinite(sheet) and sheet > 0.0):
+        raise ModelError(
+            "conductivity", f"the sheet's is {sheet}, it must be positive; leave it out for none lost"
+        )
+    for i, w in enumerate(model.wires):
+        if len(w.start) != 3 or len(w.end) != 3 or not np.isfinite((*w.start, *w.end, w.radius_m)).all():
+            raise ModelError("not a number", f"wire {i} has a coordinate or radius that is not finite")
+        if not w.radius_m > 0.0:
+            raise ModelError("radius", f"wire {i} has radius {w.radius_m} m, it must be positive")
+        metal = w.conductivity_s_per_m
+        if metal is not None and not (np.isfinite(metal) and metal > 0.0):
+            raise ModelError(
+                "conductivity", f"wire {i} has {metal} S/m, it must be positive; leave it out for none"
+            )
+        sleeve = w.insulation
+        if sleeve is not None and not (
+            np.isfinite((sleeve.outer_radius_m, sleeve.permittivity)).all()
+            and sleeve.outer_radius_m >= w.radius_m
+            and sleeve.permittivity >= 1.0
+        ):
+            raise ModelError(
+                "insulation",
+                f"wire {i}: outer radius {sleeve.outer_radius_m} m (not below the wire's {w.radius_m} m) and "
+                f"relative permittivity {sleeve.permittivity} (not below 1) are needed",
+            )
+
+
+def _sheet(model: Model, nodes: Nodes) -> None:
+    if not len(model.triangles):
+        return
+    sides = np.roll(model.triangles, -1, axis=1) - model.triangles
+    area = 0.5 * np.linalg.norm(np.cross(sides[:, 0], sides[:, 1]), axis=1)
+    longest2 = np.max(np.sum(sides**2, axis=2), axis=1)
+    flat = np.flatnonzero(area <= SLIVER * longest2)
+    c = np.sort(nodes.corners, axis=1)
+    merged = np.flatnonzero((c[:, 0] == c[:, 1]) | (c[:, 1] == c[:, 2]))
+    for i in (*flat.tolist(), *merged.tolist()):
+        raise ModelError("degenerate triangle", f"triangle {i} has no area; leave it out")
+    order = np.lexsort(c.T)
+    same = np.flatnonzero(np.all(c[order][1:] == c[order][:-1], axis=1))
+    for i in same.tolist():
+        first, second = sorted((int(order[i]), int(order[i + 1])))
+        raise ModelError("duplicate triangles", f"triangles {first} and {second} are the same; leave one out")
+
+
+def _wires(model: Model, nodes: Nodes, ends: Array) -> None:
+    pair = nodes.wire_ends
+    for i in np.flatnonzero(np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1) == 0.0).tolist():
+        raise ModelError("zero-length wire", f"wire {i} starts and ends at one point; leave it out")
+    for i in np.flatnonzero(pair[:, 0] == pair[:, 1]).tolist():
+        raise ModelError("zero-length wire", f"wire {i} is too short to tell its ends apart; leave it out")
+    ordered = np.sort(pair, axis=1)
+    order = np.lexsort(ordered.T)
+    for i in np.flatnonzero(np.all(ordered[order][1:] == ordered[order][:-1], axis=1)).tolist():
+        first, second = sorted((int(order[i]), int(order[i + 1])))
+        raise ModelError("overlapping wires", f"wires {first} and {second} lie on each other; leave one out")
+
+
+def _ports(model: Model, nodes: Nodes) -> None:
+    seen: set[tuple[int, int]] = set()
+    for row, port in enumerate(model.ports):
+        if not 0 <= port.wire < len(model.wires) or port.end not in (0, 1):
+            raise ModelError(
+                "port on nothing",
+                f"port {row} names wire {port.wire}, end {port.end}; there are {len(model.wires)} wires, ends 0 and 1",
+            )
+        if (port.wire, port.end) in seen:
+            raise ModelError("two ports in one place", f"port {row} repeats wire {port.wire}, end {port.end}")
+        seen.add((port.wire, port.end))
+        if not (np.isfinite(port.impedance_ohm) and port.impedance_ohm > 0.0):
+            raise ModelError(
+                "port impedance", f"port {row} has {port.impedance_ohm} ohm, it must be positive"
+            )
+        node = nodes.wire_ends[port.wire, port.end]
+        joined = np.count_nonzero(nodes.wire_ends == node) > 1 or bool(np.any(nodes.corners == node))
+        grounded = model.plane is not None and abs(nodes.points[node, 2]) <= nodes.tolerance_m
+        if not joined and not grounded:
+            raise ModelError(
+                "port on nothing",
+                f"port {row} sits at end {port.end} of wire {port.wire}, which joins nothing there; join another "
+                "wire or the sheet to that end",
+            )
+    # ports at one joint may not drive the same current
+    for node in {int(nodes.wire_ends[p.wire, p.end]) for p in model.ports}:
+        ports = sum(int(nodes.wire_ends[p.wire, p.end]) == node for p in model.ports)
+        branches = int(np.count_nonzero(nodes.wire_ends == node)) + int(np.any(nodes.corners == node))
+        if model.plane is not None and abs(nodes.points[node, 2]) <= nodes.tolerance_m:
+            branches += 1
+        if ports >= branches:
+            raise ModelError(
+                "two ports in one place",
+                f"{ports} ports at a joint of {branches} are not independent; take one out",
+            )
+
+
+def _ground(model: Model, nodes: Nodes, ends: Array) -> None:
+    low = -nodes.tolerance_m
+    for i in np.flatnonzero(ends[:, :, 2].min(axis=1) < low).tolist():
+        raise ModelError("below the ground", f"wire {i} reaches below z = 0, where the infinite ground is")
+    for i in np.flatnonzero(model.triangles[:, :, 2].min(axis=1, initial=np.inf) < low).tolist():
+        raise ModelError(
+            "below the ground", f"triangle {i} reaches below z = 0, where the infinite ground is"
+        )
+    for i in np.flatnonzero(ends[:, :, 2].max(axis=1) <= -low).tolist():
+        raise ModelError(
+            "in the ground", f"wire {i} lies in the infinite ground and carries nothing; leave it out"
+        )
+    for i in np.flatnonzero(model.triangles[:, :, 2].max(axis=1, initial=-np.inf) <= -low).tolist():
+        raise ModelError("in the ground", f"triangle {i} lies in the infinite ground; leave it out")
+
+
+def _crossings(model: Model, nodes: Nodes, ends: Array) -> None:
+    """Wires that meet or come within their radii of each other, but not at a common end."""
+    n = len(ends)
+    if n < 2:
+        return
+    middle = ends.mean(axis=1)
+    reach = 0.5 * np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1)
+    radius = np.array([w.radius_m for w in model.wires])
+    gap2 = np.sum((middle[:, None] - middle[None]) ** 2, axis=2)
+    first, second = np.nonzero(np.triu(gap2 < (reach[:, None] + reach + radius[:, None] + radius) ** 2, 1))
+    a, b = nodes.wire_ends[first], nodes.wire_ends[second]
+    shared = (a[:, :, None] == b[:, None, :]).any(axis=(1, 2))
+    folded = np.flatnonzero(shared)
+    if folded.size:
+        _folded_back(nodes, ends, first[folded], second[folded], radius)
+    apart = np.flatnonzero(~shared)
+    i, j = first[apart], second[apart]
+    distance = segment_distance(ends[i], ends[j])
+    for k in np.argsort(distance).tolist():
+        thick = radius[i[k]] + radius[j[k]]
+        if distance[k] >= thick:
+            break
+        if _neighbourly(nodes, ends, int(i[k]), int(j[k]), thick):
+            continue
+        if distance[k] <= max(nodes.tolerance_m, 1e-3 * thick):
+            raise ModelError(
+                "wires crossing without a joint",
+                f"wires {i[k]} and {j[k]} meet where neither ends; split them there, or move them apart",
+            )
+        raise ModelError(
+            "overlapping wires",
+            f"wires {i[k]} and {j[k]} run within their radii of each other ({distance[k] * 1e3:.3f} mm apart, "
+            f"{thick * 1e3:.3f} mm thick together); join them or move them apart",
+        )
+
+
+def _neighbourly(nodes: Nodes, ends: Array, i: int, j: int, thick: float) -> bool:
+    """Wires of one chain whose links are shorter than they are thick: near each other, and rightly so."""
+    a, b = set(nodes.wire_ends[i].tolist()), set(nodes.wire_ends[j].tolist())
+    frontier, walked = a, {n: 0.0 for n in a}
+    limit = 4.0 * thick
+    lengths = np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1)
+    while frontier:
+        reached: set[int] = set()
+        for wire in np.flatnonzero(np.isin(nodes.wire_ends, list(frontier)).any(axis=1)).tolist():
+            one, two = nodes.wire_ends[wire].tolist()
+            for here, there in ((one, two), (two, one)):
+                if here in walked and walked[here] + lengths[wire] < min(limit, walked.get(there, np.inf)):
+                    walked[there] = walked[here] + float(lengths[wire])
+                    reached.add(there)
+        frontier = reached
+    return bool(b & walked.keys())
+
+
+def _folded_back(nodes: Nodes, ends: Array, first: Index, second: Index, radius: Array) -> None:
+    """Wires that share an end and run back over each other."""
+    shared_b = nodes.wire_ends[first][:, :, None] == nodes.wire_ends[second][:, None, :]
+    ia = np.argmax(shared_b.any(axis=2), axis=1)
+    ib = np.argmax(shared_b.any(axis=1), axis=1)
+    row = np.arange(len(first))
+    u = ends[first][row, 1 - ia] - ends[first][row, ia]
+    v = ends[second][row, 1 - ib] - ends[second][row, ib]
+    cosine = np.sum(u * v, axis=1) / (np.linalg.norm(u, axis=1) * np.linalg.norm(v, axis=1))
+    for k in np.flatnonzero(cosine > 1.0 - 1e-6).tolist():
+        raise ModelError(
+            "overlapping wires", f"wires {first[k]} and {second[k]} run over each other from their common end"
+        )
+
+
+def segment_distance(a: Array, b: Array) -> Array:
+    """(n,) least distances of segments (n, 2, 3): the closest approach, or an end to the other segment."""
+
+    def to_segment(p: Array, s: Array) -> Array:
+        u = s[:, 1] - s[:, 0]
+        t = np.clip(np.sum((p - s[:, 0]) * u, axis=1) / np.sum(u * u, axis=1), 0.0, 1.0)
+        return np.asarray(np.linalg.norm(p - s[:, 0] - t[:, None] * u, axis=1))
+
+    best = np.minimum.reduce(
+        [to_segment(a[:, 0], b), to_segment(a[:, 1], b), to_segment(b[:, 0], a), to_segment(b[:, 1], a)]
+    )
+    u, v, w = a[:, 1] - a[:, 0], b[:, 1] - b[:, 0], a[:, 0] - b[:, 0]
+    uu, uv, vv = np.sum(u * u, axis=1), np.sum(u * v, axis=1), np.sum(v * v, axis=1)
+    uw, vw = np.sum(u * w, axis=1), np.sum(v * w, axis=1)
+    det = uu * vv - uv * uv
+    skew = det > 1e-12 * uu * vv
+    safe = np.where(skew, det, 1.0)
+    s, t = (uv * vw - vv * uw) / safe, (uu * vw - uv * uw) / safe
+    inside = skew & (s > 0.0) & (s < 1.0) & (t > 0.0) & (t < 1.0)
+    across = np.linalg.norm(w + s[:, None] * u - t[:, None] * v, axis=1)
+    return np.where(inside, np.minimum(best, across), best)
+
+
+def _through_sheet(model: Model, nodes: Nodes, ends: Array) -> None:
+    """Wires that pierce a triangle, or end on one away from its corners."""
+    corner = model.triangles[:, 0]
+    normal = np.cross(model.triangles[:, 1] - corner, model.triangles[:, 2] - corner)
+    normal /= np.linalg.norm(normal, axis=1)[:, None]
+    offset = np.sum(normal * corner, axis=1)
+    tolerance = nodes.tolerance_m
+    height = ends @ normal.T - offset
+    low, high = height.min(axis=1), height.max(axis=1)
+    wire, triangle = np.nonzero((low <= tolerance) & (high >= -tolerance))
+    if not wire.size:
+        return
+    centre = model.triangles.mean(axis=1)
+    size = np.linalg.norm(model.triangles - centre[:, None], axis=2).max(axis=1)
+    u = ends[:, 1] - ends[:, 0]
+    t = np.sum((centre[triangle] - ends[wire, 0]) * u[wire], axis=1) / np.sum(u * u, axis=1)[wire]
+    foot = ends[wire, 0] + np.clip(t, 0.0, 1.0)[:, None] * u[wire]
+    near = np.linalg.norm(foot - centre[triangle], axis=1) <= size[triangle] + tolerance
+    wire, triangle = wire[near], triangle[near]
+    attached = (nodes.wire_ends[wire][:, :, None] == nodes.corners[triangle][:, None, :]).any(axis=2)
+    for k in range(len(wire)):
+        w, f = int(wire[k]), int(triangle[k])
+        heights = ends[w] @ normal[f] - offset[f]
+        if np.abs(heights).max() <= tolerance:
+            inside = [
+                p for p in (0.1, 0.5, 0.9) if _inside(ends[w, 0] + p * u[w], model.triangles[f], tolerance)
+            ]
+            if inside:
+                raise ModelError(
+                    "wire in a sheet", f"wire {w} lies in triangle {f}; leave it out or lift it off"
+                )
+            continue
+        if attached[k].any() and (heights.min() >= -tolerance or heights.max() <= tolerance):
+            continue
+        at = ends[w, 0] + np.clip(-heights[0] / (heights[1] - heights[0]), 0.0, 1.0) * u[w]
+        if _inside(at, model.triangles[f], tolerance):
+            ended = np.abs(heights).min() <= tolerance
+            if ended:
+                raise ModelError(
+                    "wire end on a sheet without a corner",
+                    f"wire {w} ends on triangle {f} away from its corners; give the sheet a corner there",
+                )
+            raise ModelError(
+                "wire through a sheet",
+                f"wire {w} passes through triangle {f}; end it on a corner, or cut a hole",
+            )
+
+
+def _inside(point: Array, triangle: Array, tolerance: float) -> bool:
+    """Whether a point of the triangle's plane lies within it, its rim included."""
+    a, b, c = triangle
+    normal = np.cross(b - a, c - a)
+    size = np.linalg.norm(normal)
+    for p, q in ((a, b), (b, c), (c, a)):
+        side = np.linalg.norm(q - p)
+        if float(np.dot(np.cross(q - p, point - p), normal)) < -tolerance * size * side:
+            return False
+    return True
+
+
+def _lengths(model: Model, ends: Array, highest_hz: float) -> list[Remark]:
+    wavelength = 2.0 * np.pi / wavenumber(highest_hz)
+    lengths = np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1) / wavelength
+    sides = np.linalg.norm(np.roll(model.triangles, -1, axis=1) - model.triangles, axis=2).max(
+        axis=1, initial=0.0
+    )
+    remarks = []
+    for what, values in (("segment", lengths), ("triangle side", sides / wavelength)):
+        if not len(values):
+            continue
+        worst = int(np.argmax(values))
+        name = f"wire {worst}" if what == "segment" else f"triangle {worst}"
+        if values[worst] > FAR_TOO_LONG:
+            raise ModelError(
+                f"{what} too long",
+                f"{name} spans {values[worst]:.3f} wavelengths at {highest_hz / 1e9:.4g} GHz, at most "
+                f"{FAR_TOO_LONG} can be solved; split it to a tenth or less",
+            )
+        if values[worst] > LONG:
+            remarks.append(
+                Remark(
+                    severity="warning",
+                    code=f"long {what}",
+                    message=f"{name} spans {values[worst]:.3f} wavelengths at {highest_hz / 1e9:.4g} GHz; split "
+                    "it to a tenth of a wavelength or less",
+                )
+            )
+    return remarks
+
+
+def _thin(model: Model, ends: Array, highest_hz: float) -> list[Remark]:
+    if not len(ends):
+        return []
+    wavelength = 2.0 * np.pi / wavenumber(highest_hz)
+    radius = np.array([w.radius_m for w in model.wires])
+    lengths = np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1)
+    remarks = []
+    short = np.flatnonzero(lengths < radius * (1.0 - 1e-9))
+    if short.size:
+        i = int(short[np.argmin(lengths[short] / radius[short])])
+        remarks.append(
+            Remark(
+                severity="warning",
+                code="segment shorter than its radius",
+                message=f"wire {i} is {lengths[i] * 1e3:.3f} mm long with a radius of {radius[i] * 1e3:.3f} mm "
+                f"({short.size} such); the current across a wire is not modelled, so this adds nothing",
+            )
+        )
+    i = int(np.argmax(radius))
+    if radius[i] > THICK * wavelength:
+        remarks.append(
+            Remark(
+                severity="warning",
+                code="wire not thin",
+                message=f"wire {i} has a radius of {radius[i] / wavelength:.3f} wavelengths; currents are taken as "
+                f"even round the wire, good below {THICK:.3f}",
+            )
+        )
+    return remarks
