@@ -87,7 +87,16 @@ def test_design_json_keeps_the_contract_s_keys(data: dict[str, Any]) -> None:
         assert key in wire
     assert wire["pieces"][0]["role"] == "ground-leg"
     sheet = data["reflector"]
-    assert set(sheet) >= {"kind", "base", "thickness", "inside_radius", "k_factor", "lips", "flat_size", "holes"}
+    assert set(sheet) >= {
+        "kind",
+        "base",
+        "thickness",
+        "inside_radius",
+        "k_factor",
+        "lips",
+        "flat_size",
+        "holes",
+    }
     assert data["values"]["side"]["from"] == "starting value"
     assert all(set(f) >= {"code", "severity", "message", "where"} for f in data["findings"])
 
@@ -134,7 +143,9 @@ def test_the_blank_measured_from_its_dxf(saltmarsh: Path, data: dict[str, Any]) 
     lip = sheet["lips"][0]["height"]
     for axis in (0, 1):
         assert size[axis] == pytest.approx(sheet["base"][axis] + 2.0 * (lip - deduction), abs=1e-5)
-    circles = sorted((c.dxf.center.x, c.dxf.center.y, 2 * c.dxf.radius) for c in document.modelspace().query("CIRCLE"))
+    circles = sorted(
+        (c.dxf.center.x, c.dxf.center.y, 2 * c.dxf.radius) for c in document.modelspace().query("CIRCLE")
+    )
     holes = sorted((h["x"], h["y"], h["diameter"]) for h in sheet["holes"])
     assert np.allclose(circles, holes, atol=1e-5)
 
@@ -286,7 +297,15 @@ def test_every_demo_recipe_builds(path: Path, tmp_path: Path) -> None:
 def test_two_processes_write_the_same_bytes(saltmarsh: Path, tmp_path: Path) -> None:
     env = {**os.environ, "PYTHONHASHSEED": "7", "TZ": "Pacific/Auckland", "LC_ALL": "C"}
     subprocess.run(
-        [sys.executable, "-m", "wavejig", "build", str(RECIPES / "saltmarsh-2g4.toml"), "--out", str(tmp_path)],
+        [
+            sys.executable,
+            "-m",
+            "wavejig",
+            "build",
+            str(RECIPES / "saltmarsh-2g4.toml"),
+            "--out",
+            str(tmp_path),
+        ],
         check=True,
         capture_output=True,
         env=env,

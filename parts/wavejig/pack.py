@@ -13,15 +13,11 @@ import tempfile
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING
 
 import wavejig
 from wavejig.design import resolve
 from wavejig.recipe import RecipeError, RecipeFile, read_recipe
 from wavejig.shop import Inspection, inspect
-
-if TYPE_CHECKING:  # the kernel is loaded by `build` alone, after the design has been judged
-    from wavejig.files.packfiles import PackFiles
 
 Progress = Callable[[str], None]
 _STAGE, _OLD = ".building-", ".replaced-"

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 
 import numpy as np
@@ -27,7 +28,7 @@ def angle_at(a, b, c) -> float:  # type: ignore[no-untyped-def]
 def test_biquad_has_eight_equal_sides_its_angle_and_its_gap(side: float, angle: float, gap: float) -> None:
     shape = lobes.biquad(side, angle, gap, 2.0)
     p = [c.at for c in shape.corners]
-    for a, b in zip(p[:-1], p[1:], strict=True):
+    for a, b in itertools.pairwise(p):
         assert math.dist(a, b) == pytest.approx(side, abs=1e-9)
     for far in (2, 6):
         assert angle_at(p[far - 1], p[far], p[far + 1]) == pytest.approx(angle, abs=1e-6)
@@ -44,7 +45,7 @@ def test_quad_is_one_lobe_over_the_middle(side: float, angle: float, gap: float)
     shape = lobes.quad(side, angle, gap, 2.0)
     p = [c.at for c in shape.corners]
     assert shape.ground is None and len(p) == 5
-    for a, b in zip(p[:-1], p[1:], strict=True):
+    for a, b in itertools.pairwise(p):
         assert math.dist(a, b) == pytest.approx(side, abs=1e-9)
     assert math.dist(p[0], p[4]) == pytest.approx(gap)
     assert p[0][0] == pytest.approx(-p[2][0])

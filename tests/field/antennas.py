@@ -38,7 +38,9 @@ def over_plane(length: float, radius: float, segments: int, height: float) -> Mo
     return Model(wires=wires, ports=(Port(wire=segments // 2, end=0),), plane="z=0")
 
 
-def loop(circumference: float, sides: int, radius: float, *, height: float = 0.0, grounded: bool = False) -> Model:
+def loop(
+    circumference: float, sides: int, radius: float, *, height: float = 0.0, grounded: bool = False
+) -> Model:
     """A circular loop as a polygon of equal developed length, fed at +x."""
     wires = chain(circle(circumference, sides, height), radius, counts=1)
     return Model(wires=wires, ports=(Port(wire=0, end=0),), plane="z=0" if grounded else None)
@@ -57,7 +59,9 @@ def biquad(*, longest_mm: float = 6.0, mesh_mm: float = 12.0, lip_mm: float = 25
     wires += chain(np.array([(x, y, top) for x, y in points]) * 1e-3, radius, longest_m=longest)
     wires += chain(np.array([(0.0, -2.0, 0.0), (0.0, -2.0, top)]) * 1e-3, radius, longest_m=longest)
     return Model(
-        wires=wires, triangles=tray(0.123, lip_mm * 1e-3, mesh_mm * 1e-3, (2e-3,)), ports=(Port(wire=0, end=0),)
+        wires=wires,
+        triangles=tray(0.123, lip_mm * 1e-3, mesh_mm * 1e-3, (2e-3,)),
+        ports=(Port(wire=0, end=0),),
     )
 
 

@@ -28,7 +28,9 @@ def test_a_torus_sector_is_as_large_as_its_triangles(
         cq.Wire.makeCircle(thickness, cq.Vector(radius, 0, 0), cq.Vector(0, 1, 0)), []
     )
     sector = cq.Solid.revolve(disc, turn, cq.Vector(0, 0, 0), cq.Vector(0, 0, 1))
-    placed = sector.rotate(cq.Vector(), cq.Vector(1, 0, 0), lean).rotate(cq.Vector(), cq.Vector(0.3, 1, 0.2), tilt)
+    placed = sector.rotate(cq.Vector(), cq.Vector(1, 0, 0), lean).rotate(
+        cq.Vector(), cq.Vector(0.3, 1, 0.2), tilt
+    )
     mesh = tessellate(placed, name="sector", chord_error_mm=0.01, angle_deg=8.0)
     box = tight_box(placed)
     low, high = mesh.vertices.min(axis=0), mesh.vertices.max(axis=0)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 
 import numpy as np
@@ -113,8 +114,8 @@ def test_closest_approach_is_never_above_a_dense_sampling(a: list, b: list) -> N
     pa, pb = np.array(a), np.array(b)
     got, qa, qb = closest_approach_mm(pa, pb)
     t = np.linspace(0, 1, 60)[:, None]
-    da = np.concatenate([p * (1 - t) + q * t for p, q in zip(pa[:-1], pa[1:], strict=True)])
-    db = np.concatenate([p * (1 - t) + q * t for p, q in zip(pb[:-1], pb[1:], strict=True)])
+    da = np.concatenate([p * (1 - t) + q * t for p, q in itertools.pairwise(pa)])
+    db = np.concatenate([p * (1 - t) + q * t for p, q in itertools.pairwise(pb)])
     sampled = np.linalg.norm(da[:, None] - db[None], axis=2).min()
     assert got <= sampled + 1e-9
     assert math.dist(qa, qb) == pytest.approx(got, abs=1e-9)

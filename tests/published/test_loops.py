@@ -60,7 +60,9 @@ def test_wu_loop_of_one_wavelength(omega: float, millisiemens: complex) -> None:
 
 def test_the_loop_converges_with_segments_shorter_than_the_wire_is_thick() -> None:
     """Omega = 10: segments from 3.7 radii down to 0.93; a reduced kernel drifts here (the check values say)."""
-    real = [float(solve(loop(1.0, n, np.exp(-5.0)), [LIGHT_HZ]).admittance_s[0, 0, 0].real) for n in (40, 80, 120)]
+    real = [
+        float(solve(loop(1.0, n, np.exp(-5.0)), [LIGHT_HZ]).admittance_s[0, 0, 0].real) for n in (40, 80, 120)
+    ]
     wu = wu_admittance(1.0, 10.0).real
     errors = [abs(r / wu - 1.0) for r in real]
     assert errors[0] < 0.004
@@ -68,7 +70,9 @@ def test_the_loop_converges_with_segments_shorter_than_the_wire_is_thick() -> No
     assert errors[2] < errors[1]
 
 
-@pytest.mark.parametrize(("omega", "kb", "ohm"), [(12.0, 1.0834, 146.3), (15.0, 1.0533, 140.8), (20.0, 1.0339, 137.7)])
+@pytest.mark.parametrize(
+    ("omega", "kb", "ohm"), [(12.0, 1.0834, 146.3), (15.0, 1.0533, 140.8), (20.0, 1.0339, 137.7)]
+)
 def test_wu_loop_resonance(omega: float, kb: float, ohm: float) -> None:
     """X = 0 near one wavelength: kb within 1.5 %, and R there within 2.5 %."""
     assert (1.0 / wu_admittance(kb, omega)).imag == pytest.approx(0.0, abs=0.5)
@@ -79,7 +83,8 @@ def test_wu_loop_resonance(omega: float, kb: float, ohm: float) -> None:
 
 
 @pytest.mark.parametrize(
-    ("height", "circle_dbi", "square_dbi"), [(None, 3.489, 3.136), (0.125, 9.357, 9.171), (0.25, 8.250, 8.035)]
+    ("height", "circle_dbi", "square_dbi"),
+    [(None, 3.489, 3.136), (0.125, 9.357, 9.171), (0.25, 8.250, 8.035)],
 )
 def test_assumed_cosine_currents(height: float | None, circle_dbi: float, square_dbi: float) -> None:
     """Current cos(2 pi s) from the feed round a 1-wavelength circle, and a square fed at a corner: 0.01 dB."""

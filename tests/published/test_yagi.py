@@ -18,7 +18,9 @@ THICK = 0.0085
 
 def yagi(reflector: float, directors: list[float], spacing: float, driven: float = 0.466) -> Model:
     places = [(-0.2, reflector), (0.0, driven), *((spacing * (i + 1), d) for i, d in enumerate(directors))]
-    wires = sum((chain([(x, 0.0, -s / 2.0), (x, 0.0, s / 2.0)], THICK / 2.0, counts=16) for x, s in places), ())
+    wires = sum(
+        (chain([(x, 0.0, -s / 2.0), (x, 0.0, s / 2.0)], THICK / 2.0, counts=16) for x, s in places), ()
+    )
     return Model(wires=wires, ports=(Port(wire=16 + 8, end=0),))
 
 

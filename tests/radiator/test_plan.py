@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 
 import numpy as np
@@ -155,8 +156,8 @@ def test_sides_are_equal_between_the_intersections_of_the_centrelines() -> None:
     d = design()
     lines = [s for s in plan(d).main.path.segments if isinstance(s, Line)]
     flat = [s for s in lines if abs(s.start[2] - s.end[2]) < 1e-9]
-    crossings = [intersection(a, b) for a, b in zip(flat[:-1], flat[1:], strict=True)]
-    lengths = [math.dist(a, b) for a, b in zip(crossings[:-1], crossings[1:], strict=True)]
+    crossings = [intersection(a, b) for a, b in itertools.pairwise(flat)]
+    lengths = [math.dist(a, b) for a, b in itertools.pairwise(crossings)]
     assert lengths == pytest.approx([d.radiator.side_mm] * 6, abs=1e-9)
 
 

@@ -17,7 +17,8 @@ from wavejig.field.units import wavenumber
 Array = NDArray[np.float64]
 Index = NDArray[np.int64]
 
-LONG = 0.1  # of a wavelength: longer segments and sides are remarked on
+LONG = 0.1  # of a wavelength: longer segments are remarked on
+LONG_SIDE = 0.15  # of a wavelength: the diagonal of a tenth by a tenth, for the longest side of a triangle
 FAR_TOO_LONG = 0.25  # of a wavelength: refused
 THICK = 1.0 / 30.0  # of a wavelength: a radius above it is not thin
 MOST_UNKNOWNS = 20_000  # 6 GiB of matrix
@@ -326,7 +327,7 @@ def _lengths(model: Model, ends: Array, highest_hz: float) -> list[Remark]:
         axis=1, initial=0.0
     )
     remarks = []
-    for what, values in (("segment", lengths), ("triangle side", sides / wavelength)):
+    for what, values, limit in (("segment", lengths, LONG), ("triangle side", sides / wavelength, LONG_SIDE)):
         if not len(values):
             continue
         worst = int(np.argmax(values))
@@ -337,13 +338,13 @@ def _lengths(model: Model, ends: Array, highest_hz: float) -> list[Remark]:
                 f"{name} spans {values[worst]:.3f} wavelengths at {highest_hz / 1e9:.4g} GHz, at most "
                 f"{FAR_TOO_LONG} can be solved; split it to a tenth or less",
             )
-        if values[worst] > LONG:
+        if values[worst] > limit:
             remarks.append(
                 Remark(
                     severity="warning",
                     code=f"long {what}",
-                    message=f"{name} spans {values[worst]:.3f} wavelengths at {highest_hz / 1e9:.4g} GHz; split "
-                    "it to a tenth of a wavelength or less",
+                    message=f"{name} spans {values[worst]:.3f} wavelengths at {highest_hz / 1e9:.4g} GHz; refine "
+                    "the mesh to a tenth of a wavelength or less",
                 )
             )
     return remarks

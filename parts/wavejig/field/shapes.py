@@ -75,7 +75,7 @@ def plate(x_m: ArrayLike, y_m: ArrayLike, z_m: float = 0.0) -> Array:
 
 def grid_lines(marks_m: Sequence[float], longest_m: float) -> Array:
     """Ascending lines through all marks, equal steps between neighbours, none longer than longest_m."""
-    marks = sorted(marks_m)
+    marks = sorted(set(marks_m))
     lines: list[float] = []
     for a, b in zip(marks[:-1], marks[1:], strict=True):
         count = max(1, math.ceil((b - a) / longest_m - 1e-9))

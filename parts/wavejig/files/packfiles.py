@@ -165,7 +165,9 @@ class PackFiles:
 
     def write_design(self) -> None:
         """design.json."""
-        data = design_data(self.design, self.radiator, self.pattern, self.inspection.findings)
+        data = design_data(
+            self.design, self.radiator, self.pattern, self.fixture, self.spacer, self.inspection.findings
+        )
         path = self._path("design.json")
         write_design_json(data, path)
         check_design_json(path, data)

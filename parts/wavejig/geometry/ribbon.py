@@ -7,8 +7,9 @@ arcs are lines and arcs, so nothing is approximated.
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
-from wavejig.geometry.path import Arc, Path, tangent_at_end, tangent_at_start
+from wavejig.geometry.path import Arc, Path, Segment, tangent_at_end, tangent_at_start
 from wavejig.geometry.plane import Contour, Vertex
 
 
@@ -66,9 +67,7 @@ def ribbon(path: Path, half_width_mm: float, *, extend_mm: float = 0.0) -> Conto
 
 
 def _safe_parallel(path: Path, offset_mm: float) -> tuple[Vertex, ...]:
-    from dataclasses import replace
-
-    widened = []
+    widened: list[Segment] = []
     for s in path.segments:
         if isinstance(s, Arc):
             inward = offset_mm if s.normal[2] > 0 else -offset_mm

@@ -63,7 +63,8 @@ def _upright(heads: list[str], units: list[str], body: list[list[str]]) -> list[
     out: list[str] = []
     at = 0
     while at < len(body):
-        widths, end = [], at
+        widths: list[int] = []
+        end = at
         while end < len(body):
             width = max(len(c) for c in body[end])
             if widths and label + sum(widths) + width + 2 * (len(widths) + 1) > _PAGE:
