@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import os
+from pathlib import Path
 
 import pytest
 from hypothesis import HealthCheck, settings
@@ -39,3 +40,12 @@ def pytest_sessionfinish(session: pytest.Session) -> None:
     reporter = session.config.pluginmanager.get_plugin("terminalreporter")
     if os.environ.get("WAVEJIG_NO_SKIPS") and reporter is not None and reporter.stats.get("skipped"):
         session.exitstatus = pytest.ExitCode.TESTS_FAILED
+
+
+@pytest.fixture(scope="session")
+def saltmarsh(tmp_path_factory: pytest.TempPathFactory) -> Path:
+    """One built pack, for many looks; tests read it and leave it as it is."""
+    from wavejig.pack import build
+
+    recipe = Path(__file__).parents[1] / "recipes" / "saltmarsh-2g4.toml"
+    return build(recipe, tmp_path_factory.mktemp("packs")).folder

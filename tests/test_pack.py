@@ -29,14 +29,6 @@ DEMOS = sorted(RECIPES.glob("*.toml"))
 
 
 @pytest.fixture(scope="module")
-def saltmarsh(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    """One built pack, for many looks."""
-    out = tmp_path_factory.mktemp("out")
-    assert main(["build", str(RECIPES / "saltmarsh-2g4.toml"), "--out", str(out)]) == 0
-    return out / "saltmarsh-2g4"
-
-
-@pytest.fixture(scope="module")
 def data(saltmarsh: Path) -> dict[str, Any]:
     loaded: dict[str, Any] = json.loads((saltmarsh / "design.json").read_text())
     return loaded
@@ -271,8 +263,9 @@ def test_a_read_only_folder_exits_3(tmp_path: Path) -> None:
     recipe, out = built_good(tmp_path)
     out.mkdir()
     out.chmod(0o555)
-    for folder in (tmp_path, *tmp_path.parents[:2]):
-        folder.chmod(0o755)
+    for folder in (tmp_path, *tmp_path.parents):
+        if folder.name.startswith(("test_", "pytest-", "popen-")):
+            folder.chmod(0o755)
     command = [sys.executable, "-m", "wavejig", "build", str(recipe), "--out", str(out)]
     if os.geteuid() == 0:
         command = ["setpriv", "--reuid=65534", "--clear-groups", *command]

@@ -18,6 +18,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from wavejig.field.errors import ModelError
+from wavejig.field.gap import spread_gap
 from wavejig.field.model import Model
 
 Array = NDArray[np.float64]
@@ -226,14 +227,16 @@ class _Finder:
         return branch
 
     def _ports(self, half: Index, unknown: Index, coefficient: Array) -> Array:
+        """Volts of each port along each unknown's current, for 1 volt: its gap is spread, see gap.py."""
         table = np.zeros((len(self.model.ports), self.count))
         for row, port in enumerate(self.model.ports):
-            mine = half == 3 * port.wire + port.end
-            if not mine.any():
+            if not np.any(half == 3 * port.wire + port.end):
                 raise ModelError(
                     "port on nothing",
                     f"port {row} sits at end {port.end} of wire {port.wire}, which joins nothing there; "
                     "join another wire or the sheet to that end",
                 )
-            np.add.at(table[row], unknown[mine], coefficient[mine] * (1.0 if port.end == 0 else -1.0))
+            for shape, volts in spread_gap(self.model, self.nodes.wire_ends, self.nodes.corners, self.on_ground, port):
+                mine = half == shape
+                np.add.at(table[row], unknown[mine], coefficient[mine] * volts)
         return table
