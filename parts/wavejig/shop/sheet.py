@@ -148,6 +148,14 @@ def _cutting(design: Design) -> Iterator[Finding]:
             "drilled).",
             where="cutter.process",
         )
+    elif not metal.laser_friendly and metal.foldable and "laser" in process.name:
+        yield Finding(
+            code="metal-needs-fibre",
+            severity=NOTE,
+            message=f"{metal.name} reflects the beam of many lasers; a fibre laser takes it",
+            remedy="Say the metal when you ask for a price; waterjet and guillotine (holes drilled) do it too.",
+            where="cutter.process",
+        )
     if not process.cuts_holes:
         yield Finding(
             code="holes-by-drill",
