@@ -42,7 +42,7 @@ _BULGE_PLACES = 12
 class Layer:
     """Entities of one process. A name that contains "cut" takes contours and circles only.
 
-    colour: AutoCAD colour index 1 to 255 (7 is black or white, whichever shows).
+    colour: DXF colour index 1 to 255 (7 is black or white, whichever shows).
     """
 
     name: str
