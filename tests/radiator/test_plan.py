@@ -104,7 +104,7 @@ def test_distance_from_the_cut_end_adds_up(made: tuple[Design, Radiator]) -> Non
 
 
 def test_every_bend_is_overbent_and_keeps_its_arc_length(made: tuple[Design, Radiator]) -> None:
-    d, radiator = made
+    _, radiator = made
     for piece in radiator.pieces:
         for b in piece.bends:
             half = piece.diameter_mm / 2.0
