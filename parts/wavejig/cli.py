@@ -1,6 +1,7 @@
 """The command line: arguments, progress, exit codes. Everything heavy is imported inside its command.
 
-Exit codes: 0 fine; 1 a design that cannot be made; 2 wrong input; 3 the machine let us down.
+Exit codes: 0 fine; 1 a design that cannot be made or misses a figure its recipe states; 2 wrong input;
+3 the machine let us down.
 """
 
 from __future__ import annotations
@@ -12,13 +13,22 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
 import wavejig
+from wavejig.commands.telling import (
+    CANNOT_BE_MADE,
+    MACHINE,
+    OK,
+    WRONG_INPUT,
+    input_error,
+    say,
+    stop,
+    unreadable,
+)
 
 if TYPE_CHECKING:
     from wavejig.shop import Finding, Inspection
 
-OK, CANNOT_BE_MADE, WRONG_INPUT, MACHINE = 0, 1, 2, 3
-
-_OPTIONS = ("--help", "--version", "--json", "--out", "--schema")
+COMMANDS = ("new", "check", "match", "build", "stock")
+_OPTIONS = ("--help", "--version", "--json", "--out", "--schema", "--plot", "--skip-field")
 
 _ABOUT = """\
 From one recipe to the files, tables and figures for making equal loop antennas."""
@@ -27,12 +37,14 @@ _EXAMPLES = """\
 examples:
   wavejig new my-antenna.toml           write a commented recipe to start from
   wavejig check my-antenna.toml         can it be made? (answers in a blink)
+  wavejig match my-antenna.toml         how will it match and radiate?
   wavejig build my-antenna.toml         write the pack into out/<name>/
   wavejig build recipes/*.toml --out packs
   wavejig stock                         list the stock tables
   wavejig stock connectors              print one
 
-exit codes: 0 fine, 1 the design cannot be made (no pack), 2 wrong input, 3 the machine let us down
+exit codes: 0 fine; 1 the design cannot be made (no pack), or misses a figure its recipe states;
+2 wrong input; 3 the machine let us down
 """
 
 
@@ -57,7 +69,7 @@ class _Parser(argparse.ArgumentParser):
 
         words = message.split("'")
         if "invalid choice" in message and len(words) > 1:
-            near = nearest(words[1], ("new", "check", "build", "stock"))
+            near = nearest(words[1], COMMANDS)
             message = f'no command "{words[1]}"' + (f', did you mean "{near}"?' if near else "")
         elif message.startswith("unrecognized arguments"):
             word = message.split(": ", 1)[1].split()[0]
@@ -103,6 +115,16 @@ def _parser() -> argparse.ArgumentParser:
     _recipes(check)
     check.set_defaults(run=_check)
 
+    match = command(
+        "match",
+        "predict how the antennas as made will match and radiate",
+        "  wavejig match saltmarsh-2g4.toml\n  wavejig match saltmarsh-2g4.toml --plot match.png\n"
+        "  wavejig match recipes/*.toml --json\n",
+    )
+    _recipes(match)
+    match.add_argument("--plot", type=Path, metavar="FILE", help="draw the match and both cuts (png, svg, pdf)")
+    match.set_defaults(run=_match)
+
     build = command(
         "build",
         "write the pack of each recipe: everything the machines and the bench need",
@@ -110,6 +132,9 @@ def _parser() -> argparse.ArgumentParser:
     )
     _recipes(build)
     build.add_argument("--out", type=Path, default=Path("out"), metavar="DIR", help="where packs go (out)")
+    build.add_argument(
+        "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
+    )
     build.set_defaults(run=_build)
 
     stock = command(
@@ -136,20 +161,20 @@ def _new(args: argparse.Namespace) -> int:
         from wavejig.recipe.models import Recipe
 
         schema = {"$schema": "https://json-schema.org/draft/2020-12/schema", **Recipe.model_json_schema()}
-        _say(json.dumps(schema, indent=1))
+        say(json.dumps(schema, indent=1))
         return OK
     if args.file is None:
-        return _fail(WRONG_INPUT, "new: which file? Try: wavejig new my-antenna.toml")
+        return stop(WRONG_INPUT, "new: which file? Try: wavejig new my-antenna.toml")
     from wavejig.recipe.starter import starter
 
     try:
         with args.file.open("x", encoding="utf-8", newline="\n") as stream:
             stream.write(starter(args.file.stem))
     except FileExistsError:
-        return _fail(WRONG_INPUT, f"{args.file}: exists already, and is left as it is; choose another name")
+        return stop(WRONG_INPUT, f"{args.file}: exists already, and is left as it is; choose another name")
     except OSError as err:
-        return _fail(MACHINE, f"{args.file}: cannot be written: {err.strerror}")
-    _say(f"{args.file} written. Next: wavejig check {args.file}")
+        return stop(MACHINE, f"{args.file}: cannot be written: {err.strerror}")
+    say(f"{args.file} written. Next: wavejig check {args.file}")
     return OK
 
 
@@ -163,20 +188,26 @@ def _check(args: argparse.Namespace) -> int:
             _, inspection = inspect_recipe(path)
         except RecipeError as err:
             code = max(code, WRONG_INPUT)
-            results.append(_input_error(path, err, args.json))
+            results.append(input_error(path, err, args.json))
             continue
         except OSError as err:
             code = max(code, WRONG_INPUT)
-            results.append(_unreadable(path, err, args.json))
+            results.append(unreadable(path, err, args.json))
             continue
         if not inspection.can_be_made:
             code = max(code, CANNOT_BE_MADE)
         results.append({"recipe": str(path), **_inspection_data(inspection)})
         if not args.json:
-            _say(_inspection_text(path, inspection))
+            say(_inspection_text(path, inspection))
     if args.json:
-        _say(json.dumps(results, indent=1))
+        say(json.dumps(results, indent=1))
     return code
+
+
+def _match(args: argparse.Namespace) -> int:
+    from wavejig.commands.matching import run
+
+    return run(args)
 
 
 def _build(args: argparse.Namespace) -> int:
@@ -188,11 +219,11 @@ def _build(args: argparse.Namespace) -> int:
     for path in args.recipes:
         meter = Meter(path.name, sys.stderr, quiet=args.json)
         try:
-            built = build(path, args.out, meter.step)
+            built = build(path, args.out, meter.step, predict=not args.skip_field, announce=_announce)
         except RecipeError as err:
             meter.end()
             code = max(code, WRONG_INPUT)
-            results.append(_input_error(path, err, args.json))
+            results.append(input_error(path, err, args.json))
         except CannotBeMadeError as err:
             meter.end()
             code = max(code, CANNOT_BE_MADE)
@@ -203,7 +234,7 @@ def _build(args: argparse.Namespace) -> int:
             meter.end()
             if err.filename is not None and Path(str(err.filename)) == path:
                 code = max(code, WRONG_INPUT)
-                results.append(_unreadable(path, err, args.json))
+                results.append(unreadable(path, err, args.json))
                 continue
             code = MACHINE
             message = f"{path}: pack not written: {err.strerror or err}"
@@ -222,9 +253,12 @@ def _build(args: argparse.Namespace) -> int:
                 }
             )
             if not args.json:
-                _say(_built_text(built))
+                say(_built_text(built))
+            if not built.keeps_its_promise:
+                code = max(code, CANNOT_BE_MADE)
+                sys.stderr.write(f"{path}: the pack is written, but {_missed(built)}\n")
     if args.json:
-        _say(json.dumps(results, indent=1))
+        say(json.dumps(results, indent=1))
     return code
 
 
@@ -233,12 +267,12 @@ def _stock(args: argparse.Namespace) -> int:
     from wavejig.stock.tables import UnknownTableError
 
     if args.table is None:
-        _say(json.dumps(list_tables(), indent=1) if args.json else _table_list(list_tables()))
+        say(json.dumps(list_tables(), indent=1) if args.json else _table_list(list_tables()))
         return OK
     try:
-        _say(json.dumps(table_data(args.table), indent=1) if args.json else table_text(args.table))
+        say(json.dumps(table_data(args.table), indent=1) if args.json else table_text(args.table))
     except UnknownTableError as err:
-        return _fail(WRONG_INPUT, str(err))
+        return stop(WRONG_INPUT, str(err))
     return OK
 
 
@@ -297,38 +331,17 @@ def _built_text(built: Any) -> str:
     return "\n".join([head, *warnings])
 
 
+def _missed(built: Any) -> str:
+    return next(f.message for f in built.inspection.findings if f.code == "prediction-misses")
+
+
+def _announce(message: str) -> None:
+    sys.stderr.write(f"{message}\n")
+
+
 def _table_list(tables: list[dict[str, Any]]) -> str:
     width = max(len(t["name"]) for t in tables)
     return "\n".join(f"{t['name']:<{width}}  {t['title']} ({t['rows']} rows)" for t in tables)
-
-
-def _input_error(path: Path, err: Any, as_json: bool) -> dict[str, Any]:
-    if not as_json:
-        sys.stderr.write(f"{err}\n")
-    return {
-        "recipe": str(path),
-        "problems": [
-            {"line": p.line, "key": p.key, "read": p.read, "allowed": p.allowed, "fix": p.fix}
-            for p in err.problems
-        ],
-    }
-
-
-def _unreadable(path: Path, err: OSError, as_json: bool) -> dict[str, Any]:
-    message = f"{path}: cannot be read: {err.strerror or err}. Allowed: a recipe file; `wavejig new FILE` writes one."
-    if not as_json:
-        sys.stderr.write(f"{message}\n")
-    return {"recipe": str(path), "error": message}
-
-
-def _fail(code: int, message: str) -> int:
-    sys.stderr.write(f"wavejig: {message}\n")
-    return code
-
-
-def _say(text: str) -> None:
-    sys.stdout.write(f"{text}\n")
-    sys.stdout.flush()
 
 
 if __name__ == "__main__":

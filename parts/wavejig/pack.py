@@ -13,11 +13,15 @@ import tempfile
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import wavejig
 from wavejig.design import resolve
 from wavejig.recipe import RecipeError, RecipeFile, read_recipe
 from wavejig.shop import Inspection, inspect
+
+if TYPE_CHECKING:
+    from wavejig.field.prediction import Prediction
 
 Progress = Callable[[str], None]
 _STAGE, _OLD = ".building-", ".replaced-"
@@ -31,6 +35,12 @@ class Built:
     files: int
     bytes: int
     inspection: Inspection
+    prediction: Prediction | None  # None where the build was told to leave it out
+
+    @property
+    def keeps_its_promise(self) -> bool:
+        """Nothing predicted misses a figure the recipe states."""
+        return self.prediction is None or self.prediction.meets_target
 
 
 class CannotBeMadeError(Exception):
@@ -51,9 +61,17 @@ def inspect_recipe(path: Path) -> tuple[RecipeFile, Inspection]:
     return recipe_file, inspect(design)
 
 
-def build(path: Path, out: Path, progress: Progress = lambda _: None) -> Built:
+def build(
+    path: Path,
+    out: Path,
+    progress: Progress = lambda _: None,
+    *,
+    predict: bool = True,
+    announce: Progress = lambda _: None,
+) -> Built:
     """Build the pack of a recipe into `out`/<name>/.
 
+    predict: solve the field and write field/. announce: told once if the solver has to be compiled.
     Raises RecipeError (exit 2), CannotBeMadeError (exit 1), OSError (exit 3); FileCheckError or a kernel
     error when a file does not come back as it was written, which is a fault of ours.
     """
@@ -65,14 +83,20 @@ def build(path: Path, out: Path, progress: Progress = lambda _: None) -> Built:
     from wavejig.files.packfiles import PackFiles
 
     with staging(out, inspection.design.name) as stage:
-        files = PackFiles(inspection, stage)
+        files = PackFiles(inspection, stage, predict=predict, announce=announce)
         for step in files.steps():
             progress(step.title)
             step.run()
         progress("checking the pack")
         files.finish(_versions())
         count, size = files.totals()
-    return Built(folder=out / inspection.design.name, files=count, bytes=size, inspection=inspection)
+    return Built(
+        folder=out / inspection.design.name,
+        files=count,
+        bytes=size,
+        inspection=files.inspection,
+        prediction=files.prediction,
+    )
 
 
 @contextlib.contextmanager
@@ -124,5 +148,5 @@ def _clear_leftovers(out: Path, name: str) -> None:
 def _versions() -> dict[str, str]:
     from importlib.metadata import version
 
-    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "trimesh", "shapely")
+    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "scipy", "numba", "trimesh", "shapely")
     return {"wavejig": wavejig.__version__, **{name: version(name) for name in libraries}}

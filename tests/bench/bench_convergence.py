@@ -55,9 +55,10 @@ def main() -> None:
     for path in paths:
         began = time.perf_counter()
         c = compare(resolve(read_recipe(path).recipe))
+        edge = "" if c["inside"] else "  (at the edge)"
         print(
-            f"{path.stem:<22} {c['resonance_hz'] / 1e6:>6.0f} MHz {c['resonance_shift']:>+7.2f}% {c['peak_ms']:>7.2f} mS "
-            f"{c['peak_shift']:>+7.2f}%  {time.perf_counter() - began:.1f}{'' if c['inside'] else '  (at the edge)'}",
+            f"{path.stem:<22} {c['resonance_hz'] / 1e6:>6.0f} MHz {c['resonance_shift']:>+7.2f}% "
+            f"{c['peak_ms']:>7.2f} mS {c['peak_shift']:>+7.2f}%  {time.perf_counter() - began:.1f}{edge}",
             flush=True,
         )
 

@@ -16,7 +16,7 @@ from ezdxf.addons.drawing.config import BackgroundPolicy, Configuration
 from ezdxf.addons.drawing.matplotlib import MatplotlibBackend
 
 matplotlib.use("agg")
-import matplotlib.pyplot as plt  
+import matplotlib.pyplot as plt
 
 
 def render_solid(source: Path, target: Path, view: tuple[float, float, float] = (0.6, -1.0, 0.8)) -> None:

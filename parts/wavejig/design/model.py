@@ -216,6 +216,23 @@ class ToleranceDesign:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class StationDesign:
+    """Where it will work; None: not given, the sheet assumes something and says so."""
+
+    transmitter_power_w: float | None = None
+    cable_loss_db: float | None = None
+    wind_speed_m_per_s: float | None = None
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class SheetDesign:
+    """Paper ("A4", "Letter") and projection ("first", "third") of drawings and build sheet."""
+
+    paper: str = "A4"
+    projection: str = "first"
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Design:
     """One antenna, every number resolved. `values` tells where the main ones came from."""
 
@@ -234,3 +251,5 @@ class Design:
     pole_mm: float | None
     values: tuple[tuple[str, Value], ...]
     conflicts: tuple[Conflict, ...]
+    station: StationDesign = StationDesign()
+    sheet: SheetDesign = SheetDesign()

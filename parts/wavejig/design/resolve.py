@@ -20,7 +20,9 @@ from wavejig.design.model import (
     PrinterDesign,
     RadiatorDesign,
     ReflectorDesign,
+    SheetDesign,
     SpacerDesign,
+    StationDesign,
     TargetDesign,
     ToleranceDesign,
 )
@@ -84,6 +86,12 @@ def resolve(recipe: Recipe) -> Design:
         pole_mm=None if recipe.mounting.pole == "none" else recipe.mounting.pole,
         values=tuple(ledger.values),
         conflicts=tuple(ledger.conflicts),
+        station=StationDesign(
+            transmitter_power_w=recipe.station.transmitter_power,
+            cable_loss_db=recipe.station.cable_loss,
+            wind_speed_m_per_s=recipe.station.wind_speed,
+        ),
+        sheet=SheetDesign(paper=recipe.sheet.paper, projection=recipe.sheet.projection),
     )
 
 

@@ -84,7 +84,7 @@ class Elements:
 
     @property
     def unknowns(self) -> int:
-        return self.ports.shape[1]
+        return int(self.ports.shape[1])
 
 
 def effective_radii(model: Model) -> Array:
@@ -217,4 +217,4 @@ def _fan_moments(bary: Array, v: Array, share: Array) -> Array:
     at = np.stack([1.0 - u, u * (1.0 - t), u * t], axis=1)
     cardinal = at @ np.linalg.inv(bary)
     e = np.einsum("gc,fck->fgk", np.stack([-np.ones_like(t), 1.0 - t, t], axis=1), v)
-    return np.einsum("g,gp,fgk,f->fpk", weight, cardinal, e, share)
+    return np.asarray(np.einsum("g,gp,fgk,f->fpk", weight, cardinal, e, share))

@@ -11,14 +11,14 @@ from numpy.typing import NDArray
 
 from wavejig.field.errors import ModelError, Remark
 from wavejig.field.model import Model
-from wavejig.field.unknowns import Nodes, merge_points, wire_ends
 from wavejig.field.units import wavenumber
+from wavejig.field.unknowns import Nodes, merge_points, wire_ends
 
 Array = NDArray[np.float64]
 Index = NDArray[np.int64]
 
 LONG = 0.1  # of a wavelength: longer segments are remarked on
-LONG_SIDE = 0.15  # of a wavelength: the diagonal of a tenth by a tenth, for the longest side of a triangle
+LONG_SIDE = 0.17  # of a wavelength: the diagonal of 0.12 by 0.12, for the longest side of a triangle
 FAR_TOO_LONG = 0.25  # of a wavelength: refused
 THICK = 1.0 / 30.0  # of a wavelength: a radius above it is not thin
 MOST_UNKNOWNS = 20_000  # 6 GiB of matrix
@@ -257,7 +257,7 @@ def segment_distance(a: Array, b: Array) -> Array:
     s, t = (uv * vw - vv * uw) / safe, (uu * vw - uv * uw) / safe
     inside = skew & (s > 0.0) & (s < 1.0) & (t > 0.0) & (t < 1.0)
     across = np.linalg.norm(w + s[:, None] * u - t[:, None] * v, axis=1)
-    return np.where(inside, np.minimum(best, across), best)
+    return np.asarray(np.where(inside, np.minimum(best, across), best))
 
 
 def _through_sheet(model: Model, nodes: Nodes, ends: Array) -> None:

@@ -40,7 +40,7 @@ def sphere_degree(elements: Elements, frequency_hz: float) -> int:
     used = elements.shapes.points.reshape(-1, 3)
     middle = 0.5 * (used.min(axis=0) + used.max(axis=0))
     kr = wavenumber(frequency_hz) * float(np.linalg.norm(used - middle, axis=1).max())
-    return 2 * math.ceil(kr + 3.0 * kr ** (1.0 / 3.0) + 6.0)
+    return 2 * math.ceil(kr + 3.0 * math.cbrt(kr) + 6.0)
 
 
 def point_currents(elements: Elements, currents_a: Complex) -> Complex:

@@ -10,12 +10,14 @@ from __future__ import annotations
 
 import itertools
 import math
+from collections.abc import Sequence
 from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from wavejig.design.model import Design
+from wavejig.field.mesh_plan import MeshPlan
 from wavejig.field.mesh_sheet import sheet_triangles
 from wavejig.field.mesh_wire import chords
 from wavejig.field.model import Insulation, Model, Port, Wire
@@ -37,10 +39,14 @@ _MM = 1e-3
 _SAME_MM = 0.01
 
 
-def model_from_design(design: Design, refine: float = 1.0) -> Model:
-    """The model of a design. refine: 2 halves every edge."""
+def model_from_design(design: Design, refine: float = 1.0, plan: MeshPlan | None = None) -> Model:
+    """The model of a design. refine: 2 halves every edge.
+
+    plan: a fresh one is filled; one that has been filled meshes this neighbour of its design alike.
+    """
+    plan = MeshPlan() if plan is None else plan
     radiator = plan_radiator(design)
-    wires = _Wires(design, radiator, refine)
+    wires = _Wires(design, radiator, refine, plan)
     wires.build()
     wavelength = design.target.wavelength_mm
     tray = plan_tray(design.reflector, corner_practice(design.cutter))
@@ -49,7 +55,9 @@ def model_from_design(design: Design, refine: float = 1.0) -> Model:
         [(float(p[0]), float(p[1])) for p in wires.landings],
         SHEET_STEP * wavelength / refine,
         LANDING_RADII * wires.landing_radius_mm / refine,
+        plan,
     )
+    plan.close()
     return Model(
         wires=tuple(wires.wires),
         triangles=triangles * _MM,
@@ -68,7 +76,9 @@ def reference_plane(design: Design) -> str:
 class _Wires:
     """Gathers wire segments (metres), landing points (mm) and the port."""
 
-    def __init__(self, design: Design, radiator: Radiator, refine: float) -> None:
+    def __init__(self, design: Design, radiator: Radiator, refine: float, plan: MeshPlan) -> None:
+        self.plan = plan
+        self.chains = 0
         self.design = design
         self.r = design.radiator
         self.feed = design.feed
@@ -98,7 +108,9 @@ class _Wires:
         if not self.closed:
             if self.feed.leg_is_wire:
                 self._chain(
-                    chords(_from_sheet(main, both=True), self.step), self.r.wire_diameter_mm / 2.0, wire=True
+                    self._chords(_from_sheet(main, both=True), self.step),
+                    self.r.wire_diameter_mm / 2.0,
+                    wire=True,
                 )
                 self.port = (0, 0)
                 return
@@ -110,7 +122,7 @@ class _Wires:
             body, tail = _without_tail(main)
             start = _from_sheet(body, both=False)
             top = np.array([*self.feed.pin_leg, self.r.standoff_mm - self.r.bend_radius_mm])
-            nodes = chords(start, self.step, marks=[tap[1], *self._lap_marks(top)])
+            nodes = self._chords(start, self.step, marks=[tap[1], *self._lap_marks(top)])
             self._chain(nodes, self.r.wire_diameter_mm / 2.0, wire=True, lap_top=top)
             self.port = (0, 0)
             self._chain(np.array([tail, top]), self.r.wire_diameter_mm / 2.0)
@@ -119,10 +131,14 @@ class _Wires:
             body, head_tail = _without_tail(first.reversed())
             leg_path = _from_sheet(self.pieces["pin-leg"].path, both=False)
             top = np.array(leg_path.end)
-            self._chain(chords(leg_path, self.step, marks=self._lap_marks(top)), leg, wire=True, lap_top=top)
+            self._chain(
+                self._chords(leg_path, self.step, marks=self._lap_marks(top)), leg, wire=True, lap_top=top
+            )
             self.port = (0, 0)
             self._chain(np.array([top, body_tail]), self.r.wire_diameter_mm / 2.0)
-            self._chain(chords(body, self.step, marks=[tap[1]]), self.r.wire_diameter_mm / 2.0, wire=True)
+            self._chain(
+                self._chords(body, self.step, marks=[tap[1]]), self.r.wire_diameter_mm / 2.0, wire=True
+            )
             self._chain(np.array([head_tail, top]), self.r.wire_diameter_mm / 2.0)
         self._ground_leg(tap)
 
@@ -154,7 +170,7 @@ class _Wires:
         path = self.pieces["ground-leg"].path
         # the lapped arm is one with the side above it: the leg begins at its bend
         down = _from_sheet(Path(segments=path.segments[1:]).reversed(), both=False)
-        nodes = chords(down, self.step)
+        nodes = self._chords(down, self.step)
         self._chain(np.vstack([nodes, tap[1][None]]), self.feed.leg_diameter_mm / 2.0, wire=True)
 
     def _separate_legs_open(self, main: Path) -> None:
@@ -163,12 +179,12 @@ class _Wires:
         body, first_tail = _without_tail(first.reversed())
         pin = _from_sheet(self.pieces["pin-leg"].path, both=False)
         ground = _from_sheet(self.pieces["ground-leg"].path.reversed(), both=False)
-        self._chain(chords(pin, self.step), leg, wire=True)
+        self._chain(self._chords(pin, self.step), leg, wire=True)
         self.port = (0, 0)
         self._chain(np.array([pin.end, body.start]), leg)
-        self._chain(chords(body, self.step), self.r.wire_diameter_mm / 2.0, wire=True)
+        self._chain(self._chords(body, self.step), self.r.wire_diameter_mm / 2.0, wire=True)
         self._chain(np.array([body.end, ground.end]), leg)
-        self._chain(chords(ground, self.step), leg, wire=True)
+        self._chain(self._chords(ground, self.step), leg, wire=True)
         del last_tail, first_tail
 
     # -- tube ---------------------------------------------------------------------------------------
@@ -185,13 +201,13 @@ class _Wires:
         hook = self._hook(main, pin)
         body = self._terminal_to_terminal(main, pin)
         apex = self._ground_contact(main)
-        nodes = chords(body, self.step, marks=[hook])
+        nodes = self._chords(body, self.step, marks=[hook])
         if self.closed:
             nodes[-1] = nodes[0]
         self._chain(nodes, self.r.wire_diameter_mm / 2.0, wire=True)
         contact = nodes[int(np.argmin(np.linalg.norm(nodes - apex, axis=1)))]
         self._chain(
-            chords(Path(segments=(Line(start=_point(foot), end=_point(top)),)), self.step),
+            self._chords(Path(segments=(Line(start=_point(foot), end=_point(top)),)), self.step),
             tube.outer_diameter_mm / 2.0,
             conductivity=COPPER_MS_PER_M,
         )
@@ -203,7 +219,9 @@ class _Wires:
         rise = np.array([top[0], top[1], level])
         start = len(self.wires)
         self._chain(
-            _split(np.array([top, rise, over, hook]), self.step), inner_radius, conductivity=COPPER_MS_PER_M
+            _split(np.array([top, rise, over, hook]), self.step, self.plan),
+            inner_radius,
+            conductivity=COPPER_MS_PER_M,
         )
         self.port = (start, 0)
 
@@ -236,6 +254,10 @@ class _Wires:
         return np.array(nearest.middle)
 
     # -- segments -----------------------------------------------------------------------------------
+
+    def _chords(self, path: Path, step: float, marks: Sequence[Array] = ()) -> Array:
+        self.chains += 1
+        return chords(path, step, marks=marks, plan=self.plan, name=f"chain {self.chains}")
 
     def _chain(
         self,
@@ -299,10 +321,11 @@ def _from_sheet(path: Path, *, both: bool) -> Path:
     return Path(segments=tuple(segments))
 
 
-def _split(points: Array, step: float) -> Array:
+def _split(points: Array, step: float, plan: MeshPlan) -> Array:
     out = [points[0]]
-    for a, b in zip(points[:-1], points[1:], strict=True):
-        n = max(1, math.ceil(float(np.linalg.norm(b - a)) / step - 1e-9))
+    for part, (a, b) in enumerate(itertools.pairwise(points)):
+        wanted = max(1, math.ceil(float(np.linalg.norm(b - a)) / step - 1e-9))
+        n = plan.choose(("inner conductor", part), lambda n=wanted: n)  # type: ignore[misc]
         out += [a + (b - a) * i / n for i in range(1, n + 1)]
     return np.array(out)
 

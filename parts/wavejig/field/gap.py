@@ -60,7 +60,13 @@ def _walk(
         node = int(wire_ends[wire, 1 - end])
         onward = _others(wire_ends, node, wire)
         visited = {s[0] for s in spans}
-        if left <= 0.0 or len(onward) != 1 or onward[0][0] in visited or on_ground[node] or np.any(corners == node):
+        if (
+            left <= 0.0
+            or len(onward) != 1
+            or onward[0][0] in visited
+            or on_ground[node]
+            or np.any(corners == node)
+        ):
             break
         wire, end = onward[0]
     covered = sum(s[3] for s in spans)

@@ -18,8 +18,8 @@ from numpy.typing import NDArray
 from wavejig.field.elements import Elements
 from wavejig.field.model import Insulation, Model
 from wavejig.field.quadrature import triangle_rule, unit_rule
-from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE
 from wavejig.field.units import MU_0_H_PER_M
+from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE
 
 Array = NDArray[np.float64]
 Complex = NDArray[np.complex128]
@@ -43,20 +43,20 @@ def loss_rows(model: Model, elements: Elements, frequency_hz: float) -> tuple[In
     sheet = 0.0 + 0.0j
     if model.sheet_conductivity_s_per_m is not None:
         sheet = (1.0 + 1.0j) * surface_resistance_ohm(frequency_hz, model.sheet_conductivity_s_per_m)
-    halves: list[tuple[Array, Array, Complex]] = []
+    halves: list[tuple[Index, Index, Complex]] = []
     wires = np.flatnonzero((elements.kind == SEGMENT) & (series != 0.0))
     length = 2.0 * elements.size_m[wires]
     for a in range(2):
         for b in range(2):
             overlap = length / (3.0 if a == b else 6.0)
-            halves.append((3.0 * wires + a, 3.0 * wires + b, series[wires] * overlap))
+            halves.append((3 * wires + a, 3 * wires + b, np.asarray(series[wires] * overlap)))
     if sheet != 0.0:
-        halves += [(a, b, sheet * g) for a, b, g in _sheet_overlaps(model, elements)]
+        halves += [(a, b, np.asarray(sheet * g)) for a, b, g in _sheet_overlaps(model, elements)]
     if not halves:
         nothing = np.zeros(0, dtype=np.int64)
         return nothing, nothing, np.zeros(0, dtype=np.complex128)
-    first = np.concatenate([h[0] for h in halves]).astype(np.int64)
-    second = np.concatenate([h[1] for h in halves]).astype(np.int64)
+    first = np.concatenate([h[0] for h in halves])
+    second = np.concatenate([h[1] for h in halves])
     return _to_unknowns(elements, first, second, np.concatenate([h[2] for h in halves]))
 
 
@@ -74,9 +74,9 @@ def _series_ohm_per_m(model: Model, elements: Elements, frequency_hz: float) -> 
     return series
 
 
-def _sheet_overlaps(model: Model, elements: Elements) -> list[tuple[Array, Array, Array]]:
+def _sheet_overlaps(model: Model, elements: Elements) -> list[tuple[Index, Index, Array]]:
     """Integrals of current times current over each triangle: flat shapes and fans, (half, half, value)."""
-    rows = []
+    rows: list[tuple[Index, Index, Array]] = []
     plain = np.flatnonzero(elements.kind == TRIANGLE)
     bary, weights = triangle_rule(2)
     corners = elements.shapes.corners[plain]
@@ -85,27 +85,26 @@ def _sheet_overlaps(model: Model, elements: Elements) -> list[tuple[Array, Array
     gram = np.einsum("naik,nbik,i,n->nab", arms, arms, weights, elements.shapes.area[plain])
     for a in range(3):
         for b in range(3):
-            rows.append((3.0 * plain + a, 3.0 * plain + b, gram[:, a, b]))
+            rows.append((3 * plain + a, 3 * plain + b, gram[:, a, b]))
     of_triangle = dict(zip(elements.source[plain].tolist(), plain.tolist(), strict=True))
     by_source: dict[int, list[int]] = {}
     for fan in np.flatnonzero(elements.kind == FAN).tolist():
         by_source.setdefault(int(elements.source[fan]), []).append(fan)
     for source, fans in by_source.items():
         whole = of_triangle[source]
+        area = float(elements.shapes.area[whole])
         for fan in fans:
             foot = _foot_radius(model, elements.shapes.corners[fan, 0])
             own = _fan_overlap(elements, fan, foot)
             rows.append(_row(3 * fan, 3 * fan, own))
             for a in range(3):
-                cross = _fan_with(
-                    elements, fan, elements.shapes.corners[whole, a], elements.shapes.area[whole]
-                )
+                cross = _fan_with(elements, fan, elements.shapes.corners[whole, a], area)
                 rows += [_row(3 * fan, 3 * whole + a, cross), _row(3 * whole + a, 3 * fan, cross)]
     return rows
 
 
-def _row(first: int, second: int, value: float) -> tuple[Array, Array, Array]:
-    return np.array([float(first)]), np.array([float(second)]), np.array([value])
+def _row(first: int, second: int, value: float) -> tuple[Index, Index, Array]:
+    return np.array([first]), np.array([second]), np.array([value])
 
 
 def _foot_radius(model: Model, at: Array) -> float:

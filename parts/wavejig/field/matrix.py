@@ -49,33 +49,34 @@ def impedance_matrix(
 ) -> Matrix:
     """(unknowns, unknowns) complex, ohm."""
     size = elements.unknowns
-    k = wavenumber(frequency_hz)
     z = np.zeros((size, size), dtype=np.complex128)
-    observers = (elements.shapes.points, elements.shapes.moments, elements.weights, elements.charges)
-    span = float(np.max(elements.size_m))
     owners = np.repeat(np.arange(len(elements.kind) * 3), np.diff(elements.half_start)) // 3
-
-    halves = (elements.half_start, elements.half_unknown, elements.half_coefficient)
     cuts = _even_shares(owners, elements.half_unknown, size)
     for p in passes:
-        t = p.statics
-        near_by = (t.start, t.other, t.pair, t.flip, t.integrals)
-        blocks = _blocks(elements, p.shapes)
-        factor = p.sign * k * ETA_OHM / (4.0 * np.pi)
-
-        def rows(first: int, last: int) -> None:
-            inside = (elements.half_unknown >= first) & (elements.half_unknown < last)
-            members = np.unique(owners[inside])
-            fill_rows(
-                k, factor, (1e-12 * span) ** 2, members, first, last, observers, blocks, halves, near_by, z
-            )
-
-        side_by_side(rows, cuts)
+        _add_pass(z, elements, p, wavenumber(frequency_hz), owners, cuts)
     in_shares(lambda first, last: add_transpose(first, last, z), (size + 31) // 32)
     if losses:
         row, column, value = loss_rows(model, elements, frequency_hz)
         np.add.at(z, (row, column), value)
     return z
+
+
+def _add_pass(z: Matrix, elements: Elements, sources: Pass, k: float, owners: Index, cuts: list[int]) -> None:
+    """Add half of what one set of sources does to z: z plus its transpose is the whole."""
+    t = sources.statics
+    observers = (elements.shapes.points, elements.shapes.moments, elements.weights, elements.charges)
+    halves = (elements.half_start, elements.half_unknown, elements.half_coefficient)
+    near_by = (t.start, t.other, t.pair, t.flip, t.integrals)
+    blocks = _blocks(elements, sources.shapes)
+    factor = sources.sign * k * ETA_OHM / (4.0 * np.pi)
+    tiny2 = (1e-12 * float(np.max(elements.size_m))) ** 2
+
+    def rows(first: int, last: int) -> None:
+        inside = (elements.half_unknown >= first) & (elements.half_unknown < last)
+        members = np.unique(owners[inside])
+        fill_rows(k, factor, tiny2, members, first, last, observers, blocks, halves, near_by, z)
+
+    side_by_side(rows, cuts)
 
 
 def _blocks(elements: Elements, shapes: Shapes) -> tuple[Array, Array, Array, Array]:

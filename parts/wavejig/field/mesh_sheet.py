@@ -8,12 +8,14 @@ Lengths in mm here; the caller turns to metres.
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
+from wavejig.field.mesh_plan import MeshPlan
 from wavejig.reflector.model import Tray, TrayLip, along, outward
 
 Array = NDArray[np.float64]
@@ -24,24 +26,33 @@ _GROWTH = 0.45  # cells may grow by this share of their distance from a landing 
 _DEEPEST = 8
 
 
-def sheet_triangles(tray: Tray, landings: Sequence[Point2], largest_mm: float, smallest_mm: float) -> Array:
+def sheet_triangles(
+    tray: Tray,
+    landings: Sequence[Point2],
+    largest_mm: float,
+    smallest_mm: float,
+    plan: MeshPlan | None = None,
+) -> Array:
     """(n, 3, 3) mm, counter-clockwise seen from the radiator side.
 
     landings: x, y on the base that must be vertices; largest_mm: longest cell side anywhere;
-    smallest_mm: cell side at the landings. Holes are left closed: they are far smaller than a wavelength.
+    smallest_mm: cell side at the landings; plan: cuts neighbours of one design alike. Holes are left closed: they are far smaller than a wavelength.
     Raises ValueError for a landing off the base.
     """
     half = (_inner_half(tray, "x"), _inner_half(tray, "y"))
     for x, y in landings:
         if abs(x) >= half[0] or abs(y) >= half[1]:
             raise ValueError(f"a wire lands at ({x:.2f}, {y:.2f}) mm, off the sheet's base")
-    grid = _Grid(half, largest_mm)
-    cells = grid.refined(landings, smallest_mm)
-    base = grid.triangles(cells, landings)
-    parts = [base]
+    kept = MeshPlan() if plan is None else plan
+    # even counts, so that the axes of symmetry are grid lines
+    counts = kept.choose("base", lambda: tuple(max(2, 2 * math.ceil(h / largest_mm - 1e-9)) for h in half))
+    grid = _Grid(half, (counts[0], counts[1]))
+    cells = set(kept.choose("cells", lambda: frozenset(grid.refined(landings, smallest_mm))))
+    pulled = kept.choose("landings", lambda: grid.nearest(cells, landings))
+    parts = [grid.triangles(cells, dict(zip(pulled, landings, strict=True)))]
     for lip in tray.lips:
         nodes = grid.edge_nodes(cells, lip.edge)
-        parts.append(_lip(tray, lip, nodes, half, largest_mm))
+        parts.append(_lip(tray, lip, nodes, half, largest_mm, kept))
     return np.concatenate(parts)
 
 
@@ -58,11 +69,10 @@ def _inner_half(tray: Tray, axis: str) -> float:
 class _Grid:
     """Cells over the rectangle |x| <= half[0], |y| <= half[1]; level n halves level 0 n times."""
 
-    def __init__(self, half: Point2, largest_mm: float) -> None:
+    def __init__(self, half: Point2, counts: tuple[int, int]) -> None:
         self.half = half
-        # even counts, so that the axes of symmetry are grid lines
-        self.counts = tuple(max(2, 2 * math.ceil(h / largest_mm - 1e-9)) for h in half)
-        self.size = (2.0 * half[0] / self.counts[0], 2.0 * half[1] / self.counts[1])
+        self.counts = counts
+        self.size = (2.0 * half[0] / counts[0], 2.0 * half[1] / counts[1])
 
     def refined(self, landings: Sequence[Point2], smallest_mm: float) -> set[Cell]:
         """Leaves of the quadtree, fine at the landings, no neighbour more than one level apart."""
@@ -123,7 +133,7 @@ class _Grid:
         corners: set[tuple[int, int]] = set()
         for level, i, j in leaves:
             step = 2 ** (_DEEPEST - level)
-            corners.update((((i + a) * step, (j + b) * step) for a in (0, 1) for b in (0, 1)))
+            corners.update(((i + a) * step, (j + b) * step) for a in (0, 1) for b in (0, 1))
         out = []
         for level, i, j in sorted(leaves):
             step = 2 ** (_DEEPEST - level)
@@ -141,20 +151,25 @@ class _Grid:
             out.append([p for n, p in enumerate(ring) if n % 2 == 0 or (half and p in corners)])
         return out
 
-    def triangles(self, leaves: set[Cell], landings: Sequence[Point2]) -> Array:
-        """Triangles of all leaves, the nearest nodes pulled onto the landings."""
-        rings = self.rings(leaves)
-        place = {p: self.node(*p) for ring in rings for p in ring}
-        taken: set[tuple[int, int]] = set()
+    def nearest(self, leaves: set[Cell], landings: Sequence[Point2]) -> tuple[tuple[int, int], ...]:
+        """The inner node nearest to each landing, no node twice."""
         scale = 2**_DEEPEST
-        for x, y in landings:
-            inner = [
-                p for p in place
-                if p not in taken and 0 < p[0] < self.counts[0] * scale and 0 < p[1] < self.counts[1] * scale
-            ]  # fmt: skip
-            nearest = min(inner, key=lambda p: (math.dist(self.node(*p), (x, y)), p))
-            taken.add(nearest)
-            place[nearest] = (x, y)
+        inner = {
+            p
+            for ring in self.rings(leaves)
+            for p in ring
+            if 0 < p[0] < self.counts[0] * scale and 0 < p[1] < self.counts[1] * scale
+        }
+        taken: list[tuple[int, int]] = []
+        for landing in landings:
+            free = (p for p in inner if p not in taken)
+            taken.append(min(free, key=lambda p: (round(math.dist(self.node(*p), landing), 9), p)))
+        return tuple(taken)
+
+    def triangles(self, leaves: set[Cell], pulled: dict[tuple[int, int], Point2]) -> Array:
+        """Triangles of all leaves, the nodes of `pulled` moved to where wires land."""
+        rings = self.rings(leaves)
+        place = {p: self.node(*p) for ring in rings for p in ring} | pulled
         out: list[list[Point2]] = []
         for ring in rings:
             corners = [place[p] for p in ring]
@@ -184,7 +199,7 @@ class _Grid:
         return np.array(sorted(float(np.dot(direction, self.node(*p))) for p in found))
 
 
-def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float) -> Array:
+def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float, plan: MeshPlan) -> Array:
     """A lip as columns over the base's edge nodes; its ends stop short of the corners as the real one does.
 
     The columns at the ends lean to where the lip ends: their feet stay on the base's nodes, so that the
@@ -195,7 +210,7 @@ def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float
     height = lip.height_mm - inner
     distance = half[0] if lip.edge[0] == "x" else half[1]
     n, u = outward(lip.edge), along(lip.edge)
-    rows = max(1, math.ceil(height / largest_mm - 1e-9))
+    rows = plan.choose(("lip", lip.edge), lambda: max(1, math.ceil(height / largest_mm - 1e-9)))
     w_top = height - lip.setback_mm + inner
     reach = (-lip.left.reach_mm(max(w_top, 0.0)), lip.right.reach_mm(max(w_top, 0.0)))
     foot_reach = (-lip.left.half_mm, lip.right.half_mm)
@@ -216,7 +231,7 @@ def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float
         return [float(place[0]), float(place[1]), w * math.sin(angle)]
 
     out = []
-    for a, b in zip(feet[:-1], feet[1:], strict=True):
+    for a, b in itertools.pairwise(feet):
         for k in range(rows):
             p, q, r, s = at(a, k), at(b, k), at(b, k + 1), at(a, k + 1)
             # counter-clockwise seen from the radiator side: along the edge, then up

@@ -2,32 +2,52 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 
 import numpy as np
 from numpy.typing import NDArray
 
+from wavejig.field.mesh_plan import MeshPlan
 from wavejig.geometry.path import Arc, Path
 
 Array = NDArray[np.float64]
 
 
-def chords(path: Path, longest_mm: float, *, marks: Sequence[Array] = ()) -> Array:
+def chords(
+    path: Path,
+    longest_mm: float,
+    *,
+    marks: Sequence[Array] = (),
+    plan: MeshPlan | None = None,
+    name: str = "",
+) -> Array:
     """(n, 3) nodes along a path: straights in equal parts, arcs as chords as long together as the arc.
 
-    marks: points on the path's straights that must be nodes. No chord is longer than `longest_mm`.
+    marks: points on the path's straights that must be nodes. No chord is longer than `longest_mm`, but for
+    a neighbour of the design that `plan` was recorded with; name: of this path in the plan.
     """
+    kept = MeshPlan() if plan is None else plan
     points: list[Array] = [np.array(path.start)]
-    for segment in path.segments:
+    for number, segment in enumerate(path.segments):
         if isinstance(segment, Arc):
-            points += _arc_nodes(segment, longest_mm)
+            wanted = _arc_count(segment, longest_mm)
+            points += _arc_nodes(segment, kept.choose((name, number, "arc"), lambda n=wanted: n))  # type: ignore[misc]
         else:
-            points += _straight_nodes(np.array(segment.start), np.array(segment.end), longest_mm, marks)
+            start, end = np.array(segment.start), np.array(segment.end)
+            points += _straight_nodes(start, end, longest_mm, marks, kept, (name, number))
     return np.array(points)
 
 
-def _straight_nodes(start: Array, end: Array, longest_mm: float, marks: Sequence[Array]) -> list[Array]:
+def _straight_nodes(
+    start: Array,
+    end: Array,
+    longest_mm: float,
+    marks: Sequence[Array],
+    plan: MeshPlan,
+    place: tuple[str, int],
+) -> list[Array]:
     along = end - start
     length = float(np.linalg.norm(along))
     stops = {0.0, 1.0}
@@ -37,18 +57,22 @@ def _straight_nodes(start: Array, end: Array, longest_mm: float, marks: Sequence
             stops.add(t)
     ordered = sorted(stops)
     out = []
-    for a, b in zip(ordered[:-1], ordered[1:], strict=True):
-        n = max(1, math.ceil((b - a) * length / longest_mm - 1e-9))
+    for part, (a, b) in enumerate(itertools.pairwise(ordered)):
+        wanted = max(1, math.ceil((b - a) * length / longest_mm - 1e-9))
+        n = plan.choose((*place, part, len(ordered)), lambda n=wanted: n)  # type: ignore[misc]
         out += [start + along * (a + (b - a) * i / n) for i in range(1, n + 1)]
     return out
 
 
-def _arc_nodes(arc: Arc, longest_mm: float) -> list[Array]:
-    """Interior nodes stand a little outside the arc, so that the chords are as long as it is."""
-    total = arc.length_mm
+def _arc_count(arc: Arc, longest_mm: float) -> int:
     # one chord for a slight bend: it is short of the arc by angle^2/24, half a percent of a small length
     fewest = 1 if arc.angle_deg <= 25.0 else 2
-    n = max(fewest, math.ceil(total / longest_mm - 1e-9), math.ceil(arc.angle_deg / 50.0))
+    return max(fewest, math.ceil(arc.length_mm / longest_mm - 1e-9), math.ceil(arc.angle_deg / 50.0))
+
+
+def _arc_nodes(arc: Arc, n: int) -> list[Array]:
+    """Interior nodes stand a little outside the arc, so that the n chords are as long as it is."""
+    total = arc.length_mm
     centre, normal = np.array(arc.centre), np.array(arc.normal)
     u = np.array(arc.start) - centre
     v = np.cross(normal, u)
@@ -57,7 +81,9 @@ def _arc_nodes(arc: Arc, longest_mm: float) -> list[Array]:
     def nodes(swell: float) -> Array:
         scale = np.full(n + 1, swell)
         scale[0] = scale[-1] = 1.0
-        return centre + scale[:, None] * (np.cos(angles)[:, None] * u + np.sin(angles)[:, None] * v)
+        return np.asarray(
+            centre + scale[:, None] * (np.cos(angles)[:, None] * u + np.sin(angles)[:, None] * v)
+        )
 
     low, high = 1.0, 1.5
     for _ in range(60):

@@ -47,7 +47,7 @@ class Response:
     @cached_property
     def impedance_ohm(self) -> Complex:
         """(F,) for one port, (F, P, P) for several."""
-        z = np.linalg.inv(self.admittance_s)
+        z: Complex = np.asarray(np.linalg.inv(self.admittance_s), dtype=np.complex128)
         return z[:, 0, 0] if z.shape[1] == 1 else z
 
     @property

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 
@@ -35,7 +36,7 @@ def chain(
     wires = []
     for start, end, number in zip(p[:-1], p[1:], numbers, strict=True):
         at = [start + (end - start) * (i / number) for i in range(number)] + [end]
-        for a, b in zip(at[:-1], at[1:], strict=True):
+        for a, b in itertools.pairwise(at):
             wires.append(
                 Wire(
                     start=(float(a[0]), float(a[1]), float(a[2])),
@@ -77,7 +78,7 @@ def grid_lines(marks_m: Sequence[float], longest_m: float) -> Array:
     """Ascending lines through all marks, equal steps between neighbours, none longer than longest_m."""
     marks = sorted(set(marks_m))
     lines: list[float] = []
-    for a, b in zip(marks[:-1], marks[1:], strict=True):
+    for a, b in itertools.pairwise(marks):
         count = max(1, math.ceil((b - a) / longest_m - 1e-9))
         lines += [a + (b - a) * i / count for i in range(count)]
     return np.array([*lines, marks[-1]])

@@ -77,7 +77,6 @@ def make_statics(elements: Elements, sources: Shapes, *, direct: bool) -> Static
 def _sheet(
     elements: Elements, sources: Shapes, direct: bool, p: Index, q: Index, which: Index, integrals: Array
 ) -> None:
-    own = elements.shapes
     rules = (
         *triangle_rule(2),
         *triangle_rule(5),

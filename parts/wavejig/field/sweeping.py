@@ -8,6 +8,7 @@ feed gap's own capacitance is then a mere straight line.
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Callable
 from dataclasses import dataclass
 
@@ -68,7 +69,7 @@ class Sweep:
 
     def impedance_ohm(self, frequencies_hz: ArrayLike) -> Complex:
         """(F,) for one port, (F, P, P) for several."""
-        z = np.linalg.inv(self.admittance_s(frequencies_hz))
+        z: Complex = np.asarray(np.linalg.inv(self.admittance_s(frequencies_hz)), dtype=np.complex128)
         return z[:, 0, 0] if z.shape[1] == 1 else z
 
     def s11(self, frequencies_hz: ArrayLike, reference_ohm: float | None = None) -> Complex:
@@ -154,7 +155,7 @@ def _scattering(y: Complex, references: Array) -> Complex:
 def _doubtful(known: dict[float, Response]) -> float:
     """The middle of the gap where the fits with and without the last point differ most; at first the widest."""
     units = sorted(known)
-    middles = np.array([0.5 * (a + b) for a, b in zip(units[:-1], units[1:], strict=True)])
+    middles = np.array([0.5 * (a + b) for a, b in itertools.pairwise(units)])
     widths = np.diff(units)
     references = next(iter(known.values())).reference_ohm
     if len(known) <= 3:

@@ -59,7 +59,7 @@ class Unknowns:
 
     @property
     def count(self) -> int:
-        return self.ports.shape[1]
+        return int(self.ports.shape[1])
 
 
 def wire_ends(model: Model) -> Array:
@@ -206,7 +206,7 @@ class _Finder:
             joined = [g for g in groups if g[0] & rim]
             merged = (
                 rim.union(*(g[0] for g in joined)),
-                sum((g[1] for g in joined), []) + [(triangle, corner)],
+                [*(member for g in joined for member in g[1]), (triangle, corner)],
             )
             groups = [g for g in groups if not g[0] & rim] + [merged]
         return [sorted(g[1]) for g in groups]
@@ -236,7 +236,9 @@ class _Finder:
                     f"port {row} sits at end {port.end} of wire {port.wire}, which joins nothing there; "
                     "join another wire or the sheet to that end",
                 )
-            for shape, volts in spread_gap(self.model, self.nodes.wire_ends, self.nodes.corners, self.on_ground, port):
+            for shape, volts in spread_gap(
+                self.model, self.nodes.wire_ends, self.nodes.corners, self.on_ground, port
+            ):
                 mine = half == shape
                 np.add.at(table[row], unknown[mine], coefficient[mine] * volts)
         return table

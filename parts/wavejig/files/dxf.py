@@ -98,7 +98,7 @@ def write_dxf(layers: Sequence[Layer], path: Path, *, version: Version = "R2010"
     layer, an entity that is no curve, and anything drawn twice; OSError when the file cannot be written.
     """
     check_layers(layers)
-    with _fixed_metadata():
+    with fixed_metadata():
         document = DxfDocument.new(version)
         if version != "R12":
             document.header["$INSUNITS"] = 4  # mm
@@ -233,7 +233,7 @@ def _add_entity(modelspace: Modelspace, entity: Entity, layer: str, *, old: bool
 
 
 @contextmanager
-def _fixed_metadata() -> Iterator[None]:
+def fixed_metadata() -> Iterator[None]:
     """Have ezdxf leave clock and random numbers out; its option is the process's, so put it back."""
     options = ezdxf.options  # type: ignore[attr-defined]
     before = options.write_fixed_meta_data_for_testing

@@ -7,16 +7,18 @@ written stops the build.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from wavejig.files.design_json import check_design_json, design_data, write_design_json
 from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
 from wavejig.files.dxfcheck import check_dxf
+from wavejig.files.fieldfiles import write_field
 from wavejig.files.glb import ColouredMesh, check_glb, write_glb
 from wavejig.files.manifest import Entry, check_manifest, write_manifest
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
+from wavejig.files.printable import BED_MARGIN_MM, Printability, require_printable
 from wavejig.files.step import NamedSolid, write_step
 from wavejig.files.stepcheck import check_step
 from wavejig.files.stl import check_stl, write_stl
@@ -28,7 +30,11 @@ from wavejig.radiator.solid import piece_solid
 from wavejig.reflector.flat import FlatPattern, flat_pattern, with_kerf
 from wavejig.reflector.solid import tray_solid
 from wavejig.shop import Inspection
+from wavejig.shop.predicted import prediction_findings
 from wavejig.spacer.solid import printables as spacer_printables
+
+if TYPE_CHECKING:
+    from wavejig.field.prediction import Prediction
 
 Colour = tuple[float, float, float]
 
@@ -55,7 +61,14 @@ class Step:
 class PackFiles:
     """Writes one pack into `root`, a fresh folder."""
 
-    def __init__(self, inspection: Inspection, root: Path) -> None:
+    def __init__(
+        self,
+        inspection: Inspection,
+        root: Path,
+        *,
+        predict: bool = True,
+        announce: Callable[[str], None] = lambda _: None,
+    ) -> None:
         assert inspection.radiator and inspection.tray and inspection.spacer and inspection.fixture
         self.inspection = inspection
         self.design = inspection.design
@@ -64,9 +77,13 @@ class PackFiles:
         self.spacer = inspection.spacer
         self.fixture = inspection.fixture
         self.root = root
+        self.predict = predict
+        self.announce = announce
+        self.prediction: Prediction | None = None
         self.entries: list[Entry] = []
         self.assembly: list[NamedSolid] = []
         self.meshes: dict[str, tuple[Mesh, Measure]] = {}
+        self.prints: list[tuple[str, int, Printability]] = []
         self.pattern: FlatPattern = flat_pattern(self.tray, self.design.name)
 
     def steps(self) -> Iterator[Step]:
@@ -76,6 +93,8 @@ class PackFiles:
         yield Step(title="spacer", run=self.write_spacer)
         yield Step(title="fixture", run=self.write_fixture)
         yield Step(title="assembly", run=self.write_assembly)
+        if self.predict:
+            yield Step(title="field", run=self.write_field)
         yield Step(title="design.json", run=self.write_design)
 
     def finish(self, versions: dict[str, str]) -> None:
@@ -149,7 +168,7 @@ class PackFiles:
     def write_fixture(self) -> None:
         """The bending fixture and the check nest, a file a printed piece."""
         for part in fixture_printables(self.fixture):
-            self._printable(part.name, part.solid, "fixture")
+            self._printable(part.name, part.solid, "fixture", part.count)
 
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
@@ -163,6 +182,20 @@ class PackFiles:
         check_glb(path, [(piece.mesh.name, m, piece.colour) for piece, m in pieces])
         self._note("assembly.glb", "glb", "assembly", "m")
 
+    def write_field(self) -> None:
+        """The electromagnetic model, the predicted match and pattern; findings on what they miss."""
+        from wavejig.field.from_design import model_from_design
+        from wavejig.field.prediction import predict
+
+        model = model_from_design(self.design)
+        self.prediction = predict(self.design, model=model, announce=self.announce)
+        for name, kind, units in write_field(self.root / "field", model, self.prediction):
+            self._note(f"field/{name}", kind, "field", units)
+        found = (*self.inspection.findings, *prediction_findings(self.prediction))
+        self.inspection = replace(
+            self.inspection, findings=tuple(sorted(found, key=lambda f: f.sort_key))
+        )
+
     def write_design(self) -> None:
         """design.json."""
         data = design_data(
@@ -175,10 +208,13 @@ class PackFiles:
 
     # -- files --------------------------------------------------------------------------------------
 
-    def _printable(self, name: str, shape: Any, part: str) -> None:
-        """STEP, STL and 3MF of one printed piece."""
+    def _printable(self, name: str, shape: Any, part: str, count: int = 1) -> None:
+        """STEP, STL and 3MF of one printed piece, which must print without support on the given bed."""
         self._step([NamedSolid(name=name, shape=shape, colour=_PLASTIC)], f"{part}/{name}.step", part)
         mesh, figures = tessellate(shape, name=name), measure(shape)
+        printer = self.design.printer
+        bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
+        self.prints.append((part, count, require_printable(mesh, bed, BED_MARGIN_MM)))
         title = f"{self.design.name} {name}"
         stl, threemf = self._path(f"{part}/{name}.stl"), self._path(f"{part}/{name}.3mf")
         write_stl(mesh, stl, title)

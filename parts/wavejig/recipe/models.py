@@ -26,7 +26,17 @@ from wavejig.recipe.fields import (
     refuse,
     word,
 )
-from wavejig.recipe.units import ANGLE, FREQUENCY, LENGTH, LEVEL, RESISTANCE, SheetSize, WireSize
+from wavejig.recipe.units import (
+    ANGLE,
+    FREQUENCY,
+    LENGTH,
+    LEVEL,
+    POWER,
+    RESISTANCE,
+    SPEED,
+    SheetSize,
+    WireSize,
+)
 
 FAMILIES = ("quad", "biquad", "double-biquad", "twin-loop", "path")
 # The plainest corner list would already be refused above a few hundred corners: nobody bends those.
@@ -347,6 +357,29 @@ class Tolerances(_Table):
     )
 
 
+class Station(_Table):
+    """Where the antenna will work; for the cautions and the mounting on the build sheet only."""
+
+    transmitter_power: Annotated[float, quantity(POWER, 1e-6, 1000.0)] | None = Field(
+        None, description="largest power the transmitter puts out; the sheet assumes 100 mW when left out"
+    )
+    cable_loss: Annotated[float, quantity(LEVEL, 0.0, 40.0)] | None = Field(
+        None, description="loss between transmitter and antenna; the sheet assumes 0 dB when left out"
+    )
+    wind_speed: Annotated[float, quantity(SPEED, 5.0, 100.0)] | None = Field(
+        None, description="gust the mount must stand; the sheet assumes 40 m/s when left out"
+    )
+
+
+class Sheet(_Table):
+    """The paper of the build sheet and drawings."""
+
+    paper: Annotated[str, choice("A4", "Letter")] = Field("A4", description="paper the sheets are printed on")
+    projection: Annotated[str, choice("first", "third")] = Field(
+        "first", description="where drawings put side views: first-angle (ISO) or third-angle projection"
+    )
+
+
 class Recipe(_Table):
     """A whole recipe."""
 
@@ -362,3 +395,5 @@ class Recipe(_Table):
     cutter: Cutter = Field(Cutter())
     folding: Folding = Field(Folding())
     tolerances: Tolerances = Field(Tolerances())
+    station: Station = Field(Station())
+    sheet: Sheet = Field(Sheet())

@@ -18,7 +18,8 @@ from wavejig.recipe.errors import nearest, show
 if TYPE_CHECKING:
     import pint
 
-# Exact by definition: the inch is 25.4 mm (international yard and pound agreement, 1959); SI prefixes.
+# Exact by definition: the inch is 25.4 mm, the mile 63360 of them (international yard and pound agreement,
+# 1959); the nautical mile is 1852 m; SI prefixes.
 _DEFINITIONS = (
     "metre = [length] = m",
     "second = [time] = s",
@@ -36,6 +37,10 @@ _DEFINITIONS = (
     "inch = 25.4e-3 * metre",
     "degree = 0.017453292519943295 * radian = deg",
     "milliwatt = 1e-3 * watt = mW",
+    "metre_per_second = metre / second",
+    "kilometre_per_hour = metre / second / 3.6",
+    "mile_per_hour = 0.44704 * metre / second",
+    "knot = 1852 / 3600 * metre / second",
 )
 
 
@@ -82,6 +87,17 @@ ANGLE = Kind(
 RESISTANCE = Kind(name="resistance", base="ohm", spellings=(("ohm", "ohm"), ("Ω", "ohm")), example="50 ohm")
 LEVEL = Kind(name="level", base="decibel", spellings=(("dB", "decibel"),), example="12 dB")
 POWER = Kind(name="power", base="watt", spellings=(("W", "watt"), ("mW", "milliwatt")), example="100 mW")
+SPEED = Kind(
+    name="speed",
+    base="metre_per_second",
+    spellings=(
+        ("m/s", "metre_per_second"),
+        ("km/h", "kilometre_per_hour"),
+        ("mph", "mile_per_hour"),
+        ("kn", "knot"),
+    ),
+    example="40 m/s",
+)
 
 _NUMBER = re.compile(
     r"(?P<sign>[+-]?)\s*(?:(?P<whole>\d+)\s+(?P<num>\d+)/(?P<den>\d+)|(?P<fnum>\d+)/(?P<fden>\d+)"

@@ -16,6 +16,7 @@ from wavejig.spacer.side import Hump, Side, look
 
 ACROSS_Y = ((0.0, 1.0), (0.0, -1.0))
 ACROSS_X = ((1.0, 0.0), (-1.0, 0.0))
+BED_MARGIN_MM = 5.0  # skirt and clips; common practice, no source
 # A side shift of more than this is worth telling: the eye places the wire better. Common practice.
 LOOSE_MM = 1.0
 _LOBES = MappingProxyType({"quad": 1, "biquad": 2, "double-biquad": 4, "twin-loop": 2, "path": 1})
@@ -129,8 +130,9 @@ def fits_bed(design: Design, piece: BlockPiece) -> bool:
 
 
 def fits_upright(design: Design, x_mm: float, y_mm: float) -> bool:
-    """Whether a part of this plan size lies on the bed without turning it."""
-    return x_mm <= design.printer.bed_x_mm and y_mm <= design.printer.bed_y_mm
+    """Whether a part of this plan size lies on the bed without turning it, with the margin left free."""
+    room = (design.printer.bed_x_mm - 2.0 * BED_MARGIN_MM, design.printer.bed_y_mm - 2.0 * BED_MARGIN_MM)
+    return x_mm <= room[0] and y_mm <= room[1]
 
 
 def _late_bolts(design: Design, pieces: tuple[BlockPiece, ...]) -> list[str]:

@@ -74,6 +74,18 @@ def dowel_diameters_mm(hardened_only: bool = False) -> tuple[float, ...]:
     )
 
 
+def dowel_length_mm(at_least_mm: float) -> float:
+    """Shortest stock dowel of at least this length in mm. Source: table `dowel-lengths`.
+
+    Raises StockError for more than the table holds.
+    """
+    lengths = [float(v) for v in column("dowel-lengths", "length_mm")]
+    for length in lengths:
+        if length >= at_least_mm - 1e-9:
+            return length
+    raise StockError(f"dowel length: got {at_least_mm:g} mm, need up to {lengths[-1]:g} mm.")
+
+
 def fit_limits_mm(diameter_mm: float, fit_class: FitClass) -> tuple[float, float]:
     """Lower and upper deviation in mm from the nominal diameter. Source: table `fits` (ISO 286).
 

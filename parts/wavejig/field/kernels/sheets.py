@@ -18,13 +18,12 @@ from __future__ import annotations
 import math
 
 import numpy as np
-from numba import njit
 
-OPTIONS = {"nogil": True, "cache": True, "error_model": "numpy", "fastmath": {"contract", "nsz", "arcp"}}
+from wavejig.field.kernels.compile import compiled
 
 
-@njit(**OPTIONS)
-def _log_term(lm, lp, rm, rp, off2):  # type: ignore[no-untyped-def]
+@compiled()
+def _log_term(lm, lp, rm, rp, off2):
     """Integral of 1/R along a straight piece from lm to lp, off2 the squared distance from its line."""
     if lm > 0.0:
         return math.log((rp + lp) / (rm + lm))
@@ -33,8 +32,8 @@ def _log_term(lm, lp, rm, rp, off2):  # type: ignore[no-untyped-def]
     return math.log((rp + lp) * (rm - lm) / max(off2, 1e-40))
 
 
-@njit(**OPTIONS)
-def _potential(x, y, z, v, n, s, u):  # type: ignore[no-untyped-def]
+@compiled()
+def _potential(x, y, z, v, n, s, u):
     """Integrals of 1/R and of (r' - r)/R over a triangle; v vertices, n normal, s, u along and out of sides."""
     d = n[0] * (x - v[0, 0]) + n[1] * (y - v[0, 1]) + n[2] * (z - v[0, 2])
     ad = abs(d)
@@ -68,8 +67,8 @@ def _potential(x, y, z, v, n, s, u):  # type: ignore[no-untyped-def]
     return i0, mx - d * n[0] * i0, my - d * n[1] * i0, mz - d * n[2] * i0
 
 
-@njit(**OPTIONS)
-def _rays(x, y, z, v, nodes, weights):  # type: ignore[no-untyped-def]
+@compiled()
+def _rays(x, y, z, v, nodes, weights):
     """Integral over v of e(v) times the integral over u of 1/R: the flux-carrying part of a fan triangle."""
     px = x - v[0, 0]
     py = y - v[0, 1]
@@ -95,8 +94,8 @@ def _rays(x, y, z, v, nodes, weights):  # type: ignore[no-untyped-def]
     return sx, sy, sz
 
 
-@njit(**OPTIONS)
-def _tube_points(v, radius, towards, nodes, weights, around, pos, vec, wgt):  # type: ignore[no-untyped-def]
+@compiled()
+def _tube_points(v, radius, towards, nodes, weights, around, pos, vec, wgt):
     """Points on a segment's surface (on its axis if around is 1); their count. vec: moments of both halves."""
     ux = v[1, 0] - v[0, 0]
     uy = v[1, 1] - v[0, 1]
@@ -142,8 +141,8 @@ def _tube_points(v, radius, towards, nodes, weights, around, pos, vec, wgt):  # 
     return m
 
 
-@njit(**OPTIONS)
-def _triangle_points(v, bary, weights, pos, vec, wgt):  # type: ignore[no-untyped-def]
+@compiled()
+def _triangle_points(v, bary, weights, pos, vec, wgt):
     for g in range(weights.size):
         wgt[g] = weights[g]
         for c in range(3):
@@ -154,8 +153,8 @@ def _triangle_points(v, bary, weights, pos, vec, wgt):  # type: ignore[no-untype
     return weights.size
 
 
-@njit(**OPTIONS)
-def _fan_points(v, share, nodes, weights, pos, vec, wgt):  # type: ignore[no-untyped-def]
+@compiled()
+def _fan_points(v, share, nodes, weights, pos, vec, wgt):
     m = 0
     for g in range(nodes.size):
         t = nodes[g]
@@ -171,16 +170,16 @@ def _fan_points(v, share, nodes, weights, pos, vec, wgt):  # type: ignore[no-unt
     return m
 
 
-@njit(**OPTIONS)
-def _sheet_points(v, kind, share, bary, weights, nodes, wn, pos, vec, wgt):  # type: ignore[no-untyped-def]
+@compiled()
+def _sheet_points(v, kind, share, bary, weights, nodes, wn, pos, vec, wgt):
     """Points on a triangle or fan triangle, their number, and how many halves they carry."""
     if kind == 2:
         return _fan_points(v, share, nodes, wn, pos, vec, wgt), 1
     return _triangle_points(v, bary, weights, pos, vec, wgt), 3
 
 
-@njit(**OPTIONS)
-def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, bary, bw, factor, out):  # type: ignore[no-untyped-def]
+@compiled()
+def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, bary, bw, factor, out):
     """Adds factor times the interaction of m observation points with one source to out (20,).
 
     out: 0..8 vector 1/R by halves, 9..17 vector R, 18 scalar 1/R, 19 scalar R, all for unit charges.
@@ -243,8 +242,8 @@ def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, ba
                 out[9 + 3 * a + b] += fx * cx + fy * cy + fz * cz
 
 
-@njit(**OPTIONS)
-def _by_points(v, w, bary, bw, out):  # type: ignore[no-untyped-def]
+@compiled()
+def _by_points(v, w, bary, bw, out):
     """Two triangles a little apart: both by points, in moments of position about each other's corners."""
     m = bw.size
     xyz = np.empty((m, 3))
@@ -284,8 +283,8 @@ def _by_points(v, w, bary, bw, out):  # type: ignore[no-untyped-def]
                 )
 
 
-@njit(**OPTIONS)
-def _shared_vertices(v, w, tolerance2):  # type: ignore[no-untyped-def]
+@compiled()
+def _shared_vertices(v, w, tolerance2):
     count = 0
     for i in range(3):
         for j in range(3):
@@ -295,8 +294,8 @@ def _shared_vertices(v, w, tolerance2):  # type: ignore[no-untyped-def]
     return count
 
 
-@njit(**OPTIONS)
-def _distance(v, centre, radius):  # type: ignore[no-untyped-def]
+@compiled()
+def _distance(v, centre, radius):
     """Distance of a segment from a ball."""
     d2 = 0.0
     uu = 0.0
@@ -312,8 +311,8 @@ def _distance(v, centre, radius):  # type: ignore[no-untyped-def]
     return max(math.sqrt(d2) - radius, 0.0)
 
 
-@njit(**OPTIONS)
-def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sources, rules, out):  # type: ignore[no-untyped-def]
+@compiled()
+def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sources, rules, out):
     """Fills out[first:last] (pairs, 20) for pairs of which at least q is sheet; p wire, triangle or fan.
 
     own, sources: the observing elements' shapes, and the same or their images. rules: triangle rules of 3, 7

@@ -13,13 +13,12 @@ from __future__ import annotations
 import math
 
 import numpy as np
-from numba import njit
 
-OPTIONS = {"nogil": True, "cache": True, "error_model": "numpy", "fastmath": {"contract", "nsz", "arcp"}}
+from wavejig.field.kernels.compile import compiled
 
 
-@njit(**OPTIONS)
-def ring_potential(rho, z, a):  # type: ignore[no-untyped-def]
+@compiled()
+def ring_potential(rho, z, a):
     """Average of 1/R from a ring of radius a to a point at radius rho and height z."""
     top = (rho + a) ** 2 + z * z
     m1 = max(((rho - a) ** 2 + z * z) / top, 1e-30)
@@ -30,8 +29,8 @@ def ring_potential(rho, z, a):  # type: ignore[no-untyped-def]
     return (poly - logs * math.log(m1)) * 2.0 / (math.pi * math.sqrt(top))
 
 
-@njit(**OPTIONS)
-def _tube_integrals(rho, z, length, a, nodes, weights):  # type: ignore[no-untyped-def]
+@compiled()
+def _tube_integrals(rho, z, length, a, nodes, weights):
     """Integrals over the source tube of the ring potential, plain and times t = position / length."""
     nearest = min(max(z, 0.0), length)
     plain = 0.0
@@ -56,20 +55,20 @@ def _tube_integrals(rho, z, length, a, nodes, weights):  # type: ignore[no-untyp
     return plain, tilted / length
 
 
-@njit(**OPTIONS)
-def _across(r, u, length):  # type: ignore[no-untyped-def]
+@compiled()
+def _across(r, u, length):
     """The part of r square to u (of that length)."""
     dot = (r[0] * u[0] + r[1] * u[1] + r[2] * u[2]) / length**2
     return r - dot * u
 
 
-@njit(**OPTIONS)
-def _size(r):  # type: ignore[no-untyped-def]
+@compiled()
+def _size(r):
     return math.sqrt(r[0] ** 2 + r[1] ** 2 + r[2] ** 2)
 
 
-@njit(**OPTIONS)
-def _close(v, a, w, b, along, along_w, ring, ring_w, factor, flip, out):  # type: ignore[no-untyped-def]
+@compiled()
+def _close(v, a, w, b, along, along_w, ring, ring_w, factor, flip, out):
     """Adds the interaction of tube v (radius a, observed) and tube w (radius b, source), near each other."""
     u = v[1] - v[0]
     s = w[1] - w[0]
@@ -96,10 +95,7 @@ def _close(v, a, w, b, along, along_w, ring, ring_w, factor, flip, out):  # type
             if around > 1:
                 r = r + math.cos(angle) * p + math.sin(angle) * q
             z = (r[0] * s[0] + r[1] * s[1] + r[2] * s[2]) / source
-            if around > 1:
-                rho = math.sqrt(max(r[0] ** 2 + r[1] ** 2 + r[2] ** 2 - z * z, 0.0))
-            else:
-                rho = a
+            rho = a if around == 1 else math.sqrt(max(r[0] ** 2 + r[1] ** 2 + r[2] ** 2 - z * z, 0.0))
             plain, tilted = _tube_integrals(rho, z, source, b, ring, ring_w)
             k = factor * along_w[g] / around
             out[18] += k * plain / source
@@ -112,8 +108,8 @@ def _close(v, a, w, b, along, along_w, ring, ring_w, factor, flip, out):  # type
                 out[at1] += part * tilted
 
 
-@njit(**OPTIONS)
-def _gap(v, w):  # type: ignore[no-untyped-def]
+@compiled()
+def _gap(v, w):
     """A lower distance of two segments: least over ends and middles of one to the whole of the other."""
     least = 1e300
     for turn in range(2):
@@ -129,8 +125,8 @@ def _gap(v, w):  # type: ignore[no-untyped-def]
     return least
 
 
-@njit(**OPTIONS)
-def tube_pairs(first, last, direct, ps, qs, t_v, s_v, radius, g4, wg4, g6, wg6, g10, wg10, out):  # type: ignore[no-untyped-def]
+@compiled()
+def tube_pairs(first, last, direct, ps, qs, t_v, s_v, radius, g4, wg4, g6, wg6, g10, wg10, out):
     """Fills out[first:last] (pairs, 20): 0..8 vector 1/R by halves, 9..17 vector R, 18 and 19 scalar."""
     for pair in range(first, last):
         p = ps[pair]

@@ -9,19 +9,14 @@ from __future__ import annotations
 import math
 
 import numpy as np
-from numba import njit
 
-OPTIONS = {
-    "nogil": True,
-    "cache": True,
-    "error_model": "numpy",
-    "fastmath": {"contract", "nsz", "arcp", "reassoc"},
-}
+from wavejig.field.kernels.compile import REORDERED, compiled
+
 BLOCK = 64  # elements worked on together: their buffers stay in the nearest caches
 
 
-@njit(**OPTIONS)
-def _sin_cos(x):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def _sin_cos(x):
     """Sine and cosine, x >= 0 and below about 1e6, to a few units in the last place."""
     n = math.floor(x * 0.6366197723675814 + 0.5)
     r = (x - n * 1.5707963267341256) - n * 6.077100506506192e-11
@@ -65,8 +60,8 @@ def _sin_cos(x):  # type: ignore[no-untyped-def]
     return sign_s * (s + odd * (c - s)), sign_c * (c + odd * (s - c))
 
 
-@njit(**OPTIONS)
-def _green(k, x, y, z, xyz, near, tiny2, at, gr, gi):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def _green(k, x, y, z, xyz, near, tiny2, at, gr, gi):
     """exp(-jkR)/R to a block of points, less 1/R - k^2 R/2 where near is 1 (added elsewhere in closed form)."""
     for q in range(BLOCK):
         dx = x - xyz[q]
@@ -79,8 +74,8 @@ def _green(k, x, y, z, xyz, near, tiny2, at, gr, gi):  # type: ignore[no-untyped
         gi[at + q] = -s / r
 
 
-@njit(**OPTIONS)
-def _scalars(wi, wj, g, out):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def _scalars(wi, wj, g, out):
     """Potential between unit charges spread over the points of one element and each of a block."""
     for q in range(BLOCK):
         total = 0.0
@@ -92,8 +87,8 @@ def _scalars(wi, wj, g, out):  # type: ignore[no-untyped-def]
         out[q] = total
 
 
-@njit(**OPTIONS)
-def _vectors(f, h, g, pot, charge, out):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def _vectors(f, h, g, pot, charge, out):
     """Real or imaginary part for all halves of one element (f) and one half of each of a block (h)."""
     for q in range(BLOCK):
         x = charge[q] * pot[q]
@@ -113,8 +108,8 @@ def _vectors(f, h, g, pot, charge, out):  # type: ignore[no-untyped-def]
         out[2 * BLOCK + q] = e2
 
 
-@njit(**OPTIONS)
-def fill_rows(k, factor, tiny2, members, row_first, row_last, own, blocks, halves, near_by, z):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def fill_rows(k, factor, tiny2, members, row_first, row_last, own, blocks, halves, near_by, z):
     """Adds factor times half the interactions of the member elements' rows in [row_first, row_last) to z.
 
     Each pair of elements once, so that z plus its transpose is the whole. own: points, moments, weights,
@@ -212,8 +207,8 @@ def fill_rows(k, factor, tiny2, members, row_first, row_last, own, blocks, halve
                     z[u, v] += complex(-w * row[v, 2 * a + 1], w * row[v, 2 * a])
 
 
-@njit(**OPTIONS)
-def add_transpose(first, last, z):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def add_transpose(first, last, z):
     """z becomes z plus its transpose, for tiles first to last of its upper triangle's 32-row bands."""
     n = z.shape[0]
     for band in range(first, last):
@@ -228,8 +223,8 @@ def add_transpose(first, last, z):  # type: ignore[no-untyped-def]
                     z[v, u] = total
 
 
-@njit(**OPTIONS)
-def far_rows(first, last, k, directions, pts, cur_r, cur_i, out):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def far_rows(first, last, k, directions, pts, cur_r, cur_i, out):
     """Sum of current times exp(jk r^.r') at each direction: pts, cur (3, points), out (directions, 3) complex."""
     n = pts.shape[1]
     pr = np.empty(n)
@@ -252,8 +247,8 @@ def far_rows(first, last, k, directions, pts, cur_r, cur_i, out):  # type: ignor
             out[d, c] = complex(sr, si)
 
 
-@njit(**OPTIONS)
-def neighbours(direct, centre, other, size, radius, reach, thick, counts, ps, qs):  # type: ignore[no-untyped-def]
+@compiled(REORDERED)
+def neighbours(direct, centre, other, size, radius, reach, thick, counts, ps, qs):
     """Pairs p <= q nearer than reach times the sum of their sizes (wires: or thick radii); their number.
 
     Fills ps, qs where they have room; counts: per p. other: the sources' centres (images: mirrored).

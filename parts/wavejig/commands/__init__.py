@@ -1,0 +1,1 @@
+"""One module a command: reads its arguments, calls the rooms, prints, and gives the exit code."""

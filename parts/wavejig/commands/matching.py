@@ -1,0 +1,99 @@
+"""`wavejig match`: the predicted match and pattern of each recipe."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+from pathlib import Path
+from typing import Any
+
+from wavejig.commands.telling import (
+    CANNOT_BE_MADE,
+    MACHINE,
+    OK,
+    WRONG_INPUT,
+    input_error,
+    say,
+    stop,
+    unreadable,
+)
+
+
+def run(args: argparse.Namespace) -> int:
+    """Predict each recipe; the exit code is the worst of theirs."""
+    from wavejig.progress import Meter
+
+    if args.plot is not None and len(args.recipes) > 1:
+        return stop(WRONG_INPUT, "match: --plot takes one recipe at a time")
+    if args.plot is not None:
+        from wavejig.field.plot import PlotError, check_path
+
+        try:
+            check_path(args.plot)
+        except PlotError as err:
+            return stop(WRONG_INPUT, str(err))
+    code, results = OK, []
+    for path in args.recipes:
+        meter = Meter(path.name, sys.stderr, quiet=args.json)
+        one, result = _one(args, path, meter)
+        code = max(code, one)
+        results.append(result)
+    if args.json:
+        say(json.dumps(results, indent=1))
+    return code
+
+
+def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[str, Any]]:
+    from wavejig.pack import inspect_recipe
+    from wavejig.recipe import RecipeError
+
+    try:
+        _, inspection = inspect_recipe(path)
+    except RecipeError as err:
+        return WRONG_INPUT, input_error(path, err, args.json)
+    except OSError as err:
+        return WRONG_INPUT, unreadable(path, err, args.json)
+    if inspection.radiator is None or inspection.tray is None:
+        return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
+    from wavejig.field.errors import ModelError
+    from wavejig.field.figures import prediction_data, prediction_text
+    from wavejig.field.prediction import predict
+
+    meter.step("solving the band")
+    try:
+        prediction = predict(inspection.design, announce=_announce)
+    except ModelError as err:
+        meter.end()
+        return CANNOT_BE_MADE, _failed(path, f"cannot be predicted: {err}")
+    meter.end()
+    code = OK if prediction.meets_target else CANNOT_BE_MADE
+    result = {"recipe": str(path), "name": inspection.design.name, **prediction_data(prediction)}
+    if not args.json:
+        say(prediction_text(prediction))
+    if not inspection.can_be_made:
+        code = CANNOT_BE_MADE
+        sys.stderr.write(f"{path}: has errors and cannot be made as it stands; see `wavejig check`\n")
+    if args.plot is not None:
+        code = max(code, _plot(prediction, args.plot))
+    return code, result
+
+
+def _plot(prediction: Any, path: Path) -> int:
+    from wavejig.field.plot import plot_prediction
+
+    try:
+        plot_prediction(prediction, path)
+    except OSError as err:
+        return stop(MACHINE, f"{path}: picture not written: {err.strerror or err}")
+    sys.stderr.write(f"{path} written\n")
+    return OK
+
+
+def _failed(path: Path, message: str) -> dict[str, Any]:
+    sys.stderr.write(f"{path}: {message}\n")
+    return {"recipe": str(path), "error": message}
+
+
+def _announce(message: str) -> None:
+    sys.stderr.write(f"{message}\n")
