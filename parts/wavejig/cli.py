@@ -18,6 +18,7 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    announce,
     input_error,
     say,
     stop,
@@ -27,8 +28,11 @@ from wavejig.commands.telling import (
 if TYPE_CHECKING:
     from wavejig.shop import Finding, Inspection
 
-COMMANDS = ("new", "check", "match", "build", "stock")
-_OPTIONS = ("--help", "--version", "--json", "--out", "--schema", "--plot", "--skip-field")
+COMMANDS = ("new", "check", "match", "tune", "build", "yield", "measured", "stock")
+_OPTIONS = (
+    "--help", "--version", "--json", "--out", "--schema", "--plot", "--skip-field", "--as-is", "--aim", "--grid",
+    "--cluster", "--write", "--reading", "--record",
+)  # fmt: skip
 
 _ABOUT = """\
 From one recipe to the files, tables and figures for making equal loop antennas."""
@@ -38,8 +42,11 @@ examples:
   wavejig new my-antenna.toml           write a commented recipe to start from
   wavejig check my-antenna.toml         can it be made? (answers in a blink)
   wavejig match my-antenna.toml         how will it match and radiate?
+  wavejig tune my-antenna.toml          work out what it leaves auto
   wavejig build my-antenna.toml         write the pack into out/<name>/
   wavejig build recipes/*.toml --out packs
+  wavejig yield my-antenna.toml         how many of the batch will pass?
+  wavejig measured my-antenna.toml first.s1p   what came out differently, and what to do
   wavejig stock                         list the stock tables
   wavejig stock connectors              print one
 
@@ -123,7 +130,25 @@ def _parser() -> argparse.ArgumentParser:
     )
     _recipes(match)
     match.add_argument("--plot", type=Path, metavar="FILE", help="draw the match and both cuts (png, svg, pdf)")
+    match.add_argument(
+        "--as-is", action="store_true", help="do not tune: kept or starting values for what is auto"
+    )
     match.set_defaults(run=_match)
+
+    tune = command(
+        "tune",
+        "work out what a recipe leaves auto: best match over the band, or most gain",
+        "  wavejig tune saltmarsh-2g4.toml\n  wavejig tune saltmarsh-2g4.toml --aim gain\n"
+        "  wavejig tune saltmarsh-2g4.toml --write      put the values into the recipe\n",
+    )
+    _recipes(tune)
+    tune.add_argument(
+        "--aim", choices=("match", "gain"), default="match",
+        help="match: greatest return loss over the band; gain: most gain that keeps the recipe's return loss",
+    )  # fmt: skip
+    tune.add_argument("--grid", default="0.05 mm", metavar="SIZE", help="what the shop can hold (0.05 mm)")
+    tune.add_argument("--write", action="store_true", help="put the values into the recipe, comments kept")
+    tune.set_defaults(run=_tune)
 
     build = command(
         "build",
@@ -136,6 +161,40 @@ def _parser() -> argparse.ArgumentParser:
         "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
     )
     build.set_defaults(run=_build)
+
+    yields = command(
+        "yield",
+        "say how many of the ordered antennas will pass, and which dimension decides it",
+        "  wavejig yield saltmarsh-2g4.toml\n  wavejig yield saltmarsh-2g4.toml --plot yield.png\n"
+        "  wavejig yield recipes/*.toml --json\n  wavejig yield recipes/*.toml --cluster tcp://HOST:8786\n",
+    )
+    _recipes(yields)
+    yields.add_argument("--plot", type=Path, metavar="FILE", help="draw it (png, svg, pdf)")
+    yields.add_argument("--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])")
+    yields.set_defaults(run=_yield)
+
+    measured = command(
+        "measured",
+        "lay measured sweeps over the prediction, find what came out differently, and say what to do",
+        "  wavejig measured saltmarsh-2g4.toml first.s1p\n"
+        "  wavejig measured saltmarsh-2g4.toml first.s1p --reading side=30.7mm --write\n"
+        "  wavejig measured saltmarsh-2g4.toml batch/*.s1p --record record.csv\n",
+    )
+    measured.add_argument("recipe", type=Path, metavar="RECIPE", help="the recipe (TOML)")
+    measured.add_argument("sweeps", nargs="+", type=Path, metavar="SWEEP", help="Touchstone files (.s1p, .s2p)")
+    measured.add_argument(
+        "--reading",
+        action="append",
+        default=[],
+        metavar="NAME=SIZE",
+        help="a calliper reading of this article, as side=30.7mm; may be repeated",
+    )
+    measured.add_argument("--write", action="store_true", help="put what follows into the recipe")
+    measured.add_argument("--record", type=Path, metavar="FILE", help="write a test record (.csv or .txt)")
+    measured.add_argument("--plot", type=Path, metavar="FILE", help="draw it (png, svg, pdf)")
+    measured.add_argument("--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])")
+    measured.add_argument("--json", action="store_true", help="results as JSON on stdout")
+    measured.set_defaults(run=_measured)
 
     stock = command(
         "stock",
@@ -204,8 +263,26 @@ def _check(args: argparse.Namespace) -> int:
     return code
 
 
+def _yield(args: argparse.Namespace) -> int:
+    from wavejig.commands.yielding import run
+
+    return run(args)
+
+
+def _measured(args: argparse.Namespace) -> int:
+    from wavejig.commands.measuring import run
+
+    return run(args)
+
+
 def _match(args: argparse.Namespace) -> int:
     from wavejig.commands.matching import run
+
+    return run(args)
+
+
+def _tune(args: argparse.Namespace) -> int:
+    from wavejig.commands.tuning import run
 
     return run(args)
 
@@ -219,7 +296,7 @@ def _build(args: argparse.Namespace) -> int:
     for path in args.recipes:
         meter = Meter(path.name, sys.stderr, quiet=args.json)
         try:
-            built = build(path, args.out, meter.step, predict=not args.skip_field, announce=_announce)
+            built = build(path, args.out, meter.step, predict=not args.skip_field, announce=announce)
         except RecipeError as err:
             meter.end()
             code = max(code, WRONG_INPUT)
@@ -333,10 +410,6 @@ def _built_text(built: Any) -> str:
 
 def _missed(built: Any) -> str:
     return next(f.message for f in built.inspection.findings if f.code == "prediction-misses")
-
-
-def _announce(message: str) -> None:
-    sys.stderr.write(f"{message}\n")
 
 
 def _table_list(tables: list[dict[str, Any]]) -> str:

@@ -16,9 +16,9 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 import wavejig
-from wavejig.design import resolve
 from wavejig.recipe import RecipeError, RecipeFile, read_recipe
 from wavejig.shop import Inspection, inspect
+from wavejig.tuning.settle import Settled, kept, settle
 
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction
@@ -52,13 +52,28 @@ class CannotBeMadeError(Exception):
 
 
 def inspect_recipe(path: Path) -> tuple[RecipeFile, Inspection]:
-    """Read, resolve and judge a recipe. Raises RecipeError with lines; OSError when unreadable."""
+    """Read, resolve and judge a recipe, without a solve: tuned values where they are kept from before.
+
+    Raises RecipeError with lines; OSError when unreadable.
+    """
     recipe_file = read_recipe(path)
     try:
-        design = resolve(recipe_file.recipe)
+        design = kept(recipe_file.recipe).design
     except RecipeError as err:
         raise recipe_file.error(err.problems) from err
     return recipe_file, inspect(design)
+
+
+def settle_recipe(
+    path: Path, progress: Progress = lambda _: None, announce: Progress = lambda _: None
+) -> tuple[RecipeFile, Inspection, Settled]:
+    """As inspect_recipe, but what the recipe leaves free is worked out with the field solver."""
+    recipe_file = read_recipe(path)
+    try:
+        settled = settle(recipe_file.recipe, lambda step: progress(f"tuning, {step}"), announce)
+    except RecipeError as err:
+        raise recipe_file.error(err.problems) from err
+    return recipe_file, inspect(settled.design), settled
 
 
 def build(
@@ -71,12 +86,16 @@ def build(
 ) -> Built:
     """Build the pack of a recipe into `out`/<name>/.
 
-    predict: solve the field and write field/. announce: told once if the solver has to be compiled.
+    predict: work out what is left free, solve the field and write field/; without it free values are what is
+    kept from before, or starting values. announce: told once if the solver has to be compiled.
     Raises RecipeError (exit 2), CannotBeMadeError (exit 1), OSError (exit 3); FileCheckError or a kernel
     error when a file does not come back as it was written, which is a fault of ours.
     """
     progress("reading the recipe")
-    _, inspection = inspect_recipe(path)
+    if predict:
+        _, inspection, _ = settle_recipe(path, progress, announce)
+    else:
+        _, inspection = inspect_recipe(path)
     if not inspection.can_be_made:
         raise CannotBeMadeError(inspection)
     progress("loading the CAD kernel")
@@ -87,6 +106,10 @@ def build(
         for step in files.steps():
             progress(step.title)
             step.run()
+        progress("drawings and build sheet")
+        from wavejig.sheets.sheetfiles import write_sheets
+
+        files.entries += write_sheets(files.inspection, files.pattern, stage, prediction=files.prediction)
         progress("checking the pack")
         files.finish(_versions())
         count, size = files.totals()
@@ -148,5 +171,5 @@ def _clear_leftovers(out: Path, name: str) -> None:
 def _versions() -> dict[str, str]:
     from importlib.metadata import version
 
-    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "scipy", "numba", "trimesh", "shapely")
+    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "reportlab", "scipy", "numba", "trimesh", "shapely")
     return {"wavejig": wavejig.__version__, **{name: version(name) for name in libraries}}

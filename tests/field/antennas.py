@@ -69,7 +69,7 @@ def tray(base: float, lip: float, longest: float, feet_y: tuple[float, ...] = ()
     """A square sheet with lips standing up at y-, y+; grid corners at (0, +-y) for the feet."""
     half = base / 2.0
     x = grid_lines([-half, 0.0, half], longest)
-    y = grid_lines([-half, *(-f for f in feet_y), *(() if feet_y else (0.0,)), *feet_y, half], longest)
+    y = grid_lines([-half, *(-f for f in feet_y), 0.0, *feet_y, half], longest)
     parts = [plate(x, y)]
     if lip > 0.0:
         heights = grid_lines([0.0, lip], longest)

@@ -13,6 +13,7 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    announce,
     input_error,
     say,
     stop,
@@ -45,11 +46,14 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[str, Any]]:
-    from wavejig.pack import inspect_recipe
+    from wavejig.pack import inspect_recipe, settle_recipe
     from wavejig.recipe import RecipeError
 
     try:
-        _, inspection = inspect_recipe(path)
+        if args.as_is:
+            _, inspection = inspect_recipe(path)
+        else:
+            _, inspection, _ = settle_recipe(path, meter.step, announce)
     except RecipeError as err:
         return WRONG_INPUT, input_error(path, err, args.json)
     except OSError as err:
@@ -62,7 +66,7 @@ def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[st
 
     meter.step("solving the band")
     try:
-        prediction = predict(inspection.design, announce=_announce)
+        prediction = predict(inspection.design, announce=announce)
     except ModelError as err:
         meter.end()
         return CANNOT_BE_MADE, _failed(path, f"cannot be predicted: {err}")
@@ -93,7 +97,3 @@ def _plot(prediction: Any, path: Path) -> int:
 def _failed(path: Path, message: str) -> dict[str, Any]:
     sys.stderr.write(f"{path}: {message}\n")
     return {"recipe": str(path), "error": message}
-
-
-def _announce(message: str) -> None:
-    sys.stderr.write(f"{message}\n")

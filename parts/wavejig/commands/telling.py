@@ -40,3 +40,9 @@ def say(text: str) -> None:
     """A result, on stdout, at once."""
     sys.stdout.write(f"{text}\n")
     sys.stdout.flush()
+
+
+def announce(message: str) -> None:
+    """Something that takes its time and is no result, on stderr."""
+    sys.stderr.write(f"{message}\n")
+    sys.stderr.flush()

@@ -26,38 +26,49 @@ class Mandrel:
     inside_radius_mm: float
 
 
-def mandrel_for(metal: Metal, wire_diameter_mm: float, inside_radius_mm: float | None) -> Mandrel:
+def mandrel_for(
+    metal: Metal, wire_diameter_mm: float, inside_radius_mm: float | None, insulation_mm: float = 0.0
+) -> Mandrel:
     """The pin for a wanted finished inside radius, or (None) the smallest usual dowel for this wire.
 
-    A dowel within PIN_MATCH_MM of the wanted pin is taken, and the radius it leaves is the finished one.
+    insulation_mm: on one side, between metal and pin; radii are the metal's. A dowel within PIN_MATCH_MM of the wanted pin is taken, and the radius it leaves is the finished one.
     Raises ValueError when no pin gives the wanted radius (the wire would have to be bent tighter than it
     is thick).
     """
     if inside_radius_mm is None:
         least = wire_diameter_mm * max(USUAL_RADIUS_DIAMETERS, metal.min_inside_radius_factor)
-        dowels = [d for d in dowel_diameters_mm() if d / 2.0 >= least - 1e-9]
+        dowels = [d for d in dowel_diameters_mm() if d / 2.0 + insulation_mm >= least - 1e-9]
         pin = dowels[0] if dowels else 2.0 * least
-        return _with_pin(metal, wire_diameter_mm, pin, is_dowel=bool(dowels))
+        return _with_pin(metal, wire_diameter_mm, pin, insulation_mm, is_dowel=bool(dowels))
     half = wire_diameter_mm / 2.0
     loaded = loaded_radius_mm(inside_radius_mm + half, wire_diameter_mm, *_constants(metal)) - half
-    near = min(dowel_diameters_mm(), key=lambda d: abs(d - 2.0 * loaded))
-    if abs(near - 2.0 * loaded) <= PIN_MATCH_MM:
-        return _with_pin(metal, wire_diameter_mm, near, is_dowel=True)
+    pin = 2.0 * (loaded - insulation_mm)
+    if pin <= 0.0:
+        raise ValueError(
+            f"a metal inside radius of {inside_radius_mm:g} mm leaves no pin inside insulation of "
+            f"{insulation_mm:g} mm"
+        )
+    near = min(dowel_diameters_mm(), key=lambda d: abs(d - pin))
+    if abs(near - pin) <= PIN_MATCH_MM:
+        return _with_pin(metal, wire_diameter_mm, near, insulation_mm, is_dowel=True)
     return Mandrel(
-        pin_diameter_mm=2.0 * loaded,
+        pin_diameter_mm=pin,
         is_dowel=False,
         loaded_inside_radius_mm=loaded,
         inside_radius_mm=inside_radius_mm,
     )
 
 
-def _with_pin(metal: Metal, diameter_mm: float, pin_mm: float, *, is_dowel: bool) -> Mandrel:
+def _with_pin(
+    metal: Metal, diameter_mm: float, pin_mm: float, insulation_mm: float, *, is_dowel: bool
+) -> Mandrel:
     half = diameter_mm / 2.0
-    finished = relaxed_radius_mm(pin_mm / 2.0 + half, diameter_mm, *_constants(metal)) - half
+    loaded = pin_mm / 2.0 + insulation_mm
+    finished = relaxed_radius_mm(loaded + half, diameter_mm, *_constants(metal)) - half
     return Mandrel(
         pin_diameter_mm=pin_mm,
         is_dowel=is_dowel,
-        loaded_inside_radius_mm=pin_mm / 2.0,
+        loaded_inside_radius_mm=loaded,
         inside_radius_mm=finished,
     )
 

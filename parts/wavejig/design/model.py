@@ -82,6 +82,7 @@ class RadiatorDesign:
     neutral_axis_factor: float
     trim_mm: float
     lap_mm: float  # length of a soldered lap
+    springback_measured: bool = False  # from the user's trial bends, not from the stock table
 
     @property
     def bend_radius_mm(self) -> float:
@@ -185,6 +186,13 @@ class PrinterDesign:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class FixtureDesign:
+    """What the wire is bent on. style: as asked for, "auto", "board" or "stop-block"."""
+
+    style: str
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class CutterDesign:
     """The cutting shop."""
 
@@ -244,6 +252,7 @@ class Design:
     reflector: ReflectorDesign
     spacer: SpacerDesign
     printer: PrinterDesign
+    fixture: FixtureDesign
     cutter: CutterDesign
     folding: FoldingDesign
     tolerances: ToleranceDesign

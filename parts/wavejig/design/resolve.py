@@ -16,6 +16,7 @@ from wavejig.design.model import (
     CutterDesign,
     Design,
     FeedDesign,
+    FixtureDesign,
     FoldingDesign,
     PrinterDesign,
     RadiatorDesign,
@@ -73,6 +74,7 @@ def resolve(recipe: Recipe) -> Design:
             style=recipe.spacer.style, plastic=recipe.spacer.material, posts=posts, post_screw=POST_SCREW
         ),
         printer=_printer(recipe),
+        fixture=FixtureDesign(style=recipe.fixture.style),
         cutter=_cutter(recipe, stock),
         folding=_folding(recipe, stock),
         tolerances=ToleranceDesign(

@@ -12,6 +12,7 @@ from wavejig.design.ledger import Ledger
 from wavejig.design.lobes import LobeError, Lobes
 from wavejig.design.mandrel import Mandrel, mandrel_for
 from wavejig.design.model import Corner, Point2, RadiatorDesign
+from wavejig.design.trial import factor_from_trial, metal_from_trials
 from wavejig.recipe.errors import RecipeError, show
 from wavejig.recipe.models import Recipe
 from wavejig.stock import connectors
@@ -31,7 +32,11 @@ def resolve_radiator(
     Raises RecipeError when the sides cannot meet the feed gap at all.
     """
     r = recipe.radiator
-    mandrel = _mandrel(recipe, metal, diameter_mm, ledger)
+    insulation = USUAL_INSULATION_MM[r.insulation]
+    if r.insulation_thickness is not None:
+        insulation = r.insulation_thickness
+    metal = metal_from_trials(recipe, metal, diameter_mm, insulation, ledger)
+    mandrel = _mandrel(recipe, metal, diameter_mm, insulation, ledger)
     bend = mandrel.inside_radius_mm + diameter_mm / 2.0
     angle = (
         0.0 if r.family == "path" else ledger.auto("lobe_angle", r.lobe_angle, 90.0, "square lobes", "deg")
@@ -61,9 +66,6 @@ def resolve_radiator(
             f"{str(err)[0].upper()}{str(err)[1:]}.",
         )
         raise RecipeError("recipe", ledger.problems) from err
-    insulation = USUAL_INSULATION_MM[r.insulation]
-    if r.insulation_thickness is not None:
-        insulation = r.insulation_thickness
     lap = ledger.auto(
         "lap", r.lap, starting.grid(max(2.5 * diameter_mm, 3.0)), "2.5 wire diameters, at least 3 mm"
     )
@@ -87,7 +89,8 @@ def resolve_radiator(
             Corner(at=(c.at[0], c.at[1], c.at[2] + standoff), radius_mm=c.radius_mm) for c in lobes.corners
         ),
         ground_corner=lobes.ground,
-        neutral_axis_factor=r.neutral_axis_factor,
+        neutral_axis_factor=factor_from_trial(recipe, metal, diameter_mm, insulation, ledger),
+        springback_measured=bool(r.trial),
         trim_mm=r.trim,
         lap_mm=lap,
     )
@@ -121,15 +124,17 @@ def extent(lobes: Lobes, diameter_mm: float) -> Point2:
     return (max(xs) + diameter_mm / 2.0, max(ys) + diameter_mm / 2.0)
 
 
-def _mandrel(recipe: Recipe, metal: Metal, diameter_mm: float, ledger: Ledger) -> Mandrel:
+def _mandrel(
+    recipe: Recipe, metal: Metal, diameter_mm: float, insulation_mm: float, ledger: Ledger
+) -> Mandrel:
     asked = recipe.radiator.inside_bend_radius
     try:
-        mandrel = mandrel_for(metal, diameter_mm, None if asked == "auto" else asked)
+        mandrel = mandrel_for(metal, diameter_mm, None if asked == "auto" else asked, insulation_mm)
     except ValueError as err:
         ledger.conflict(
             "radiator", "radiator.inside_bend_radius", str(err), "Use a larger radius, or leave it auto."
         )
-        mandrel = mandrel_for(metal, diameter_mm, None)
+        mandrel = mandrel_for(metal, diameter_mm, None, insulation_mm)
     ledger.value(
         "inside_bend_radius",
         mandrel.inside_radius_mm,

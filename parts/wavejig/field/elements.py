@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from wavejig.field.model import Model
 from wavejig.field.quadrature import triangle_rule, unit_rule
-from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE, Unknowns, wire_ends
+from wavejig.field.unknowns import FAN, FAN_LATEST, SEGMENT, TRIANGLE, Unknowns, wire_ends
 
 Array = NDArray[np.float64]
 Index = NDArray[np.int64]
@@ -63,7 +63,8 @@ class Shapes(NamedTuple):
 class Elements:
     """Elements in an order that keeps neighbours together, and the unknowns of their halves.
 
-    kind, source (n,); radius_m (n,): 0 for sheet, the equivalent radius for insulated wire; size_m (n,):
+    kind, source (n,); radius_m (n,): 0 for sheet, the equivalent radius for insulated wire, for fans that of
+    the wire that stands there; size_m (n,):
     distance of the farthest corner from the centre; share (n,); weights (n, 3) of the far points, charges
     (n, 3) of the halves; half_start (3n + 1,), half_unknown, half_coefficient: the unknowns of each half.
     ports (ports, unknowns).
@@ -125,7 +126,7 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     ports = np.zeros_like(unknowns.ports)
     ports[:, renumber] = unknowns.ports
 
-    radius = np.zeros(n)
+    radius = unknowns.foot_m.copy()
     radius[wires] = effective_radii(model)
     kind, share, corners, centre, radius = (
         kind[order],
@@ -136,7 +137,7 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     )
     size = np.linalg.norm(corners - centre[:, None], axis=2)
     size = np.where(kind == SEGMENT, size[:, 0], size.max(axis=1))
-    shapes, weights = _shapes(kind, share, corners, centre)
+    shapes, weights = _shapes(kind, share, radius, corners, centre)
     charges = np.zeros((n, 3))
     charges[kind == SEGMENT] = (-1.0, 1.0, 0.0)
     charges[kind == TRIANGLE] = 1.0
@@ -157,7 +158,7 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     )
 
 
-def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[Shapes, Array]:
+def _shapes(kind: Index, share: Array, foot: Array, corners: Array, centre: Array) -> tuple[Shapes, Array]:
     n = len(kind)
     points = np.zeros((n, 3, 3))
     moments = np.zeros((n, 3, 3, 3))
@@ -192,7 +193,7 @@ def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[S
 
     fans = kind == FAN
     if fans.any():
-        moments[fans, 0] = _fan_moments(bary, corners[fans], share[fans])
+        moments[fans, 0] = _fan_moments(bary, corners[fans], share[fans], foot[fans])
     return (
         Shapes(
             corners=corners,
@@ -208,13 +209,27 @@ def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[S
     )
 
 
-def _fan_moments(bary: Array, v: Array, share: Array) -> Array:
+def _fan_moments(bary: Array, v: Array, share: Array, foot: Array) -> Array:
     """Integral of the fan current times each point's linear cardinal function, (fans, 3 points, 3)."""
     nodes, w = unit_rule(4)
-    u, t = (g.ravel() for g in np.meshgrid(nodes, nodes, indexing="ij"))
-    weight = (w[:, None] * w[None, :]).ravel() * (1.0 - u**2)
-    # barycentric coordinates of (u, t), and in terms of the three points
-    at = np.stack([1.0 - u, u * (1.0 - t), u * t], axis=1)
-    cardinal = at @ np.linalg.inv(bary)
-    e = np.einsum("gc,fck->fgk", np.stack([-np.ones_like(t), 1.0 - t, t], axis=1), v)
-    return np.asarray(np.einsum("g,gp,fgk,f->fpk", weight, cardinal, e, share))
+    inverse = np.linalg.inv(bary)
+    e = v[:, 1:2] + nodes[:, None] * (v[:, 2:3] - v[:, 1:2]) - v[:, :1]
+    inside = fan_start(foot[:, None], np.linalg.norm(e, axis=2))
+    out = np.zeros((len(v), 3, 3))
+    for g, t in enumerate(nodes):
+        # the spreading part from the centre on, the carrying part from the wire's surface on
+        for low, high, carried in (
+            (0.0 * inside[:, g], inside[:, g], 0.0),
+            (inside[:, g], 1.0 + 0.0 * foot, 1.0),
+        ):
+            for x, wx in zip(nodes, w, strict=True):
+                u = low + (high - low) * x
+                at = np.stack([1.0 - u, u * (1.0 - t), u * t], axis=1)
+                k = share * w[g] * wx * (high - low) * (carried - u * u)
+                out += (k[:, None] * (at @ inverse))[:, :, None] * e[:, g][:, None]
+    return out
+
+
+def fan_start(foot_m: Array, reach_m: Array) -> Array:
+    """Where a fan's current begins: the wire's surface as a part of the way to the far side, at most FAN_LATEST."""
+    return np.minimum(foot_m / reach_m, FAN_LATEST)

@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 from wavejig.field.errors import ModelError, Remark
 from wavejig.field.model import Model
 from wavejig.field.units import wavenumber
-from wavejig.field.unknowns import Nodes, merge_points, wire_ends
+from wavejig.field.unknowns import MERGE, Nodes, merge_points, wire_ends
 
 Array = NDArray[np.float64]
 Index = NDArray[np.int64]
@@ -30,7 +30,7 @@ def examine(model: Model, highest_hz: float, *, nodes: Nodes | None = None) -> t
 
     nodes: merge_points(model) if it is known. Raises ModelError, its code the name of the fault.
     """
-    _numbers(model)
+    check_numbers(model)
     nodes = merge_points(model) if nodes is None else nodes
     ends = wire_ends(model)
     _sheet(model, nodes)
@@ -44,7 +44,8 @@ def examine(model: Model, highest_hz: float, *, nodes: Nodes | None = None) -> t
     return (*_lengths(model, ends, highest_hz), *_thin(model, ends, highest_hz))
 
 
-def _numbers(model: Model) -> None:
+def check_numbers(model: Model) -> None:
+    """Refuse values that mean nothing by themselves, before anything is computed from them."""
     if not model.wires and not len(model.triangles):
         raise ModelError("empty model", "there is neither wire nor sheet")
     size = len(model.wires) + 1.5 * len(model.triangles)
@@ -106,7 +107,11 @@ def _wires(model: Model, nodes: Nodes, ends: Array) -> None:
     pair = nodes.wire_ends
     for i in np.flatnonzero(np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1) == 0.0).tolist():
         raise ModelError("zero-length wire", f"wire {i} starts and ends at one point; leave it out")
-    for i in np.flatnonzero(pair[:, 0] == pair[:, 1]).tolist():
+    # ends nearer than a millionth of the model are one point; its own shortness must not keep them apart
+    same = (pair[:, 0] == pair[:, 1]) | (
+        np.linalg.norm(ends[:, 1] - ends[:, 0], axis=1) < MERGE * nodes.span_m
+    )
+    for i in np.flatnonzero(same).tolist():
         raise ModelError("zero-length wire", f"wire {i} is too short to tell its ends apart; leave it out")
     ordered = np.sort(pair, axis=1)
     order = np.lexsort(ordered.T)
@@ -192,16 +197,21 @@ def _crossings(model: Model, nodes: Nodes, ends: Array) -> None:
             break
         if _neighbourly(nodes, ends, int(i[k]), int(j[k]), thick):
             continue
-        if distance[k] <= max(nodes.tolerance_m, 1e-3 * thick):
+        if distance[k] <= max(nodes.tolerance_m, 1e-3 * thick) and not _parallel(ends[i[k]], ends[j[k]]):
             raise ModelError(
                 "wires crossing without a joint",
-                f"wires {i[k]} and {j[k]} meet where neither ends; split them there, or move them apart",
+                f"wires {i[k]} and {j[k]} meet away from a common end; split them there, or move them apart",
             )
         raise ModelError(
             "overlapping wires",
             f"wires {i[k]} and {j[k]} run within their radii of each other ({distance[k] * 1e3:.3f} mm apart, "
             f"{thick * 1e3:.3f} mm thick together); join them or move them apart",
         )
+
+
+def _parallel(a: Array, b: Array) -> bool:
+    u, v = a[1] - a[0], b[1] - b[0]
+    return bool(np.linalg.norm(np.cross(u, v)) < 1e-3 * np.linalg.norm(u) * np.linalg.norm(v))
 
 
 def _neighbourly(nodes: Nodes, ends: Array, i: int, j: int, thick: float) -> bool:

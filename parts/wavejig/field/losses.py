@@ -15,7 +15,7 @@ import math
 import numpy as np
 from numpy.typing import NDArray
 
-from wavejig.field.elements import Elements
+from wavejig.field.elements import Elements, fan_start
 from wavejig.field.model import Insulation, Model
 from wavejig.field.quadrature import triangle_rule, unit_rule
 from wavejig.field.units import MU_0_H_PER_M
@@ -94,8 +94,7 @@ def _sheet_overlaps(model: Model, elements: Elements) -> list[tuple[Index, Index
         whole = of_triangle[source]
         area = float(elements.shapes.area[whole])
         for fan in fans:
-            foot = _foot_radius(model, elements.shapes.corners[fan, 0])
-            own = _fan_overlap(elements, fan, foot)
+            own = _fan_overlap(elements, fan)
             rows.append(_row(3 * fan, 3 * fan, own))
             for a in range(3):
                 cross = _fan_with(elements, fan, elements.shapes.corners[whole, a], area)
@@ -107,26 +106,15 @@ def _row(first: int, second: int, value: float) -> tuple[Index, Index, Array]:
     return np.array([first]), np.array([second]), np.array([value])
 
 
-def _foot_radius(model: Model, at: Array) -> float:
-    """Radius of the wire that stands at a point of the sheet: inside it the sheet carries nothing."""
-    best = min(
-        model.wires,
-        key=lambda w: min(
-            float(np.sum((np.array(w.start) - at) ** 2)), float(np.sum((np.array(w.end) - at) ** 2))
-        ),
-    )
-    return best.radius_m
-
-
-def _fan_overlap(elements: Elements, fan: int, foot: float) -> float:
-    """The fan's current with itself, from the wire's surface out: (share^2 / 2A) |e|^2 (1 - u^2)^2 / u."""
+def _fan_overlap(elements: Elements, fan: int) -> float:
+    """The fan's current with itself: (share^2 / 2A) |e|^2 (carried - u^2)^2 / u, carried 1 from the foot on."""
     v = elements.shapes.corners[fan]
     nodes, weights = unit_rule(6)
     total = 0.0
     for t, w in zip(nodes, weights, strict=True):
         e2 = float(np.sum(((1.0 - t) * v[1] + t * v[2] - v[0]) ** 2))
-        u = min(foot / math.sqrt(e2), 0.9)
-        total += w * e2 * (-math.log(u) - (1.0 - u**2) + (1.0 - u**4) / 4.0)
+        u = float(fan_start(elements.radius_m[fan], np.sqrt(e2)))
+        total += w * e2 * (u**4 / 4.0 - math.log(u) - (1.0 - u**2) + (1.0 - u**4) / 4.0)
     return float(elements.share[fan] ** 2 * total / (2.0 * elements.shapes.area[fan]))
 
 
@@ -137,8 +125,11 @@ def _fan_with(elements: Elements, fan: int, corner: Array, area: float) -> float
     total = 0.0
     for t, wt in zip(nodes, weights, strict=True):
         e = (1.0 - t) * v[1] + t * v[2] - v[0]
-        for u, wu in zip(nodes, weights, strict=True):
-            total += wt * wu * (1.0 - u * u) * float(e @ (v[0] + u * e - corner))
+        start = float(fan_start(elements.radius_m[fan], np.linalg.norm(e)))
+        for low, high, carried in ((0.0, start, 0.0), (start, 1.0, 1.0)):
+            for x, wx in zip(nodes, weights, strict=True):
+                u = low + (high - low) * x
+                total += wt * wx * (high - low) * (carried - u * u) * float(e @ (v[0] + u * e - corner))
     return float(elements.share[fan] * total / (2.0 * area))
 
 

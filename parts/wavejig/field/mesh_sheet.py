@@ -36,7 +36,8 @@ def sheet_triangles(
     """(n, 3, 3) mm, counter-clockwise seen from the radiator side.
 
     landings: x, y on the base that must be vertices; largest_mm: longest cell side anywhere;
-    smallest_mm: cell side at the landings; plan: cuts neighbours of one design alike. Holes are left closed: they are far smaller than a wavelength.
+    smallest_mm: cell side at the landings; plan: cuts neighbours of one design alike. Holes are left
+    closed: they are far smaller than a wavelength.
     Raises ValueError for a landing off the base.
     """
     half = (_inner_half(tray, "x"), _inner_half(tray, "y"))
@@ -202,8 +203,8 @@ class _Grid:
 def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float, plan: MeshPlan) -> Array:
     """A lip as columns over the base's edge nodes; its ends stop short of the corners as the real one does.
 
-    The columns at the ends lean to where the lip ends: their feet stay on the base's nodes, so that the
-    fold is one sheet.
+    The columns lean in proportion, to end where the lip ends at their height: their feet stay on the base's
+    nodes, so that the fold is one sheet.
     """
     angle = math.radians(lip.angle_deg)
     inner = tray.thickness_mm * math.tan(angle / 2.0)
@@ -211,8 +212,6 @@ def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float
     distance = half[0] if lip.edge[0] == "x" else half[1]
     n, u = outward(lip.edge), along(lip.edge)
     rows = plan.choose(("lip", lip.edge), lambda: max(1, math.ceil(height / largest_mm - 1e-9)))
-    w_top = height - lip.setback_mm + inner
-    reach = (-lip.left.reach_mm(max(w_top, 0.0)), lip.right.reach_mm(max(w_top, 0.0)))
     foot_reach = (-lip.left.half_mm, lip.right.half_mm)
     # the feet that the lip really stands on, its own ends pulled to the nearest nodes
     inside = [s for s in nodes if foot_reach[0] - 1e-6 <= s <= foot_reach[1] + 1e-6]
@@ -220,13 +219,12 @@ def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float
     feet = np.array(sorted({*inside, *ends}))
 
     def at(s_foot: float, k: int) -> list[float]:
-        t = k / rows
-        s = s_foot
-        if s_foot == feet[0] and k:
-            s = reach[0]
-        elif s_foot == feet[-1] and k:
-            s = reach[1]
-        w = height * t
+        w = height * k / rows
+        flange = max(w - (lip.setback_mm - inner), 0.0)
+        end, reach = (
+            (feet[0], -lip.left.reach_mm(flange)) if s_foot < 0.0 else (feet[-1], lip.right.reach_mm(flange))
+        )
+        s = s_foot * reach / end if k else s_foot
         place = n * (distance + w * math.cos(angle)) + u * s
         return [float(place[0]), float(place[1]), w * math.sin(angle)]
 
@@ -234,6 +232,6 @@ def _lip(tray: Tray, lip: TrayLip, nodes: Array, half: Point2, largest_mm: float
     for a, b in itertools.pairwise(feet):
         for k in range(rows):
             p, q, r, s = at(a, k), at(b, k), at(b, k + 1), at(a, k + 1)
-            # counter-clockwise seen from the radiator side: along the edge, then up
-            out += [[p, q, r], [p, r, s]] if (a + b) * 1.0 <= 1e-9 else [[p, q, s], [q, r, s]]
+            # counter-clockwise seen from the radiator side: up, then along the edge
+            out += [[p, r, q], [p, s, r]] if a + b <= 1e-9 else [[p, s, q], [q, s, r]]
     return np.array(out)

@@ -23,8 +23,7 @@ class PlotError(Exception):
 
 def plot_prediction(p: Prediction, path: Path) -> None:
     """Write the picture; the ending names its kind (png, svg, pdf). Raises PlotError, OSError."""
-    figure_class = _figure_class()
-    figure = figure_class(figsize=(10.0, 5.0), layout="constrained")
+    figure = new_figure(10.0, 5.0)
     left, right = figure.subplots(1, 2, width_ratios=(1.15, 1.0))
     _draw_match(left, p)
     _draw_cuts(right, p)
@@ -32,6 +31,11 @@ def plot_prediction(p: Prediction, path: Path) -> None:
         f"{p.design_name}: predicted, seen {p.reference_plane}", fontsize=10, color=_INK, wrap=True
     )
     save(figure, path)
+
+
+def new_figure(width_in: float, height_in: float) -> Any:
+    """An empty figure of that size in inches. Raises PlotError when matplotlib is absent."""
+    return _figure_class()(figsize=(width_in, height_in), layout="constrained")
 
 
 def check_path(path: Path) -> None:

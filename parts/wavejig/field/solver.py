@@ -13,7 +13,7 @@ from numpy.typing import ArrayLike, NDArray
 from wavejig.field.compiling import announced
 from wavejig.field.elements import Elements, make_elements
 from wavejig.field.errors import ModelError, ModelWarning, Remark
-from wavejig.field.examine import examine
+from wavejig.field.examine import check_numbers, examine
 from wavejig.field.matrix import Pass, impedance_matrix, make_passes
 from wavejig.field.model import Model
 from wavejig.field.response import Response
@@ -35,22 +35,19 @@ class Prepared:
     remarks: tuple[Remark, ...]
 
 
-def prepare(
-    model: Model, highest_hz: float, *, mirrors: bool = True, announce: Announce | None = None
-) -> Prepared:
+def prepare(model: Model, highest_hz: float, *, mirrors: bool = True) -> Prepared:
     """Examine a model and compute what does not depend on frequency. Raises ModelError."""
+    check_numbers(model)
     nodes = merge_points(model)
     remarks = examine(model, highest_hz, nodes=nodes)
     for remark in remarks:
         if remark.severity == "warning":
             warnings.warn(f"{remark.code}: {remark.message}", ModelWarning, stacklevel=3)
     elements = make_elements(model, find_unknowns(model, nodes))
-    with announced(announce):
-        passes = make_passes(model, elements)
     return Prepared(
         model=model,
         elements=elements,
-        passes=passes,
+        passes=make_passes(model, elements),
         mirrors=find_mirrors(model, elements) if mirrors else (),
         remarks=remarks,
     )
@@ -70,8 +67,8 @@ def solve(
     warns with ModelWarning where the result deserves less trust.
     """
     frequencies = check_frequencies(frequencies_hz)
-    prepared = prepare(model, float(frequencies.max()), mirrors=mirrors, announce=announce)
-    return solve_prepared(prepared, frequencies, announce=announce)
+    with announced(announce):
+        return solve_prepared(prepare(model, float(frequencies.max()), mirrors=mirrors), frequencies)
 
 
 def check_frequencies(frequencies_hz: ArrayLike | Sequence[float]) -> NDArray[np.float64]:
@@ -84,9 +81,7 @@ def check_frequencies(frequencies_hz: ArrayLike | Sequence[float]) -> NDArray[np
     return frequencies
 
 
-def solve_prepared(
-    prepared: Prepared, frequencies_hz: NDArray[np.float64], *, announce: Announce | None = None
-) -> Response:
+def solve_prepared(prepared: Prepared, frequencies_hz: NDArray[np.float64]) -> Response:
     """As solve, for a model prepared before."""
     elements = prepared.elements
     if not prepared.model.ports:
@@ -94,10 +89,9 @@ def solve_prepared(
     currents = np.empty(
         (len(frequencies_hz), elements.unknowns, len(prepared.model.ports)), dtype=np.complex128
     )
-    with announced(announce):
-        for i, frequency in enumerate(frequencies_hz):
-            z = impedance_matrix(prepared.model, elements, prepared.passes, float(frequency))
-            currents[i] = _currents(z, elements, prepared.mirrors)
+    for i, frequency in enumerate(frequencies_hz):
+        z = impedance_matrix(prepared.model, elements, prepared.passes, float(frequency))
+        currents[i] = _currents(z, elements, prepared.mirrors)
     return Response(
         frequencies_hz=frequencies_hz,
         model=prepared.model,
@@ -108,8 +102,9 @@ def solve_prepared(
 
 
 def _currents(z: Complex, elements: Elements, mirrors: tuple[Mirror, ...]) -> Complex:
-    """(unknowns, ports): currents for 1 volt at each port in turn, the others shorted."""
-    currents = solve_by_parity(z, elements.ports.T.astype(np.complex128), mirrors)
+    """(unknowns, ports): currents for 1 volt at each port in turn, the others shorted. z is used up."""
+    # the matrix is symmetric: seen by columns it is what LAPACK wants, without a copy
+    currents = solve_by_parity(z.T, elements.ports.T.astype(np.complex128), mirrors)
     if not math.isfinite(float(np.abs(currents).sum())):
         raise ModelError(
             "singular", "the matrix has no solution at this frequency; look for overlapping or doubled parts"

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
+from wavejig.field.compiling import announced
 from wavejig.field.errors import ModelError
 from wavejig.field.model import Model
 from wavejig.field.response import Response
@@ -102,11 +103,15 @@ def sweep(
         raise ModelError(
             "frequency", f"a band's low end must be below its high end, got {low_hz} and {high_hz}"
         )
-    prepared = prepare(model, float(band[1]), mirrors=mirrors, announce=announce)
+    with announced(announce):
+        return _sweep(model, band, tolerance, mirrors, most)
+
+
+def _sweep(model: Model, band: Array, tolerance: float, mirrors: bool, most: int) -> Sweep:
+    prepared = prepare(model, float(band[1]), mirrors=mirrors)
 
     def at(unit: float) -> Response:
-        frequency = band[0] + unit * (band[1] - band[0])
-        return solve_prepared(prepared, np.array([frequency]), announce=announce)
+        return solve_prepared(prepared, np.array([band[0] + unit * (band[1] - band[0])]))
 
     known = {unit: at(unit) for unit in (0.0, 0.5, 1.0)}
     error, reached = np.inf, False

@@ -145,12 +145,17 @@ def _unknown_map(
 
 
 def solve_by_parity(z: Complex, drive: Complex, mirrors: tuple[Mirror, ...]) -> Complex:
-    """Solve z x = drive (n, p), z commuting with each mirror: even and odd parts apart, mirror by mirror."""
-    from scipy.linalg import lu_factor, lu_solve
+    """Solve z x = drive (n, p), z commuting with each mirror: even and odd parts apart, mirror by mirror.
+
+    z, best in Fortran order, may be used up. A singular matrix gives not-a-numbers.
+    """
+    from scipy.linalg.lapack import zgesv
 
     if not mirrors:
-        factors = lu_factor(z.T, overwrite_a=True, check_finite=False)
-        return np.asarray(lu_solve(factors, drive, trans=1, check_finite=False))
+        # one call for factors and solution: with few right sides the usual libraries run it on one thread, so
+        # the last bits do not depend on how many there are, nor the time on who else uses them
+        _, _, found, info = zgesv(z, drive, overwrite_a=1)
+        return np.asarray(found) if info == 0 else np.full_like(drive, np.nan)
     mirror, rest = mirrors[0], mirrors[1:]
     out = np.zeros_like(drive)
     index = np.arange(len(drive))
@@ -165,7 +170,7 @@ def solve_by_parity(z: Complex, drive: Complex, mirrors: tuple[Mirror, ...]) -> 
         if not np.abs(right).max(initial=0.0) > 0.0:
             continue
         twin = np.where(first == second, 0.0, sign)
-        block = np.ascontiguousarray(z[np.ix_(first, first)] + z[np.ix_(first, second)] * twin)
+        block = np.asfortranarray(z[np.ix_(first, first)] + z[np.ix_(first, second)] * twin)
         half = solve_by_parity(block, right, tuple(_within(m, mirror, parity, first) for m in rest))
         out[first] += half
         out[second] += twin[:, None] * half

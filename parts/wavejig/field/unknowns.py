@@ -25,18 +25,20 @@ Array = NDArray[np.float64]
 Index = NDArray[np.int64]
 
 SEGMENT, TRIANGLE, FAN = 0, 1, 2
+FAN_LATEST = 0.9  # of the way across a fan triangle: where its current begins at the latest
 MERGE = 1e-6  # of the model's size: how close ends are one point; never above MERGE_OF_SHORTEST of an edge
 MERGE_OF_SHORTEST = 1e-2
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Nodes:
-    """Distinct points; wire_ends (wires, 2) and corners (triangles, 3) are rows of points."""
+    """Distinct points; wire_ends (wires, 2) and corners (triangles, 3) are rows of points. span_m: their extent."""
 
     points: Array
     wire_ends: Index
     corners: Index
     tolerance_m: float
+    span_m: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -44,7 +46,8 @@ class Unknowns:
     """Elements and how their halves make unknowns.
 
     kind (n,): segment, triangle or fan; source (n,): the model's wire or triangle; turn (n,): which corner
-    comes first (fans: the attached one); share (n,): the fan triangle's part of the attachment's current.
+    comes first (fans: the attached one); share (n,): the fan triangle's part of the attachment's current;
+    foot_m (n,): fans: radius of the wire that stands there, else 0.
     half, unknown, coefficient: triplets; halves are 3 * element + 0, 1 or 2. ports (ports, unknowns).
     """
 
@@ -52,6 +55,7 @@ class Unknowns:
     source: Index
     turn: Index
     share: Array
+    foot_m: Array
     half: Index
     unknown: Index
     coefficient: Array
@@ -97,6 +101,7 @@ def merge_points(model: Model) -> Nodes:
         wire_ends=index[:split].reshape(-1, 2),
         corners=index[split:].reshape(-1, 3),
         tolerance_m=tolerance,
+        span_m=span,
     )
 
 
@@ -113,7 +118,7 @@ class _Finder:
         self.nodes = nodes
         self.wires = len(model.wires)
         self.triangles = len(model.triangles)
-        self.fans: list[tuple[int, int, float]] = []
+        self.fans: list[tuple[int, int, float, float]] = []
         self.triplets: list[tuple[int, int, float]] = []
         self.count = 0
         grounded = model.plane is not None
@@ -135,6 +140,7 @@ class _Finder:
                 [np.zeros(plain, dtype=np.int64), np.array([f[1] for f in self.fans], dtype=np.int64)]
             ),
             share=np.concatenate([np.zeros(plain), np.array([f[2] for f in self.fans])]),
+            foot_m=np.concatenate([np.zeros(plain), np.array([f[3] for f in self.fans])]),
             half=half,
             unknown=unknown,
             coefficient=coefficient,
@@ -184,16 +190,28 @@ class _Finder:
             # each branch: halves with the coefficient that sends 1 ampere into the node
             branches = [[(3 * wire + end, 1.0 if end == 1 else -1.0)] for wire, end in members]
             for group in self._fan_groups(node, touching.get(node, [])):
-                branches.append(self._fan(group))
+                branches.append(self._fan(group, max(self.model.wires[w].radius_m for w, _ in members)))
             if self.on_ground[node]:
                 for branch in branches:
                     self._add(branch, 1.0)
                     self.count += 1
                 continue
+            # the rest are paired with the branch that most mirrors leave in place, so that a mirror sends each
+            # pair to one pair
+            stays = [
+                self._in_planes(node, members[i]) if i < len(members) else 2 for i in range(len(branches))
+            ]
+            branches.insert(0, branches.pop(stays.index(max(stays))))
             for branch in branches[1:]:
                 self._add(branches[0], 1.0)
                 self._add(branch, -1.0)
                 self.count += 1
+
+    def _in_planes(self, node: int, member: tuple[int, int]) -> int:
+        """How many of the planes x = 0 and y = 0 hold a wire that meets a node."""
+        wire, end = member
+        ends = self.nodes.points[[node, int(self.nodes.wire_ends[wire, 1 - end])], :2]
+        return int(np.count_nonzero(np.all(np.abs(ends) <= self.nodes.tolerance_m, axis=0)))
 
     def _add(self, branch: list[tuple[int, float]], sign: float) -> None:
         self.triplets += [(half, self.count, sign * value) for half, value in branch]
@@ -211,7 +229,7 @@ class _Finder:
             groups = [g for g in groups if not g[0] & rim] + [merged]
         return [sorted(g[1]) for g in groups]
 
-    def _fan(self, group: list[tuple[int, int]]) -> list[tuple[int, float]]:
+    def _fan(self, group: list[tuple[int, int]], foot_m: float) -> list[tuple[int, float]]:
         angles = []
         for triangle, corner in group:
             p = self.model.triangles[triangle]
@@ -222,7 +240,7 @@ class _Finder:
         branch = []
         for (triangle, corner), angle in zip(group, angles, strict=True):
             element = self.wires + self.triangles + len(self.fans)
-            self.fans.append((triangle, corner, float(angle / total)))
+            self.fans.append((triangle, corner, float(angle / total), foot_m))
             branch.append((3 * element, -1.0))
         return branch
 

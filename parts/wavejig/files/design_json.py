@@ -9,6 +9,7 @@ from typing import Any
 
 from wavejig.design.model import Design
 from wavejig.files.errors import FileCheckError
+from wavejig.files.making_json import Made, fixture_data, prints_data, spacer_data
 from wavejig.fixture.model import Fixture
 from wavejig.geometry.path import Arc, Segment
 from wavejig.radiator.model import Joint, Piece, Radiator
@@ -26,6 +27,7 @@ def design_data(
     fixture: Fixture,
     spacer: Spacer,
     findings: tuple[Finding, ...],
+    made: Made,
 ) -> dict[str, Any]:
     """The document as plain data."""
     r, target, feed = design.radiator, design.target, design.feed
@@ -69,8 +71,9 @@ def design_data(
             "terminals": {"pin": _point(feed.terminal_pin), "ground": _point(feed.terminal_ground)},
         },
         "reflector": _reflector(design, pattern),
-        "fixture": _fixture(fixture),
-        "spacer": _spacer(spacer),
+        "fixture": fixture_data(fixture, made),
+        "spacer": spacer_data(spacer, made),
+        "prints": prints_data(made),
         "values": {
             key: {"value": _n(v.value), "from": v.origin, "unit": v.unit, "source": v.source}
             for key, v in design.values
@@ -182,49 +185,6 @@ def _reflector(design: Design, pattern: FlatPattern) -> dict[str, Any]:
             for h in r.holes
         ],
         "up": r.up,
-    }
-
-
-def _fixture(fixture: Fixture) -> dict[str, Any]:
-    """Stations of the board and what to have at hand beside the prints."""
-    return {
-        "stations": [
-            {
-                "bend": s.number,
-                "at": _point(s.at),
-                "tool": s.tool,
-                "tool_diameter": _n(s.tool_diameter_mm),
-                "turn": s.turn,
-                "loaded_angle": _n(s.loaded_angle_deg),
-            }
-            for s in fixture.stations
-        ],
-        "tiles": {plate.name: len(plate.tiles) for plate in (fixture.board, fixture.nest)},
-        "nest_band": _n(fixture.nest_band_mm),
-        "bend_blocks": [
-            {
-                "name": b.name,
-                "bends": list(b.bends),
-                "loaded_angle": _n(b.loaded_angle_deg),
-                "dowel": _n(b.dowel_mm),
-            }
-            for b in fixture.blocks
-        ],
-        "feet": 4 if fixture.foot_height_mm else 0,
-    }
-
-
-def _spacer(spacer: Spacer) -> dict[str, Any]:
-    return {
-        "style": spacer.style,
-        "plastic": spacer.plastic,
-        "pieces": [
-            {"name": p.name, "withdrawal": _point(p.withdrawal), "travel": _n(p.travel_mm)}
-            for p in spacer.pieces
-        ],
-        "posts": [
-            {"name": p.name, "at": _point((p.hole.x_mm, p.hole.y_mm)), "screw": p.screw} for p in spacer.posts
-        ],
     }
 
 

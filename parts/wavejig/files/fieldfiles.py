@@ -55,9 +55,7 @@ def pattern_rows(p: Prediction) -> list[tuple[str, str, str, str, str]]:
     lost = p.gain_dbi - p.pattern.axial_dbi
     rows = []
     for name, cut in (("along-field", p.pattern.e_plane), ("across-field", p.pattern.h_plane)):
-        for angle, *levels in zip(
-            cut.angles_deg, cut.total_dbi, cut.co_dbi, cut.cross_dbi, strict=True
-        ):
+        for angle, *levels in zip(cut.angles_deg, cut.total_dbi, cut.co_dbi, cut.cross_dbi, strict=True):
             shown = (f"{max(level + lost, _SHOWN_FLOOR_DBI) + 0.0:.2f}" for level in levels)
             rows.append((name, f"{angle:g}", *shown))
     return rows  # type: ignore[return-value]

@@ -16,6 +16,7 @@ from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
 from wavejig.files.dxfcheck import check_dxf
 from wavejig.files.fieldfiles import write_field
 from wavejig.files.glb import ColouredMesh, check_glb, write_glb
+from wavejig.files.making_json import Made
 from wavejig.files.manifest import Entry, check_manifest, write_manifest
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
 from wavejig.files.printable import BED_MARGIN_MM, Printability, require_printable
@@ -24,6 +25,8 @@ from wavejig.files.stepcheck import check_step
 from wavejig.files.stl import check_stl, write_stl
 from wavejig.files.tables import check_bend_table, write_bend_table
 from wavejig.files.threemf import check_3mf, write_3mf
+from wavejig.fixture.liftout import lift_outs
+from wavejig.fixture.nestcut import nest_cut
 from wavejig.fixture.solid import printables as fixture_printables
 from wavejig.radiator.drawing import views
 from wavejig.radiator.solid import piece_solid
@@ -31,7 +34,9 @@ from wavejig.reflector.flat import FlatPattern, flat_pattern, with_kerf
 from wavejig.reflector.solid import tray_solid
 from wavejig.shop import Inspection
 from wavejig.shop.predicted import prediction_findings
+from wavejig.spacer.effect import post_effect
 from wavejig.spacer.solid import printables as spacer_printables
+from wavejig.spacer.withdraw import withdrawals
 
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction
@@ -169,6 +174,9 @@ class PackFiles:
         """The bending fixture and the check nest, a file a printed piece."""
         for part in fixture_printables(self.fixture):
             self._printable(part.name, part.solid, "fixture", part.count)
+        cut = nest_cut(self.design, self.fixture.nest)
+        layers = Drawing(cut=cut.cut, marks=cut.marks).layers()
+        self._dxf(layers, "fixture/check-nest-cut.dxf", "fixture", blanks=cut.parts)
 
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
@@ -198,8 +206,20 @@ class PackFiles:
 
     def write_design(self) -> None:
         """design.json."""
+        made = Made(
+            lift_outs=lift_outs(self.design, self.radiator, self.fixture),
+            withdrawals=withdrawals(self.design, self.radiator, self.spacer),
+            posts=post_effect(self.design, self.radiator, self.spacer.posts),
+            prints=tuple(self.prints),
+        )
         data = design_data(
-            self.design, self.radiator, self.pattern, self.fixture, self.spacer, self.inspection.findings
+            self.design,
+            self.radiator,
+            self.pattern,
+            self.fixture,
+            self.spacer,
+            self.inspection.findings,
+            made,
         )
         path = self._path("design.json")
         write_design_json(data, path)
@@ -239,11 +259,12 @@ class PackFiles:
         area: float | None = None,
         version: Any = "R2010",
         cut: bool = True,
+        blanks: int = 1,
     ) -> None:
         path = self._path(name)
         write_dxf(layers, path, version=version, title=f"{self.design.name} {part}")
         if cut:
-            check_dxf(path, layers, version=version, cut_area_mm2=area)
+            check_dxf(path, layers, version=version, cut_area_mm2=area, blanks=blanks)
         else:
             check_dxf(path, layers, version=version)
         self._note(name, "dxf", part, "mm")

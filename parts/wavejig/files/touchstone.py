@@ -41,7 +41,11 @@ def check_s1p(path: Path, frequencies_hz: Array, s11: Complex, reference_ohm: fl
             option = [word.upper() for word in " ".join(body).removeprefix("#").split()]
         else:
             rows.append([float(word) for word in body])
-    if option is None or option[:4] != ["HZ", "S", "RI", "R"] or float(option[4]) != float(f"{reference_ohm:g}"):
+    if (
+        option is None
+        or option[:4] != ["HZ", "S", "RI", "R"]
+        or float(option[4]) != float(f"{reference_ohm:g}")
+    ):
         raise FileCheckError(path, f"the option line {option}", f"# Hz S RI R {reference_ohm:g}")
     data = np.array(rows)
     if data.shape != (len(frequencies_hz), 3):

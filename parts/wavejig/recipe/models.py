@@ -42,6 +42,7 @@ FAMILIES = ("quad", "biquad", "double-biquad", "twin-loop", "path")
 # The plainest corner list would already be refused above a few hundred corners: nobody bends those.
 _MOST_CORNERS = 120
 _MOST_HOLES = 200
+_MOST_TRIALS = 20
 
 
 class _Table(BaseModel):
@@ -88,13 +89,26 @@ def _holes(value: Any) -> Any:
     return value
 
 
+def _trials(value: Any) -> Any:
+    if isinstance(value, list) and len(value) > _MOST_TRIALS:
+        raise refuse(f"{len(value)} trials", f"at most {_MOST_TRIALS} trial bends", "Keep the best ones.")
+    return value
+
+
 def _pole(value: Any) -> Any:
     return value if value == "none" else quantity(LENGTH, 10.0, 120.0).read(value)
+
+
+def _sweep(value: Any) -> Any:
+    if not isinstance(value, str) or len(value) > 200 or not value.isprintable():
+        raise refuse(value, "the sweep's file name", "Write it in quotes, on one line.")
+    return value
 
 
 Auto = Literal["auto"]
 Size = Annotated[float, quantity(LENGTH, 0.01, 3000.0)]
 AutoSize = Annotated[float | Auto, auto_quantity(LENGTH, 0.01, 3000.0)]
+Tolerance = Annotated[float | Auto, auto_quantity(LENGTH, 0.001, 10.0)]
 Place = Annotated[float, quantity(LENGTH, -3000.0, 3000.0)]
 Corner = Annotated[tuple[Place, ...], BeforeValidator(_corner)]
 Frequency = Annotated[float, quantity(FREQUENCY, 100e6, 12e9)]
@@ -112,6 +126,26 @@ class Target(_Table):
     return_loss: Annotated[float, quantity(LEVEL, 3.0, 40.0)] = Field(
         12.0, description="least return loss wanted over the whole band"
     )
+
+
+class Trial(_Table):
+    """One trial bend: held against a former, let go, measured."""
+
+    former: Size = Field(description="diameter of the pin or disc it was bent round")
+    bent_to: Annotated[float, quantity(ANGLE, 20.0, 350.0)] = Field(description="angle while held")
+    relaxed_to: Annotated[float, quantity(ANGLE, 1.0, 350.0)] = Field(description="angle once let go")
+
+
+class TrialLength(_Table):
+    """A wire of known cut length bent into equal bends, and what it measures then."""
+
+    cut: Size = Field(description="length before bending")
+    outside: Size = Field(
+        description="all straights together, each over the outside of the wire, corner to corner"
+    )
+    bends: Annotated[int, count(1, 50)] = Field(1, description="how many bends it has, all alike")
+    angle: Annotated[float, quantity(ANGLE, 20.0, 150.0)] = Field(90.0, description="of each, once let go")
+    former: Size = Field(description="diameter of the pin they were bent round")
 
 
 class Radiator(_Table):
@@ -168,6 +202,12 @@ class Radiator(_Table):
         5.0, description="length added at the far end, cut off after bending"
     )
     lap: AutoSize = Field(AUTO, description="length of a soldered lap joint")
+    trial: Annotated[tuple[Trial, ...], BeforeValidator(_trials)] = Field(
+        (), description="trial bends of this wire; they replace the stock table's springback"
+    )
+    trial_length: TrialLength | None = Field(
+        None, description="a wire of known length, bent and measured; replaces neutral_axis_factor"
+    )
 
 
 class Calliper(_Table):
@@ -312,6 +352,16 @@ class Printer(_Table):
     )
 
 
+class Fixture(_Table):
+    """What the wire is bent on."""
+
+    style: Annotated[str, choice("auto", "board", "stop-block")] = Field(
+        "auto",
+        description="board: all pins at once; stop-block: one corner at a time against stepped stops; "
+        "auto: the board, or the stop block where the board would need more than four tiles",
+    )
+
+
 class Cutter(_Table):
     """The shop that cuts the sheet."""
 
@@ -355,6 +405,47 @@ class Tolerances(_Table):
     nest: Annotated[float, quantity(LENGTH, 0.05, 10.0)] = Field(
         0.5, description="half-width of the check nest's band beyond the wire"
     )
+    distribution: Annotated[str, choice("normal", "uniform")] = Field(
+        "normal",
+        description="how articles spread within a tolerance: normal (95 % within it) or uniform",
+    )
+    feed_gap: Tolerance = Field(AUTO, description="plus or minus, feed gap; auto: the fixture's stack-up")
+    wire: Tolerance = Field(AUTO, description="plus or minus, wire diameter; auto: 1 %")
+    bend_radius: Tolerance = Field(AUTO, description="plus or minus, inside radius of bends; auto: 5 %")
+    base: Tolerance = Field(AUTO, description="plus or minus, base of the reflector; auto: ISO 2768-1")
+    lip_height: Tolerance = Field(AUTO, description="plus or minus, height of lips; auto: ISO 2768-1")
+    lip_angle: Annotated[float | Auto, auto_quantity(ANGLE, 0.05, 10.0)] = Field(
+        AUTO, description="plus or minus, angle of lips; auto: the folding machine's"
+    )
+    leg_spacing: Tolerance = Field(AUTO, description="plus or minus, between the legs; auto: ISO 2768-1")
+    permittivity: Annotated[float, number(0.0, 0.5)] = Field(
+        0.1, description="plus or minus, share of the permittivity of insulation left on the wire"
+    )
+    model: Annotated[float, number(0.0, 0.1)] = Field(
+        0.01,
+        description="standard error of the predicted frequency, as a share; [measured] replaces it",
+    )
+
+
+class Measured(_Table):
+    """What the first article showed; `wavejig measured RECIPE SWEEP --write` fills it in."""
+
+    frequency: Annotated[float, number(0.9, 1.1)] | None = Field(
+        None, description="true frequency over predicted frequency, from a measured sweep"
+    )
+    frequency_error: Annotated[float, number(0.0, 0.1)] = Field(
+        0.002, description="standard error of that, as a share"
+    )
+    sweep: Annotated[str, Reads(_sweep, {"type": "string"})] = Field(
+        "", description="the sweep it came from, for the reader"
+    )
+    side: Size | None = Field(None, description="calliper reading, over what measured_over says")
+    lobe_diameter: Size | None = Field(None, description="calliper reading, over what measured_over says")
+    standoff: Size | None = Field(None, description="calliper reading, wire centreline to sheet")
+    feed_gap: Size | None = Field(None, description="calliper reading, centreline to centreline")
+    reading_error: Annotated[float, quantity(LENGTH, 0.01, 2.0)] = Field(
+        0.1, description="plus or minus, calliper readings"
+    )
 
 
 class Station(_Table):
@@ -392,8 +483,10 @@ class Recipe(_Table):
     mounting: Mounting = Field(Mounting())
     spacer: Spacer = Field(Spacer())
     printer: Printer = Field(Printer())
+    fixture: Fixture = Field(Fixture())
     cutter: Cutter = Field(Cutter())
     folding: Folding = Field(Folding())
     tolerances: Tolerances = Field(Tolerances())
+    measured: Measured = Field(Measured())
     station: Station = Field(Station())
     sheet: Sheet = Field(Sheet())

@@ -10,7 +10,9 @@ from wavejig.stock.processes import iso2768_angle_deg, iso2768_linear_mm
 SMALLEST_GENERAL_MM = 0.5
 
 
-def block(design: Design, *, title: str, part: str, material: str, scale: float, note: str, per: int = 1) -> TitleBlock:
+def block(
+    design: Design, *, title: str, part: str, material: str, scale: float, note: str, per: int = 1
+) -> TitleBlock:
     """The title block of one drawing. per: pieces for each antenna."""
     return TitleBlock(
         recipe=design.name,
@@ -44,7 +46,7 @@ def general_deg(design: Design, leg_mm: float) -> float:
 
 
 def plus_minus(value: float) -> str:
-    """" \u00b10.3"."""
+    """ " \u00b10.3"."""
     return f" \u00b1{number(value)}"
 
 
@@ -58,5 +60,7 @@ def wire_text(design: Design) -> str:
     """Metal, temper and diameter of the wire in words."""
     r = design.radiator
     size = f"\u00d8{number(r.wire_diameter_mm, 3)} mm"
-    asked = "" if r.wire_text.replace(" ", "") == f"{number(r.wire_diameter_mm, 3)}mm" else f" ({r.wire_text})"
+    asked = (
+        "" if r.wire_text.replace(" ", "") == f"{number(r.wire_diameter_mm, 3)}mm" else f" ({r.wire_text})"
+    )
     return f"{r.metal.name}, {r.metal.temper}, {size}{asked}"

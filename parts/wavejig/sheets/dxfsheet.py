@@ -154,8 +154,9 @@ class _Writer:
             centre = self.put((c.x_mm, c.y_mm))
             space.add_circle(centre, round(c.diameter_mm / 2.0 * self.factor, _PLACES), dxfattribs=attributes)
         elif stroke.contour is not None:
-            corners = [(*self.put((x, y)), round(b, 12)) for x, y, b in stroke.contour.vertices]
-            space.add_lwpolyline(corners, format="xyb", close=True, dxfattribs=attributes)
+            for contour in (stroke.contour, *stroke.holes):
+                corners = [(*self.put((x, y)), round(b, 12)) for x, y, b in contour.vertices]
+                space.add_lwpolyline(corners, format="xyb", close=True, dxfattribs=attributes)
         elif len(stroke.points) == 2:
             space.add_line(self.put(stroke.points[0]), self.put(stroke.points[1]), dxfattribs=attributes)
         else:
@@ -221,7 +222,8 @@ class _Writer:
         dimension = space.new_entity("DIMENSION", attributes)
         own = group.factor / self.factor
         if group.kind != "angle" and abs(own - 1.0) > 1e-9:
-            override = dimension.override({"dimlfac": own})
+            override = dimension.override()
+            override["dimlfac"] = own
             override.commit()
 
 
@@ -237,8 +239,6 @@ def texts(drawn: Iterable[Drawn]) -> list[str]:
     """Every line of lettering on a sheet, for checks."""
     out: list[str] = []
     for thing in drawn:
-        if isinstance(thing, Word):
-            out.append(thing.text)
-        elif isinstance(thing, DimGroup):
+        if isinstance(thing, Word | DimGroup):
             out.append(thing.text)
     return out

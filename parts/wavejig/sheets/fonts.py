@@ -1,8 +1,8 @@
 """The typeface of everything printed: Bitstream Vera, which the typesetting library brings along.
 
 It is embedded as a subset, so the text can be selected and searched and looks the same everywhere. It has
-the signs drawings need (\u00d8 \u00b0 \u00b1 \u00d7 \u00b5 \u03a9 \u2264 \u2265) but no arrows and no lambda: those are drawn or spelt out. Characters it lacks are
-replaced, never printed as an empty box.
+the signs drawings need (diameter, degree, plus-minus, multiply, micro, ohm) but no arrows and few Greek
+letters: those are drawn or spelt out. Characters it lacks are replaced, never printed as an empty box.
 """
 
 from __future__ import annotations

@@ -115,7 +115,14 @@ def _block(block: TitleBlock, x: float, y: float) -> Iterator[Drawn]:
         (60.0, 0, "scale (on this paper)", block.scale, DIM_TEXT_MM),
         (104.0, 0, "", block.note, SMALL_TEXT_MM),
     )
-    room_mm = {(0.0, 2): w - 36.0, (0.0, 1): 58.0, (60.0, 1): 42.0, (104.0, 1): 40.0, (0.0, 0): 58.0, (60.0, 0): 42.0}
+    room_mm = {
+        (0.0, 2): w - 36.0,
+        (0.0, 1): 58.0,
+        (60.0, 1): 42.0,
+        (104.0, 1): 40.0,
+        (0.0, 0): 58.0,
+        (60.0, 0): 42.0,
+    }
     for column, row, label, text, size in cells:
         at = (x + column + 1.0, y + row * third)
         fits = size
@@ -127,9 +134,14 @@ def _block(block: TitleBlock, x: float, y: float) -> Iterator[Drawn]:
     middle = (x + w - 17.0, y + 16.0)
     yield from _projection(block.projection, middle)
     yield Word(
-        at=(middle[0], y + 6.0), text=PROJECTION_WORDS[block.projection], height_mm=SMALL_TEXT_MM * 0.85, anchor="centre"
+        at=(middle[0], y + 6.0),
+        text=PROJECTION_WORDS[block.projection],
+        height_mm=SMALL_TEXT_MM * 0.85,
+        anchor="centre",
     )
-    yield Word(at=(middle[0], y + 2.4), text="dimensions in mm", height_mm=SMALL_TEXT_MM * 0.85, anchor="centre")
+    yield Word(
+        at=(middle[0], y + 2.4), text="dimensions in mm", height_mm=SMALL_TEXT_MM * 0.85, anchor="centre"
+    )
 
 
 def _projection(kind: str, middle: Pt) -> Iterator[Drawn]:
@@ -144,7 +156,12 @@ def _projection(kind: str, middle: Pt) -> Iterator[Drawn]:
     # the cone narrows to the left in both
     yield Stroke(
         contour=Contour.polygon(
-            [(cone - 4.0, y - narrow), (cone + 4.0, y - wide), (cone + 4.0, y + wide), (cone - 4.0, y + narrow)]
+            [
+                (cone - 4.0, y - narrow),
+                (cone + 4.0, y - wide),
+                (cone + 4.0, y + wide),
+                (cone - 4.0, y + narrow),
+            ]
         ),
         pen="outline",
     )

@@ -7,7 +7,7 @@ its parts together (`DimGroup`), so that the DXF can carry it as one DIMENSION. 
 from __future__ import annotations
 
 import math
-from collections.abc import Iterable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass
 from typing import Literal
 
@@ -42,10 +42,11 @@ ARROW_MM, GAP_MM, OVER_MM, TEXT_OFF_MM = 2.5, 0.8, 1.5, 0.8
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Stroke:
-    """A chain of straights on paper, or a whole closed contour when `contour` is given."""
+    """A chain of straights on paper, a closed contour with its holes, or a circle."""
 
     points: tuple[Pt, ...] = ()
     contour: Contour | None = None
+    holes: tuple[Contour, ...] = ()
     circle: Circle | None = None
     pen: Pen = "thin"
     filled: bool = False
@@ -111,8 +112,11 @@ def _item(item: Item, view: View) -> Iterator[Drawn]:
             points = tuple(put(p) for p in item.points)
             yield Stroke(points=(*points, points[0]) if item.closed else points, pen=item.pen)
         case Shape():
-            corners = tuple((*put((x, y)), b) for x, y, b in item.contour.vertices)
-            yield Stroke(contour=Contour(vertices=corners), pen=item.pen, filled=item.filled)
+            contour, *holes = (
+                Contour(vertices=tuple((*put((x, y)), b) for x, y, b in c.vertices))
+                for c in (item.contour, *item.holes)
+            )
+            yield Stroke(contour=contour, holes=tuple(holes), pen=item.pen, filled=item.filled)
         case Ring():
             x, y = put((item.circle.x_mm, item.circle.y_mm))
             d = item.circle.diameter_mm * view.scale
@@ -133,13 +137,16 @@ def _item(item: Item, view: View) -> Iterator[Drawn]:
             )
         case Arrow():
             tail, tip = put(item.tail), put(item.tip)
-            yield Stroke(points=(tail, tip), pen=item.pen)
-            yield _head(tip, math.atan2(tip[1] - tail[1], tip[0] - tail[0]))
+            heading = math.atan2(tip[1] - tail[1], tip[0] - tail[0])
+            # a wide line would blunt the head's point
+            neck = (tip[0] - ARROW_MM * math.cos(heading), tip[1] - ARROW_MM * math.sin(heading))
+            yield Stroke(points=(tail, neck), pen=item.pen)
+            yield _head(tip, heading)
         case _:
             yield _dim(item, view, put)
 
 
-def _dim(dim: Dim, view: View, put) -> DimGroup:  # type: ignore[no-untyped-def]
+def _dim(dim: Dim, view: View, put: Callable[[Pt], Pt]) -> DimGroup:
     match dim:
         case LinearDim():
             return _linear(dim, put(dim.a), put(dim.b), view)
@@ -172,7 +179,7 @@ def _linear(dim: LinearDim, a: Pt, b: Pt, view: View) -> DimGroup:
             s = math.copysign(1.0, reach)
             parts.append(Stroke(points=(_pt(p + n * s * GAP_MM), _pt(f + n * s * OVER_MM))))
     # lettering reads from below or from the right
-    flip = -90.0 + 1e-6 >= dim.angle_deg or dim.angle_deg > 90.0 + 1e-6
+    flip = dim.angle_deg <= -90.0 + 1e-6 or dim.angle_deg > 90.0 + 1e-6
     along = dim.angle_deg + (180.0 if flip else 0.0)
     up = -n if flip else n
     inside = length >= 2.0 * ARROW_MM + 1.0
@@ -257,7 +264,8 @@ def _angle(dim: AngleDim, vertex: Pt, view: View) -> DimGroup:
         parts.append(Stroke(points=(_pt(v), _pt(v + _unit(a) * (dim.radius_mm + OVER_MM)))))
     wide = width_mm(text, DIM_TEXT_MM)
     half = np.array([wide / 2.0, DIM_TEXT_MM / 2.0])
-    spot = v + away * (dim.radius_mm + 1.2 + abs(away[0]) * half[0] + abs(away[1]) * half[1])
+    reach = 1.2 + abs(away[0]) * half[0] + abs(away[1]) * half[1]
+    spot = v - away * (reach + 1.5) if dim.outside else v + away * (dim.radius_mm + reach)
     parts.append(_word((float(spot[0]), float(spot[1] - DIM_TEXT_MM / 2.0)), text, 0.0))
     return DimGroup(
         kind="angle",

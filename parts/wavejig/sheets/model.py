@@ -40,11 +40,12 @@ class Chain:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Shape:
-    """A closed contour of straights and arcs. filled: light grey inside."""
+    """A closed contour of straights and arcs, with holes in it. filled: light grey between."""
 
     contour: Contour
     pen: Pen = "outline"
     filled: bool = False
+    holes: tuple[Contour, ...] = ()
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -71,7 +72,7 @@ class Text:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Arrow:
-    """An arrow from tail to tip. paper_mm: if given, the tail is that far from the tip on paper."""
+    """An arrow from tail to tip."""
 
     tail: Pt
     tip: Pt
@@ -124,12 +125,16 @@ class RadiusDim:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class AngleDim:
-    """The angle at `vertex` from direction `from_deg` counter-clockwise to `to_deg`; radius_mm: paper."""
+    """The angle at `vertex` from direction `from_deg` counter-clockwise to `to_deg`; radius_mm: paper.
+
+    outside: the number stands on the vertex's other side, where there is no room between the sides.
+    """
 
     vertex: Pt
     from_deg: float
     to_deg: float
     radius_mm: float = 14.0
+    outside: bool = False
     before: str = ""
     after: str = ""
 

@@ -8,8 +8,9 @@ from pathlib import Path
 from typing import Any
 
 from reportlab.lib.units import mm
-from reportlab.pdfgen.canvas import Canvas
+from reportlab.pdfgen.canvas import FILL_EVEN_ODD, Canvas
 
+from wavejig.files.errors import FileCheckError
 from wavejig.geometry.plane import Contour
 from wavejig.sheets.fonts import BOLD, CAP_HEIGHT, REGULAR, printable, use_fonts
 from wavejig.sheets.frame import everything
@@ -34,7 +35,9 @@ def write_sheet_pdf(sheet: Sheet, path: Path, recipe: str) -> None:
     """One drawing on one page. Same sheet, same bytes. Raises OSError when it cannot be written."""
     use_fonts()
     wide, high = sheet.paper_mm
-    canvas = Canvas(str(path), pagesize=(wide * mm, high * mm), invariant=1, pageCompression=1)
+    canvas = Canvas(
+        str(path), pagesize=(wide * mm, high * mm), invariant=1, pageCompression=1, initialFontName=REGULAR
+    )
     canvas.setTitle(printable(f"{recipe} {sheet.block.title}"))
     canvas.setCreator("wavejig")
     canvas.setAuthor("")
@@ -76,12 +79,13 @@ def _stroke(canvas: Canvas, stroke: Stroke) -> None:
     else:
         path = canvas.beginPath()
         if stroke.contour is not None:
-            _trace(path, stroke.contour)
+            for contour in (stroke.contour, *stroke.holes):
+                _trace(path, contour)
         else:
             path.moveTo(stroke.points[0][0] * mm, stroke.points[0][1] * mm)
             for x, y in stroke.points[1:]:
                 path.lineTo(x * mm, y * mm)
-        canvas.drawPath(path, stroke=1, fill=fill)
+        canvas.drawPath(path, stroke=1, fill=fill, fillMode=FILL_EVEN_ODD)
     canvas.restoreState()
 
 
@@ -137,3 +141,39 @@ def _word(canvas: Canvas, word: Word) -> None:
         case "right":
             canvas.drawRightString(0, 0, text)
     canvas.restoreState()
+
+
+def check_pdf(path: Path, recipe: str, paper_mm: tuple[float, float]) -> int:
+    """Raise FileCheckError unless a second reader finds the pages as they should be; returns how many.
+
+    Every page has the paper's size and the recipe's name as text that can be selected, and every font is
+    embedded.
+    """
+    from pypdf import PdfReader
+    from pypdf.errors import PyPdfError
+
+    try:
+        reader = PdfReader(path)
+        pages = list(reader.pages)
+        for page in pages:
+            _check_page(path, page, recipe, paper_mm)
+    except PyPdfError as err:
+        raise FileCheckError(path, f"a file its reader refuses ({err})", "a complete PDF") from err
+    if not pages:
+        raise FileCheckError(path, "no page", "one at least")
+    return len(pages)
+
+
+def _check_page(path: Path, page: Any, recipe: str, paper_mm: tuple[float, float]) -> None:
+    size = (float(page.mediabox.width) / mm, float(page.mediabox.height) / mm)
+    if max(abs(a - b) for a, b in zip(size, paper_mm, strict=True)) > 0.01:
+        raise FileCheckError(
+            path, f"paper of {size[0]:.2f} x {size[1]:.2f} mm", f"{paper_mm[0]:g} x {paper_mm[1]:g}"
+        )
+    wanted = "".join(printable(recipe).split())
+    if wanted not in "".join(page.extract_text().split()):
+        raise FileCheckError(path, "a page without the recipe's name", f"{wanted!r} on each")
+    for name, font in page["/Resources"]["/Font"].items():
+        described = font.get_object().get("/FontDescriptor")
+        if described is None or "/FontFile2" not in described.get_object():
+            raise FileCheckError(path, f"font {name} not embedded", "all fonts in the file")

@@ -72,7 +72,7 @@ def inspect(design: Design) -> Inspection:
         found += wire_findings(design, radiator)
         spacer = plan_spacer(design, radiator)
         found += spacer_findings(design, spacer)
-        fixture = plan_fixture(design, radiator)
+        fixture = plan_fixture(design, radiator, None if tray is None else tray.outline)
         found += fixture_findings(design, fixture)
     return Inspection(
         design=design,

@@ -21,7 +21,7 @@ def prediction_findings(p: Prediction) -> Iterator[Finding]:
             where="target.return_loss",
             message=f"the predicted return loss is {p.worst.return_loss_db:.1f} dB at "
             f"{megahertz(p.worst.frequency_hz)}; the recipe wants {p.wanted_db:g} dB over the whole band",
-            remedy="Leave side, standoff and feed_gap \"auto\" and run `wavejig tune`, or ask for less.",
+            remedy='Leave side, standoff and feed_gap "auto" and run `wavejig tune`, or ask for less.',
             source=PREDICTED,
         )
     off = max(abs(b - 1.0) for b in p.power_balance)

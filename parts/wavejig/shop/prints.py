@@ -62,7 +62,38 @@ def fixture_findings(design: Design, fixture: Fixture) -> Iterator[Finding]:
             remedy="Write or hold it by hand.",
             where="fixture",
         )
-    tiles = {p.name: len(p.tiles) for p in (fixture.board, fixture.nest) if len(p.tiles) > 1}
+    for load in fixture.pins.too_weak[:1]:
+        yield Finding(
+            code="post-too-weak",
+            severity=WARNING,
+            message=f"a printed post of {load.diameter_mm:.2f} mm would see {load.post_mpa:.1f} MPa at its root and "
+            f"{fixture.pins.plastic} may see {load.allowable_mpa:.1f} across its layers; the board has holes "
+            "for metal pins instead",
+            remedy="Turn pins of this diameter from bar, or choose an inside bend radius a stock dowel gives.",
+            where="radiator.inside_bend_radius",
+            source="bending of a round post, plastic moment of the wire; allowable stress from table plastics",
+        )
+    if fixture.style == "stop-block" or (fixture.stop_block is not None and len(fixture.board.tiles) > 1):
+        yield Finding(
+            code="fixture-style",
+            severity=NOTE,
+            message=f"the wire is bent on a {fixture.style.replace('-', ' ')}: {fixture.style_reason}",
+            remedy='Set style = "board" or "stop-block" under [fixture] to have the other.',
+            where="fixture.style",
+        )
+    material = plastic(design.printer.plastic)
+    if material.glass_transition_c < SOLDER_MELTS_C and not fixture.has_window:
+        yield Finding(
+            code="nest-heat",
+            severity=WARNING,
+            message=f"{material.name} softens at {material.glass_transition_c:g} deg C and the nest's lobes are "
+            "too small for a window about the joint",
+            remedy="Never solder in the nest: check the radiator there, solder it on the spacer.",
+            where="printer.material",
+            source="glass transition from table plastics; solder from memory",
+        )
+    printed = (fixture.board, fixture.nest) if fixture.style == "board" else (fixture.nest,)
+    tiles = {p.name: len(p.tiles) for p in printed if len(p.tiles) > 1}
     for name, count in tiles.items():
         yield Finding(
             code="fixture-tiled",

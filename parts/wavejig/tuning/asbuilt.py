@@ -84,9 +84,9 @@ def nominal(recipe: Recipe, design: Design) -> Nominal:
         values["insulation_permittivity"] = rad.insulation_permittivity
     if feed.style == "legs" and abs(math.dist(feed.pin_leg, feed.foot) - rad.feed_gap_mm) < _SAME_MM:
         values.pop("leg_spacing", None)  # the legs go straight down from the terminals, whatever the gap
-    pinned = recipe.model_copy(
-        update={"radiator": recipe.radiator.model_copy(update={"lap": rad.lap_mm})}
-    )
+    # the pin stays too: a wire a little thicker would else be bent on the next larger dowel
+    rest = {"lap": rad.lap_mm, "inside_bend_radius": rad.inside_radius_mm}
+    pinned = recipe.model_copy(update={"radiator": recipe.radiator.model_copy(update=rest)})
     return Nominal(recipe=pinned, design=design, values=values, leg_follows_wire=feed.leg_is_wire)
 
 
@@ -142,7 +142,5 @@ def _with_bend_radius(design: Design, inside_mm: float) -> Design:
     )
     return replace(
         design,
-        radiator=replace(
-            rad, inside_radius_mm=inside_mm, loaded_inside_radius_mm=loaded, corners=corners
-        ),
+        radiator=replace(rad, inside_radius_mm=inside_mm, loaded_inside_radius_mm=loaded, corners=corners),
     )

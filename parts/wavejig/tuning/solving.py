@@ -48,7 +48,7 @@ def admittance(job: Job) -> NDArray[np.complex128]:
 
     model = job.nominal.model(job.values)
     with warnings.catch_warnings():
-        # the nominal design's own solve has told what there is to tell about the mesh
+        # at the far edge of the frequencies a triangle may be a little long: `match` tells what matters
         warnings.simplefilter("ignore", ModelWarning)
         response = solve(model, np.array(job.frequencies_hz))
     return np.asarray(response.admittance_s[:, 0, 0])

@@ -1,17 +1,21 @@
 """The response surface: complex admittance of an article over frequency, from a designed set of solves.
 
-Frequencies are scaled by the article's size (its side, or its round lobe's diameter) before anything is
-fitted: a structure made larger by some factor shows the same admittance at frequencies lower by it, so
-that what is left for the surface to describe is mild. At each of a few such scaled frequencies the
-admittance is a quadratic in the dimensions, fitted by penalised least squares: linear terms are free,
-squares and products are drawn towards zero in measure of how little their dimensions matter, by a strength
-that leave-one-out residuals choose (ridge regression; Hoerl & Kennard 1970; closed-form leave-one-out:
-Allen's PRESS, 1974, from memory). Between the scaled frequencies a polynomial through the Chebyshev nodes.
+Three things keep what is fitted mild. Frequencies are scaled by the article's size (its side, or its round
+lobe's diameter): a structure made larger by some factor shows the same admittance at frequencies lower by
+it. The nominal article's curve is known at many frequencies, and only the difference from it is fitted.
+And the fit is made on that one of impedance, admittance and reflection which a few frequencies describe
+best on the nominal curve; they are one another's Moebius transforms, so nothing is lost either way.
+
+At each of a few scaled frequencies the difference is a quadratic in the dimensions, fitted by penalised
+least squares: linear terms are free, squares and products are drawn towards zero in measure of how little
+their dimensions matter, by a strength that leave-one-out residuals choose (ridge regression, Hoerl &
+Kennard 1970; closed-form leave-one-out, Allen's PRESS 1974; from memory). Between the scaled frequencies
+stands the polynomial through Chebyshev nodes.
 """
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -54,23 +58,46 @@ class Axes:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Curve:
+    """The nominal article's admittance at many frequencies, and the form it is best described in."""
+
+    nodes_hz: Array
+    admittance_s: Complex
+    form: str  # "impedance", "admittance" or "reflection"
+    reference_ohm: float
+
+    def shape(self, admittance_s: Complex) -> Complex:
+        """An admittance in the curve's form."""
+        return _SHAPES[self.form](admittance_s, self.reference_ohm)
+
+    def unshape(self, shaped: Complex) -> Complex:
+        """The admittance again."""
+        return _UNSHAPES[self.form](shaped, self.reference_ohm)
+
+    def at(self, frequencies_hz: Array) -> Complex:
+        """Shaped values at frequencies of any shape."""
+        shaped = self.shape(self.admittance_s)[None, :]
+        flat = frequencies_hz.reshape(1, -1)
+        return interpolate(self.nodes_hz, shaped, flat).reshape(frequencies_hz.shape)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Surface:
     """Admittance at the port as a function of the dimensions and of frequency.
 
-    coefficients: (terms, K) complex, siemens; pairs: the products among the terms; press_s: leave-one-out
-    rms residual of the fit, siemens; strength: of the penalty.
+    coefficients: (terms, K) of the difference from the nominal curve, in its form; press: leave-one-out
+    rms residual of the fit, in that form; strength: of the penalty.
     """
 
     axes: Axes
+    curve: Curve
     coefficients: Complex
     strength: float
-    press_s: float
+    press: float
 
-    def at_nodes(self, values: Array) -> Complex:
-        """(N, K) siemens at each article's own scaled frequencies."""
-        return np.asarray(terms(self.axes.coded(values)) @ self.coefficients)
-
-    def admittance_s(self, values: Array, frequencies_hz: Array, frequency_factor: Array | None = None) -> Complex:
+    def admittance_s(
+        self, values: Array, frequencies_hz: Array, frequency_factor: Array | None = None
+    ) -> Complex:
         """(N, F) siemens of N articles (N, d) at F frequencies.
 
         frequency_factor: (N,) of the true article's frequencies over the model's, for the model's own error.
@@ -78,17 +105,47 @@ class Surface:
         scale = self.axes.scale(values)
         if frequency_factor is not None:
             scale = scale / frequency_factor
-        return interpolate(self.axes.nodes_hz, self.at_nodes(values), scale[:, None] * frequencies_hz[None, :])
+        at = scale[:, None] * frequencies_hz[None, :]
+        difference = terms(self.axes.coded(values)) @ self.coefficients
+        return self.curve.unshape(self.curve.at(at) + interpolate(self.axes.nodes_hz, difference, at))
+
+    def reflection(
+        self, values: Array, frequencies_hz: Array, frequency_factor: Array | None = None
+    ) -> Complex:
+        """(N, F): as admittance_s, as reflection in the curve's reference."""
+        return reflection(
+            self.admittance_s(values, frequencies_hz, frequency_factor), self.curve.reference_ohm
+        )
 
 
-def fit(axes: Axes, values: Array, admittances_s: Complex) -> Surface:
+def best_curve(nodes_hz: Array, admittance_s: Complex, few_hz: Array, reference_ohm: float) -> Curve:
+    """The nominal curve in the form that a polynomial through the few frequencies follows best."""
+    checks = chebyshev_nodes(float(nodes_hz[0]), float(nodes_hz[-1]), 41)
+    truth: Complex | None = None
+    best: tuple[float, Curve] | None = None
+    for form in _SHAPES:
+        curve = Curve(nodes_hz=nodes_hz, admittance_s=admittance_s, form=form, reference_ohm=reference_ohm)
+        if truth is None:
+            truth = reflection(curve.unshape(curve.at(checks)), reference_ohm)
+        few = interpolate(few_hz, curve.at(few_hz)[None, :], checks[None, :])[0]
+        error = float(np.abs(reflection(curve.unshape(few), reference_ohm) - truth).max())
+        if best is None or error < best[0]:
+            best = (error, curve)
+    assert best is not None
+    return best[1]
+
+
+def fit(axes: Axes, curve: Curve, values: Array, admittances_s: Complex) -> Surface:
     """Fit a surface to solves: values (n, d), admittances (n, K) at the axes' nodes."""
     x = axes.coded(values)
-    y = admittances_s
+    y = curve.shape(admittances_s) - curve.at(axes.nodes_hz)[None, :]
+    # the nominal article itself is known: no difference
+    x = np.concatenate([np.zeros((1, x.shape[1])), x])
+    y = np.concatenate([np.zeros((1, y.shape[1])), y])
     linear = np.column_stack([np.ones(len(x)), x])
     first = np.linalg.lstsq(linear, y, rcond=None)[0]
     weight = np.sqrt(np.mean(np.abs(first[1:]) ** 2, axis=1))
-    level = float(np.sqrt(np.mean(np.abs(y) ** 2)))
+    level = float(np.sqrt(np.mean(np.abs(curve.at(axes.nodes_hz)) ** 2))) or 1.0
     prior = _prior(weight, level)
     design = terms(x)
     free = 1 + x.shape[1]
@@ -101,7 +158,7 @@ def fit(axes: Axes, values: Array, admittances_s: Complex) -> Surface:
         if best is None or press < best[0]:
             best = (press, float(strength), solved)
     assert best is not None
-    return Surface(axes=axes, coefficients=best[2], strength=best[1], press_s=best[0])
+    return Surface(axes=axes, curve=curve, coefficients=best[2], strength=best[1], press=best[0])
 
 
 def terms(x: Array) -> Array:
@@ -152,35 +209,22 @@ def reflection(admittance_s: Complex, reference_ohm: float) -> Complex:
     return np.asarray((1.0 / reference_ohm - admittance_s) / (1.0 / reference_ohm + admittance_s))
 
 
+def _from_reflection(shaped: Complex, reference_ohm: float) -> Complex:
+    return np.asarray((1.0 - shaped) / (1.0 + shaped) / reference_ohm)
+
+
+_SHAPES: dict[str, Callable[[Complex, float], Complex]] = {
+    "reflection": reflection,
+    "impedance": lambda y, _: np.asarray(1.0 / y),
+    "admittance": lambda y, _: y,
+}
+_UNSHAPES: dict[str, Callable[[Complex, float], Complex]] = {
+    "reflection": _from_reflection,
+    "impedance": lambda z, _: np.asarray(1.0 / z),
+    "admittance": lambda y, _: y,
+}
+
+
 def worst_return_loss_db(reflections: Complex) -> Array:
     """(N, F) to (N,): least return loss over the frequencies."""
     return np.asarray(-20.0 * np.log10(np.maximum(np.abs(reflections).max(axis=-1), 1e-6)))
-
-
-def designed_points(dimensions: int, count: int, corners: int) -> Array:
-    """(count, dimensions) in -1 to 1: the middle, balanced corners at 0.7, then a Sobol sequence.
-
-    Corners: columns of a Hadamard matrix (Sylvester), each dimension as often high as low. The sequence
-    is scrambled with a fixed seed (Owen), so that it is the same every time.
-    """
-    from scipy.stats import qmc
-
-    size = 1
-    while size < max(corners, dimensions + 1):
-        size *= 2
-    hadamard = np.array([[1.0]])
-    while len(hadamard) < size:
-        hadamard = np.block([[hadamard, hadamard], [hadamard, -hadamard]])
-    middle = np.zeros((1, dimensions))
-    corner = 0.7 * hadamard[: max(corners, size) if corners else 0, 1 : dimensions + 1]
-    rest = count - 1 - len(corner)
-    if rest < 0:
-        raise ValueError(f"{count} points do not hold {len(corner)} corners")
-    power = max(1, int(np.ceil(np.log2(max(rest, 2)))))
-    sobol = qmc.Sobol(dimensions, scramble=True, seed=20240229).random_base2(power)[:rest]
-    return np.concatenate([middle, corner, 2.0 * sobol - 1.0])
-
-
-def stack(names: Sequence[str], rows: Sequence[dict[str, float]]) -> Array:
-    """Dimensions by name to (n, d)."""
-    return np.array([[row[name] for name in names] for row in rows], dtype=np.float64)

@@ -52,9 +52,7 @@ def with_values(recipe: Recipe, values: Mapping[str, float]) -> Recipe:
     radiator = changes.get("radiator", {})
     if "side" in radiator or "lobe_diameter" in radiator:
         radiator["measured_over"] = "centreline"
-    tables = {
-        name: getattr(recipe, name).model_copy(update=update) for name, update in changes.items()
-    }
+    tables = {name: getattr(recipe, name).model_copy(update=update) for name, update in changes.items()}
     return recipe.model_copy(update=tables)
 
 

@@ -10,7 +10,9 @@ vertex, h the height over the opposite side: S. U. Hwu, D. R. Wilton, S. M. Rao,
 and radiation by arbitrary conducting wire/surface configurations, IEEE AP-S Symposium 1988 (from
 memory; re-derived: the first part is free of charge and carries the flux, the second has constant
 charge). With rho = u e(v), e(v) on the opposite side, the first part times dS is share e(v) du dv, and the
-integral over u of 1/R is a logarithm, which leaves one smooth integral over v.
+integral over u of 1/R is a logarithm, which leaves one smooth integral over v. The first part begins at the
+wire's surface, where the tube's current really enters the sheet: begun at its axis it would give each foot
+an inductance too much of a tenth of mu0 times the radius (found by comparing with an infinite ground).
 """
 
 from __future__ import annotations
@@ -20,6 +22,7 @@ import math
 import numpy as np
 
 from wavejig.field.kernels.compile import compiled
+from wavejig.field.unknowns import FAN_LATEST
 
 
 @compiled()
@@ -68,12 +71,12 @@ def _potential(x, y, z, v, n, s, u):
 
 
 @compiled()
-def _rays(x, y, z, v, nodes, weights):
-    """Integral over v of e(v) times the integral over u of 1/R: the flux-carrying part of a fan triangle."""
+def _rays(x, y, z, v, foot, nodes, weights):
+    """Integral over v of e(v) times that of 1/R over u from the foot's radius on: a fan's carrying part."""
     px = x - v[0, 0]
     py = y - v[0, 1]
     pz = z - v[0, 2]
-    rm = math.sqrt(px * px + py * py + pz * pz)
+    r2 = px * px + py * py + pz * pz
     sx = 0.0
     sy = 0.0
     sz = 0.0
@@ -85,9 +88,11 @@ def _rays(x, y, z, v, nodes, weights):
         e2 = ex * ex + ey * ey + ez * ez
         length = math.sqrt(e2)
         along = (ex * px + ey * py + ez * pz) / length
+        start = min(foot / length, FAN_LATEST)
+        rm = math.sqrt((px - start * ex) ** 2 + (py - start * ey) ** 2 + (pz - start * ez) ** 2)
         rp = math.sqrt((px - ex) ** 2 + (py - ey) ** 2 + (pz - ez) ** 2)
-        off2 = max(rm * rm - along * along, 1e-12 * e2)
-        w = weights[g] * _log_term(-along, length - along, rm, rp, off2) / length
+        off2 = max(r2 - along * along, 1e-12 * e2)
+        w = weights[g] * _log_term(start * length - along, length - along, rm, rp, off2) / length
         sx += w * ex
         sy += w * ey
         sz += w * ez
@@ -154,32 +159,39 @@ def _triangle_points(v, bary, weights, pos, vec, wgt):
 
 
 @compiled()
-def _fan_points(v, share, nodes, weights, pos, vec, wgt):
+def _fan_points(v, share, foot, nodes, weights, pos, vec, wgt):
     m = 0
     for g in range(nodes.size):
         t = nodes[g]
-        for h in range(nodes.size):
-            u = nodes[h]
-            w = weights[g] * weights[h]
-            wgt[m] = 2.0 * u * w
-            for c in range(3):
-                e = (1.0 - t) * v[1, c] + t * v[2, c] - v[0, c]
-                pos[m, c] = v[0, c] + u * e
-                vec[m, 0, c] = share * (1.0 - u * u) * w * e
-            m += 1
+        e2 = 0.0
+        for c in range(3):
+            e2 += ((1.0 - t) * v[1, c] + t * v[2, c] - v[0, c]) ** 2
+        start = min(foot / math.sqrt(e2), FAN_LATEST)
+        for part in range(2):
+            # within the foot the charge's share only, beyond it the carried current too
+            span = start if part == 0 else 1.0 - start
+            for h in range(nodes.size):
+                u = span * nodes[h] if part == 0 else start + span * nodes[h]
+                w = weights[g] * weights[h] * span
+                wgt[m] = 2.0 * u * w
+                for c in range(3):
+                    e = (1.0 - t) * v[1, c] + t * v[2, c] - v[0, c]
+                    pos[m, c] = v[0, c] + u * e
+                    vec[m, 0, c] = share * (part - u * u) * w * e
+                m += 1
     return m
 
 
 @compiled()
-def _sheet_points(v, kind, share, bary, weights, nodes, wn, pos, vec, wgt):
+def _sheet_points(v, kind, share, foot, bary, weights, nodes, wn, pos, vec, wgt):
     """Points on a triangle or fan triangle, their number, and how many halves they carry."""
     if kind == 2:
-        return _fan_points(v, share, nodes, wn, pos, vec, wgt), 1
+        return _fan_points(v, share, foot, nodes, wn, pos, vec, wgt), 1
     return _triangle_points(v, bary, weights, pos, vec, wgt), 3
 
 
 @compiled()
-def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, bary, bw, factor, out):
+def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, foot, nodes, weights, bary, bw, factor, out):
     """Adds factor times the interaction of m observation points with one source to out (20,).
 
     out: 0..8 vector 1/R by halves, 9..17 vector R, 18 scalar 1/R, 19 scalar R, all for unit charges.
@@ -196,7 +208,7 @@ def _one_way(pos, vec, wgt, m, halves, src, q, is_fan, share, nodes, weights, ba
         w = factor * wgt[g]
         out[18] += w * i0 / area
         if is_fan:
-            fx, fy, fz = _rays(x, y, z, v, nodes, weights)
+            fx, fy, fz = _rays(x, y, z, v, foot, nodes, weights)
             half = share / (2.0 * area)
             bx = share * fx - half * (mx + (x - v[0, 0]) * i0)
             by = share * fy - half * (my + (y - v[0, 1]) * i0)
@@ -330,17 +342,19 @@ def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sou
         fan = kind[q] == 2
         if kind[p] == 0:
             near = _distance(own.corners[p], sources.centre[q], size[q])
-            around = 6 if near < 4.0 * radius[p] else 1
+            around = 6 if near < 4.037 * radius[p] else 1
             if near > 1.0531 * size[p]:
                 nodes, weights = g4, wg4
-            elif near > 0.0:
+            elif (
+                near > 1e-6 * size[q]
+            ):  # a wire that stands on the farthest corner touches, whatever the rounding
                 nodes, weights = g6, wg6
             else:
                 nodes, weights = g12, wg12
             m = _tube_points(
                 own.corners[p], radius[p], sources.centre[q], nodes, weights, around, pos, vec, wgt
             )
-            _one_way(pos, vec, wgt, m, 2, sources, q, fan, share[q], g12, wg12, b3, w3, 1.0, res)
+            _one_way(pos, vec, wgt, m, 2, sources, q, fan, share[q], radius[q], g12, wg12, b3, w3, 1.0, res)
             continue
         touching = _shared_vertices(own.corners[p], sources.corners[q], 1e-12 * size[p] * size[q])
         if touching == 0 and kind[p] == 1 and kind[q] == 1:
@@ -361,8 +375,27 @@ def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sou
         if touching > 1:
             outer, wo = b16, w16
         if not (uneven and ratio > 1.0):
-            m, halves = _sheet_points(own.corners[p], kind[p], share[p], outer, wo, g4, wg4, pos, vec, wgt)
-            _one_way(pos, vec, wgt, m, halves, sources, q, fan, share[q], rays, wr, inner, wi, factor, res)
+            m, halves = _sheet_points(
+                own.corners[p], kind[p], share[p], radius[p], outer, wo, g4, wg4, pos, vec, wgt
+            )
+            _one_way(
+                pos,
+                vec,
+                wgt,
+                m,
+                halves,
+                sources,
+                q,
+                fan,
+                share[q],
+                radius[q],
+                rays,
+                wr,
+                inner,
+                wi,
+                factor,
+                res,
+            )
         if itself:
             for a in range(halves):
                 for b in range(a):
@@ -373,10 +406,25 @@ def sheet_pairs(first, last, direct, ps, qs, kind, size, radius, share, own, sou
         elif not (uneven and ratio < 1.0):
             flipped[:] = 0.0
             m, halves = _sheet_points(
-                sources.corners[q], kind[q], share[q], outer, wo, g4, wg4, pos, vec, wgt
+                sources.corners[q], kind[q], share[q], radius[q], outer, wo, g4, wg4, pos, vec, wgt
             )
             _one_way(
-                pos, vec, wgt, m, halves, own, p, kind[p] == 2, share[p], rays, wr, inner, wi, factor, flipped
+                pos,
+                vec,
+                wgt,
+                m,
+                halves,
+                own,
+                p,
+                kind[p] == 2,
+                share[p],
+                radius[p],
+                rays,
+                wr,
+                inner,
+                wi,
+                factor,
+                flipped,
             )
             for a in range(3):
                 for b in range(3):

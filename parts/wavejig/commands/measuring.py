@@ -1,0 +1,224 @@
+"""`wavejig measured`: sweeps of articles laid over the prediction, causes, changes, test record."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+from collections.abc import Mapping
+from pathlib import Path
+from typing import TYPE_CHECKING, Any
+
+from wavejig.commands.telling import (
+    CANNOT_BE_MADE,
+    MACHINE,
+    OK,
+    WRONG_INPUT,
+    input_error,
+    say,
+    stop,
+    unreadable,
+)
+
+if TYPE_CHECKING:
+    from wavejig.recipe import RecipeFile
+    from wavejig.shop import Inspection
+    from wavejig.tuning.measured import Measured
+    from wavejig.tuning.sweepfile import MeasuredSweep
+
+
+def run(args: argparse.Namespace) -> int:
+    """Exit code: 0 all pass; 1 an article fails; 2 a recipe, sweep or reading that cannot be used."""
+    from wavejig.pack import inspect_recipe
+    from wavejig.recipe import RecipeError
+
+    refused = _refuse_names(args)
+    if refused is not None:
+        return refused
+    path: Path = args.recipe
+    try:
+        recipe_file, inspection = inspect_recipe(path)
+    except RecipeError as err:
+        result = input_error(path, err, args.json)
+        return _end(args, WRONG_INPUT, result)
+    except OSError as err:
+        return _end(args, WRONG_INPUT, unreadable(path, err, args.json))
+    if inspection.radiator is None or inspection.tray is None:
+        return stop(CANNOT_BE_MADE, f"{path}: cannot be made, so nothing is predicted; see `wavejig check`")
+    try:
+        readings = _readings(args, recipe_file, inspection)
+    except ValueError as err:
+        return stop(WRONG_INPUT, f"measured: {err}")
+    sweeps, bad = _sweeps(args, inspection)
+    if not sweeps:
+        return _end(args, WRONG_INPUT, {"recipe": str(path), "refused": bad})
+    return _measure(args, recipe_file, inspection, sweeps, readings, bad)
+
+
+def _measure(
+    args: argparse.Namespace,
+    recipe_file: RecipeFile,
+    inspection: Inspection,
+    sweeps: list[MeasuredSweep],
+    readings: Mapping[str, float],
+    bad: list[dict[str, str]],
+) -> int:
+    from concurrent.futures import BrokenExecutor
+
+    from wavejig.field.errors import ModelError
+    from wavejig.progress import Meter
+    from wavejig.tuning.asbuilt import ArticleError, nominal
+    from wavejig.tuning.measured import measure
+    from wavejig.tuning.measuredtext import measured_data, measured_text
+    from wavejig.tuning.solving import ClusterError, workers
+
+    meter = Meter(args.recipe.name, sys.stderr, quiet=args.json)
+    meter.step("meshing")
+    try:
+        article = nominal(recipe_file.recipe, inspection.design).meshed()
+        with workers(args.cluster) as executor:
+            found = measure(recipe_file.recipe, article, sweeps, readings, executor, told=meter.step)
+    except (ArticleError, ModelError) as err:
+        return stop(CANNOT_BE_MADE, f"{args.recipe}: its neighbours cannot be predicted: {err}")
+    except ClusterError as err:
+        return stop(MACHINE, f"measured: {err}")
+    except BrokenExecutor:
+        return stop(MACHINE, "measured: a worker process died, often for want of memory; try again")
+    finally:
+        meter.end()
+    code = OK if found.passing == len(found.articles) else CANNOT_BE_MADE
+    if bad:
+        code = WRONG_INPUT
+    if not args.json:
+        say(measured_text(found))
+    code = max(code, _keep(args, recipe_file, found))
+    return _end(args, code, {"recipe": str(args.recipe), **measured_data(found), "refused": bad})
+
+
+def _keep(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) -> int:
+    """Record, picture, recipe: what was asked to be written."""
+    code = OK
+    if args.record is not None:
+        from wavejig.tuning.record import write_record
+
+        try:
+            write_record(found, args.record)
+            sys.stderr.write(f"{args.record} written\n")
+        except OSError as err:
+            code = stop(MACHINE, f"{args.record}: record not written: {err.strerror or err}")
+    if args.plot is not None:
+        from wavejig.tuning.measuredplot import plot_measured
+
+        try:
+            plot_measured(found, args.plot)
+            sys.stderr.write(f"{args.plot} written\n")
+        except OSError as err:
+            code = stop(MACHINE, f"{args.plot}: picture not written: {err.strerror or err}")
+    if args.write:
+        code = max(code, _write(args, recipe_file, found))
+    return code
+
+
+def _write(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) -> int:
+    from wavejig.recipe.edit import EditError, edit_file
+    from wavejig.tuning.correction import NothingToWriteError, puts, written_problems
+
+    try:
+        wanted = puts(recipe_file.recipe, found)
+        problems = written_problems(args.recipe, wanted)
+        if problems:
+            return stop(
+                CANNOT_BE_MADE,
+                f"{args.recipe}: left as it is, the changed recipe could not be made: {problems}",
+            )
+        edit_file(args.recipe, wanted)
+    except NothingToWriteError as err:
+        sys.stderr.write(f"{args.recipe}: left as it is: {err}\n")
+        return OK
+    except EditError as err:
+        return stop(WRONG_INPUT, f"{args.recipe}: {err}")
+    except OSError as err:
+        return stop(MACHINE, f"{args.recipe}: not written: {err.strerror or err}; it is as it was")
+    sys.stderr.write(
+        f"{args.recipe} written: {', '.join(f'{p.table}.{p.key} = {p.value}' for p in wanted)}\n"
+    )
+    return OK
+
+
+def _refuse_names(args: argparse.Namespace) -> int | None:
+    """Outputs that could not be written are refused before anything is solved."""
+    from wavejig.tuning.record import KINDS
+
+    if args.record is not None and args.record.suffix.lower() not in KINDS:
+        return stop(WRONG_INPUT, f"{args.record}: a record's name must end in {' or '.join(KINDS)}")
+    if args.plot is not None:
+        from wavejig.field.plot import PlotError, check_path
+
+        try:
+            check_path(args.plot)
+        except PlotError as err:
+            return stop(WRONG_INPUT, str(err))
+    return None
+
+
+def _readings(args: argparse.Namespace, recipe_file: RecipeFile, inspection: Inspection) -> dict[str, float]:
+    """Calliper readings over the centreline: the recipe's, and those of the command line above them.
+
+    Raises ValueError that says what to write.
+    """
+    from wavejig.recipe.units import LENGTH, UnitError, parse
+    from wavejig.tuning.spread import MEASURED_KEYS, centreline_readings, readings_of
+
+    recipe, wire = recipe_file.recipe, inspection.design.radiator.wire_diameter_mm
+    if len(args.sweeps) > 1:
+        if args.reading:
+            raise ValueError("--reading belongs to one article; give its sweep alone")
+        return {}
+    given: dict[str, float] = {}
+    for text in args.reading:
+        name, _, size = text.partition("=")
+        name = name.strip().replace("-", "_")
+        if name not in MEASURED_KEYS or not size:
+            raise ValueError(f"--reading {text}: write NAME=SIZE with NAME one of {', '.join(MEASURED_KEYS)}")
+        try:
+            given[name] = parse(size.strip(), LENGTH)
+        except UnitError as err:
+            raise ValueError(f"--reading {text}: {err.allowed}. {err.fix}") from err
+    found = {**readings_of(recipe, wire), **centreline_readings(recipe, wire, given)}
+    known = dict(inspection.design.values)
+    for name, value in found.items():
+        if name not in known:
+            raise ValueError(f"reading {name}: this radiator has no such dimension")
+        if abs(value / known[name].value - 1.0) > 0.2:
+            raise ValueError(
+                f"reading {name}: {value:.2f} mm over the centreline is far from the {known[name].value:.2f} mm drawn; "
+                "is it read over what measured_over says?"
+            )
+    return found
+
+
+def _sweeps(
+    args: argparse.Namespace, inspection: Inspection
+) -> tuple[list[MeasuredSweep], list[dict[str, str]]]:
+    from wavejig.tuning.sweepfile import SweepError, read_sweep
+
+    target = inspection.design.target
+    good: list[MeasuredSweep] = []
+    bad: list[dict[str, str]] = []
+    for path in args.sweeps:
+        try:
+            good.append(read_sweep(path, target.band_low_hz, target.band_high_hz, target.reference_ohm))
+        except SweepError as err:
+            bad.append({"sweep": str(path), "error": err.message})
+            sys.stderr.write(f"{err}\n")
+        except OSError as err:
+            message = f"cannot be read: {err.strerror or err}"
+            bad.append({"sweep": str(path), "error": message})
+            sys.stderr.write(f"{path}: {message}\n")
+    return good, bad
+
+
+def _end(args: argparse.Namespace, code: int, result: dict[str, Any]) -> int:
+    if args.json:
+        say(json.dumps(result, indent=1))
+    return code

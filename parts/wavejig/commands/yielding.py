@@ -1,0 +1,117 @@
+"""`wavejig yield`: of the quantity ordered, how many will pass, and which dimension decides it."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+from concurrent.futures import Executor
+from pathlib import Path
+from typing import Any
+
+from wavejig.commands.telling import (
+    CANNOT_BE_MADE,
+    MACHINE,
+    OK,
+    WRONG_INPUT,
+    input_error,
+    say,
+    stop,
+    unreadable,
+)
+
+
+def run(args: argparse.Namespace) -> int:
+    """Each recipe in turn on the same workers; the exit code is the worst of theirs."""
+    from concurrent.futures import BrokenExecutor
+
+    from wavejig.tuning.solving import ClusterError, workers
+
+    if args.plot is not None:
+        if len(args.recipes) > 1:
+            return stop(WRONG_INPUT, "yield: --plot takes one recipe at a time")
+        from wavejig.field.plot import PlotError, check_path
+
+        try:
+            check_path(args.plot)
+        except PlotError as err:
+            return stop(WRONG_INPUT, str(err))
+    code, results = OK, []
+    try:
+        with workers(args.cluster) as executor:
+            for path in args.recipes:
+                one, result = _one(args, path, executor)
+                code = max(code, one)
+                results.append(result)
+    except ClusterError as err:
+        return stop(MACHINE, f"yield: {err}")
+    except BrokenExecutor:
+        return stop(MACHINE, "yield: a worker process died, often for want of memory; try again")
+    if args.json:
+        say(json.dumps(results, indent=1))
+    return code
+
+
+def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int, dict[str, Any]]:
+    from wavejig.pack import inspect_recipe
+    from wavejig.progress import Meter
+    from wavejig.recipe import RecipeError
+
+    try:
+        recipe_file, inspection = inspect_recipe(path)
+    except RecipeError as err:
+        return WRONG_INPUT, input_error(path, err, args.json)
+    except OSError as err:
+        return WRONG_INPUT, unreadable(path, err, args.json)
+    if inspection.radiator is None or inspection.tray is None:
+        return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
+    from wavejig.field.errors import ModelError
+    from wavejig.tuning.asbuilt import ArticleError, nominal
+    from wavejig.tuning.explore import explore
+    from wavejig.tuning.spread import spread
+    from wavejig.tuning.yields import find_yield, yield_data
+    from wavejig.tuning.yieldtext import yield_text
+
+    meter = Meter(path.name, sys.stderr, quiet=args.json)
+    meter.step("meshing")
+    design = inspection.design
+    try:
+        article = nominal(recipe_file.recipe, design).meshed()
+        explored = explore(
+            article,
+            spread(recipe_file.recipe, article),
+            executor,
+            told=lambda done, of: meter.step(f"solved {done} of {of}"),
+        )
+    except (ArticleError, ModelError) as err:
+        return CANNOT_BE_MADE, _failed(path, f"its spread cannot be predicted: {err}")
+    finally:
+        meter.end()
+    meter.step("making virtual articles")
+    found = find_yield(explored, design.quantity, design.target.return_loss_db)
+    meter.end()
+    code = OK if found.nominal_passes else CANNOT_BE_MADE
+    if not args.json:
+        say(yield_text(found))
+    if not inspection.can_be_made:
+        code = CANNOT_BE_MADE
+        sys.stderr.write(f"{path}: has errors and cannot be made as it stands; see `wavejig check`\n")
+    if args.plot is not None:
+        code = max(code, _plot(found, args.plot))
+    return code, {"recipe": str(path), **yield_data(found)}
+
+
+def _plot(found: Any, path: Path) -> int:
+    from wavejig.tuning.yieldplot import plot_yield
+
+    try:
+        plot_yield(found, path)
+    except OSError as err:
+        return stop(MACHINE, f"{path}: picture not written: {err.strerror or err}")
+    sys.stderr.write(f"{path} written\n")
+    return OK
+
+
+def _failed(path: Path, message: str) -> dict[str, Any]:
+    sys.stderr.write(f"{path}: {message}\n")
+    return {"recipe": str(path), "error": message}

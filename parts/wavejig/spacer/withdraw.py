@@ -1,0 +1,110 @@
+"""Each piece of the block pulled out after soldering, step by step, past all that stays. Lengths in mm.
+
+Not part of `check`: uses shapely. The wire, the legs and the feed's hardware stay; the piece moves along its
+stated direction by its travel, then straight up.
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+import shapely
+
+from wavejig.design.model import Design
+from wavejig.geometry.prisms import Prism, clearances_mm, contour_polygon
+from wavejig.radiator.model import Radiator
+from wavejig.spacer.keepout import HARDWARE_PLAY_MM, hardware_radius_mm, wires
+from wavejig.spacer.model import BlockPiece, Spacer
+
+STEP_MM = 0.5
+LIFTS = 12
+TOUCH_MM = 0.01  # the wire rests on the piece; outlines are smoothed by this
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Withdrawal:
+    """How one piece comes out.
+
+    way: the path in words. least_wire_mm: least air to any wire on the way (about 0: the wire rests on it
+    until it is out); least_rim_mm: the same for what stands higher than the wire's underside;
+    least_hardware_mm: in plan, to connector, screws and the ground leg's foot; lip_mm: left over before the
+    lip when it is pulled out (infinite without one). carries: stretches of wire it holds up;
+    standoff_off_mm: how far the wire on it lies from the standoff.
+    """
+
+    piece: str
+    way: str
+    travel_mm: float
+    least_wire_mm: float
+    least_rim_mm: float
+    least_hardware_mm: float
+    lip_mm: float
+    carries: int
+    standoff_off_mm: float
+
+    @property
+    def free(self) -> bool:
+        """Nothing stands in the way."""
+        least = min(self.least_wire_mm, self.least_rim_mm, self.least_hardware_mm, self.lip_mm)
+        return least >= -TOUCH_MM
+
+
+def withdrawals(design: Design, radiator: Radiator, spacer: Spacer) -> tuple[Withdrawal, ...]:
+    """Of each piece of a removable block; none for posts, which stay."""
+    sampled = wires(design, radiator)
+    return tuple(_withdraw(design, p, sampled.points, sampled.radius_mm) for p in spacer.pieces)
+
+
+def moves_mm(piece: BlockPiece) -> np.ndarray:
+    """(k, 3) places of the piece on its way, from where it holds the wire: pulled, then lifted clear."""
+    dx, dy = piece.withdrawal
+    pulls = np.linspace(0.0, piece.travel_mm, max(2, math.ceil(piece.travel_mm / STEP_MM) + 1))
+    out = np.column_stack([pulls * dx, pulls * dy, np.zeros(len(pulls))])
+    lifts = np.linspace(0.0, piece.layers[-1].top_mm + 2.0, LIFTS + 1)[1:]
+    up = np.column_stack(
+        [np.full(len(lifts), piece.travel_mm * dx), np.full(len(lifts), piece.travel_mm * dy), lifts]
+    )
+    return np.vstack([out, up])
+
+
+def _withdraw(
+    design: Design, piece: BlockPiece, points: np.ndarray, radius_mm: np.ndarray
+) -> Withdrawal:
+    layers = [
+        Prism(plan=contour_polygon(s.contour), bottom_mm=s.bottom_mm, top_mm=s.top_mm) for s in piece.layers
+    ]
+    moves = moves_mm(piece)
+    # the piece moves one way: the wire, seen from it, the other
+    whole = clearances_mm(points, radius_mm, layers, -moves)
+    rims = clearances_mm(points, radius_mm, layers[1:], -moves)
+    dx, dy = piece.withdrawal
+    spots = _hardware(design)
+    hardware = math.inf
+    for x, y, r in spots:
+        way = shapely.LineString([(x, y), (x - dx * piece.travel_mm, y - dy * piece.travel_mm)])
+        hardware = min(hardware, float(shapely.distance(way, layers[0].plan)) - r)
+    towards = {(0.0, 1.0): "y+", (0.0, -1.0): "y-", (1.0, 0.0): "x+", (-1.0, 0.0): "x-"}[(dx, dy)]
+    seat = piece.layers[0].top_mm + design.radiator.covered_diameter_mm / 2.0
+    return Withdrawal(
+        piece=piece.name,
+        way=f"{piece.travel_mm:g} mm towards {towards}, then straight up",
+        travel_mm=piece.travel_mm,
+        least_wire_mm=float(whole.min()),
+        least_rim_mm=float(rims.min()),
+        least_hardware_mm=hardware,
+        lip_mm=piece.available_mm - piece.travel_mm,
+        carries=len(piece.carries),
+        standoff_off_mm=abs(seat - design.radiator.standoff_mm),
+    )
+
+
+def _hardware(design: Design) -> list[tuple[float, float, float]]:
+    """x, y and radius of what stands on the sheet about the feed."""
+    feed = design.feed
+    if feed.style != "legs":
+        return []
+    out = [(*feed.connector_at, feed.clear_radius_mm)]
+    out += [(h.x_mm, h.y_mm, hardware_radius_mm(h.diameter_mm)) for h in feed.flange_holes]
+    return [(x, y, r + HARDWARE_PLAY_MM / 2.0) for x, y, r in out]

@@ -1,0 +1,92 @@
+"""Tuned answers kept on disk, so that a second build of the same recipe pays nothing.
+
+The key is a hash of everything the answer depends on: every number of the recipe but its name and
+quantity, the aim and the grid, this package's own sources and tables, and the versions of the libraries
+that compute. A changed wire, table or solver therefore never meets an old answer. A file that cannot be
+read, or was cut short, counts as absent.
+"""
+
+from __future__ import annotations
+
+import hashlib
+import json
+import math
+import os
+import sys
+from collections.abc import Mapping
+from functools import cache
+from pathlib import Path
+
+from wavejig.recipe.models import Recipe
+
+LIBRARIES = ("numpy", "scipy", "numba")
+_NOT_PHYSICS = {"name", "quantity"}
+
+
+def cache_folder() -> Path:
+    """Where answers are kept: WAVEJIG_CACHE, else the user's cache folder as the system has it."""
+    asked = os.environ.get("WAVEJIG_CACHE")
+    if asked:
+        return Path(asked)
+    if sys.platform == "win32":
+        base = os.environ.get("LOCALAPPDATA")
+        return Path(base) / "wavejig" / "cache" if base else Path.home() / "AppData/Local/wavejig/cache"
+    if sys.platform == "darwin":
+        return Path.home() / "Library/Caches/wavejig"
+    base = os.environ.get("XDG_CACHE_HOME")
+    return (Path(base) if base else Path.home() / ".cache") / "wavejig"
+
+
+def key(recipe: Recipe, aim: str, grid_mm: float) -> str:
+    """Hash of all that a tuned answer depends on."""
+    asked = recipe.model_dump(mode="json", exclude=_NOT_PHYSICS)
+    told = json.dumps([asked, aim, grid_mm, _program()], sort_keys=True)
+    return hashlib.sha256(told.encode()).hexdigest()[:32]
+
+
+def load(recipe: Recipe, aim: str, grid_mm: float) -> dict[str, float] | None:
+    """The kept values (mm, deg) of this recipe, None when there are none."""
+    try:
+        data = json.loads(_file(key(recipe, aim, grid_mm)).read_text(encoding="utf-8"))
+        values = {str(name): float(value) for name, value in data["values"].items()}
+    except (OSError, ValueError, KeyError, TypeError, AttributeError):
+        return None
+    return values if all(math.isfinite(v) for v in values.values()) else None
+
+
+def save(recipe: Recipe, aim: str, grid_mm: float, values: Mapping[str, float]) -> None:
+    """Keep an answer. A cache that cannot be written is no reason to stop: the next build solves again."""
+    path = _file(key(recipe, aim, grid_mm))
+    beside = path.with_name(f".{path.name}.{os.getpid()}")
+    text = json.dumps({"recipe": recipe.name, "values": dict(values)}) + "\n"
+    try:
+        path.parent.mkdir(parents=True, exist_ok=True)
+        beside.write_text(text, encoding="utf-8")
+        beside.replace(path)
+    except OSError:
+        beside.unlink(missing_ok=True)
+
+
+def _file(name: str) -> Path:
+    return cache_folder() / "tuned" / f"{name}.json"
+
+
+@cache
+def _program() -> str:
+    """Hash of our own sources and tables, and the versions of what computes."""
+    from importlib.metadata import PackageNotFoundError, version
+
+    import wavejig
+
+    digest = hashlib.sha256()
+    root = Path(wavejig.__file__).parent
+    for path in sorted(root.rglob("*")):
+        if path.suffix in (".py", ".toml") and path.is_file():
+            digest.update(str(path.relative_to(root)).encode())
+            digest.update(path.read_bytes())
+    for name in LIBRARIES:
+        try:
+            digest.update(f"{name} {version(name)}".encode())
+        except PackageNotFoundError:
+            digest.update(f"{name} absent".encode())
+    return digest.hexdigest()
