@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import itertools
 import os
 from pathlib import Path
 
@@ -42,10 +43,22 @@ def pytest_sessionfinish(session: pytest.Session) -> None:
         session.exitstatus = pytest.ExitCode.TESTS_FAILED
 
 
+@pytest.fixture(autouse=True)
+def own_cache(tmp_path_factory: pytest.TempPathFactory, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Every test starts without kept answers, and leaves none in the user's own cache."""
+    folder = tmp_path_factory.getbasetemp() / "caches"
+    monkeypatch.setenv("WAVEJIG_CACHE", str(folder / f"{next(_NUMBERS)}"))
+
+
+_NUMBERS = itertools.count()
+
+
 @pytest.fixture(scope="session")
 def saltmarsh(tmp_path_factory: pytest.TempPathFactory) -> Path:
-    """One built pack, for many looks; tests read it and leave it as it is."""
+    """One built pack, tuned and predicted, for many looks; tests read it and leave it as it is."""
     from wavejig.pack import build
 
     recipe = Path(__file__).parents[1] / "recipes" / "saltmarsh-2g4.toml"
-    return build(recipe, tmp_path_factory.mktemp("packs")).folder
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setenv("WAVEJIG_CACHE", str(tmp_path_factory.mktemp("cache")))
+        return build(recipe, tmp_path_factory.mktemp("packs")).folder

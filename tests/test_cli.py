@@ -27,6 +27,8 @@ def test_help_teaches_by_example(capsys: Capture) -> None:
         ["build", "--help"],
         ["new", "--help"],
         ["stock", "--help"],
+        ["match", "--help"],
+        ["tune", "--help"],
     ):
         with pytest.raises(SystemExit) as stop:
             main(arguments)

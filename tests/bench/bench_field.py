@@ -62,7 +62,8 @@ def child_speed(size: int, rounds: int) -> dict[str, float]:
         copy = plain.copy(order="F")
         timed("zgesv", lambda a=copy: zgesv(a, right, overwrite_a=1))
         z = timed("fill", lambda: impedance_matrix(model, elements, prepared.passes, HZ))
-        half = timed("solve, mirrors", lambda a=z.copy().T: solve_by_parity(a, drive, mirrors))
+        copy = z.copy().T
+        half = timed("solve, mirrors", lambda a=copy: solve_by_parity(a, drive, mirrors))
         x = timed("solve", lambda a=z.T: solve_by_parity(a, drive, ()))
         assert np.abs(half - x).max() < 1e-8 * np.abs(x).max()
         response = Response(

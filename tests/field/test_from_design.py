@@ -131,7 +131,7 @@ def test_wires_stand_where_the_design_says(name: str) -> None:
     """Real standoff, real extent: the model's bounds are the centreline's."""
     d = made(name)
     main = next(p for p in plan_radiator(d).pieces if p.role == "main").path
-    low, high = main.bounds()
+    _, high = main.bounds()
     points = np.array([(w.start, w.end) for w in model_from_design(d).wires]).reshape(-1, 3) * 1e3
     swell = 0.1 * d.radiator.bend_radius_mm
     assert points[:, 0].max() == pytest.approx(high[0], abs=swell)
@@ -159,10 +159,22 @@ def test_metals_and_sleeves_come_from_the_recipe() -> None:
 
 @pytest.mark.parametrize("name", ["biquad, legs", "biquad, tube"])
 def test_refining_halves_the_edges(name: str) -> None:
+    """Wires and open sheet; not below a wire's own radius round its landing."""
     d = made(name)
     coarse, fine = model_from_design(d), model_from_design(d, refine=2.0)
     assert len(fine.wires) > 1.6 * len(coarse.wires)
-    assert len(fine.triangles) > 2.2 * len(coarse.triangles)
+
+    def longest(model: Model) -> float:
+        sides = np.roll(model.triangles, -1, axis=1) - model.triangles
+        return float(np.linalg.norm(sides, axis=2).max())
+
+    assert longest(fine) == pytest.approx(longest(coarse) / 2.0, rel=0.15)
+    foot = np.array([*(d.feed.pin_leg if d.feed.style == "legs" else d.feed.tube_at), 0.0]) * 1e-3
+    for model in (coarse, fine):
+        touching = model.triangles[np.any(np.abs(model.triangles - foot).max(axis=2) < 1e-9, axis=1)]
+        radius = min(w.radius_m for w in model.wires if np.abs(np.array(w.start) - foot).max() < 1e-9)
+        assert np.linalg.norm(touching - foot, axis=2).max() < 6.0 * radius
+        assert np.sort(np.linalg.norm(touching - foot, axis=2), axis=1)[:, 1].min() > radius
 
 
 def test_the_same_design_gives_the_same_model() -> None:

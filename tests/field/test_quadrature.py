@@ -88,7 +88,7 @@ def test_ring_potential(rho: float, z: float) -> None:
 def test_potential_of_a_triangle(x: float, y: float, z: float) -> None:
     """Integrals of 1/R and (r' - r)/R in closed form, against a fine rule on a divided triangle."""
     v = np.array([(0.0, 0.0, 0.0), (1.0, 0.1, 0.0), (0.3, 0.8, 0.0)])
-    shapes, _ = _shapes(np.array([1]), np.zeros(1), np.zeros(1), v[None], v.mean(axis=0)[None])
+    shapes, _ = _shapes(np.array([1]), np.zeros(1), v[None], v.mean(axis=0)[None])
     got = _potential(x, y, z, v, shapes.normal[0], shapes.along[0], shapes.outward[0])
     nodes, weights = unit_rule(60)
     u, t = (g.ravel() for g in np.meshgrid(nodes, nodes, indexing="ij"))

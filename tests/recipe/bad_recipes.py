@@ -114,6 +114,7 @@ BAD: list[Row] = [
     ("a table for a value", below("radiator.wire", "d = 1").replace('wire = "1.8 mm"\n', ""), 2, 9, "radiator.wire", ("diameter",)),
     ("a value for a table", GOOD.replace('[reflector]\nthickness = "0.8 mm"\n', "").replace("quantity = 2", 'reflector = "brass"'), 2, 2, "reflector", ("table",)),
     ("bed of two sizes", below("printer", 'bed = ["220 mm", "220 mm"]'), 2, 11, "printer.bed", ("three sizes",)),
+    ("a fixture style that is none", below("fixture", 'style = "stopblock"'), 2, 11, "fixture.style", ("stop-block",)),
     ("hole without a place", GOOD + '[[reflector.holes]]\nx = "1 mm"\ndiameter = "3 mm"\n', 2, 10, "reflector.holes[0].y", ("must be given",)),
     ("corner of one number", GOOD.replace('"biquad"', '"path"').replace("[reflector]", 'corners = [["0 mm"], ["1 mm", "2 mm"], ["3 mm", "3 mm"]]\n[reflector]'), 2, 8, "radiator.corners[0]", ("[x, y]",)),
     # -- keys that contradict

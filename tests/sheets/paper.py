@@ -38,13 +38,13 @@ def printed_dimensions(path: Path) -> list[Printed]:
         (text,) = [t.plain_text() for t in block.query("TEXT")]
         found = _NUMBER.search(text)
         assert found, text
-        kind = {0: "linear", 3: "diameter", 4: "radius", 5: "angle"}[d.dimtype]
+        kind = {0: "linear", 3: "diameter", 4: "radius", 2: "angle"}[d.dimtype]
         if kind == "linear":
             a, b = d.dxf.defpoint2, d.dxf.defpoint3
             turn = d.dxf.angle % 180.0
             kind = "x" if turn < 1e-6 else "y" if abs(turn - 90.0) < 1e-6 else "slanted"
         elif kind == "angle":
-            a, b = d.dxf.defpoint4, d.dxf.defpoint
+            a, b = d.dxf.defpoint4, d.dxf.defpoint5
         else:
             a, b = d.dxf.defpoint, d.dxf.defpoint4
         detail = abs(d.override().get("dimlfac", 1.0) - 1.0) > 1e-9

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from typing import Any
 
 import numpy as np
@@ -15,6 +16,7 @@ from wavejig.sheets.process import assembly_steps, screw_for
 from wavejig.sheets.station import distance_m, eirp_w, exposure, public_limit_w_per_m2, wind
 from wavejig.sheets.template import OVERLAP_MM, templates
 from wavejig.shop import Inspection, inspect
+from wavejig.shop.bench import joint_heat_w
 
 
 def steps_of(made: Inspection) -> tuple[str, ...]:
@@ -103,7 +105,8 @@ def test_legs_are_soldered_in_the_right_order() -> None:
     """Plug on before heat, big sheet before the pin, all cold before the spacer leaves, flux off before the meter."""
     steps = steps_of(inspected("saltmarsh-2g4"))
     order = [
-        "Trial bend", "Lay the radiator in the check nest", "Fit the connector", "Screw a mating plug", "Set spacer-a and spacer-b",
+        "Trial bend", "Lay the radiator in the check nest", "Fit the connector", "Screw a mating plug",
+        "Set spacer-a and spacer-b",
         "Lower the radiator", "Clip a heat sink", "Solder the ground leg in its hole in the sheet FIRST",
         "Solder the pin leg to the pin", "take the spacer out", "Wash the flux off", "it reads as a SHORT",
         "Measure the match", "Seal:",
@@ -116,6 +119,22 @@ def test_the_lug_is_soldered_before_the_screw_takes_the_heat_away() -> None:
     steps = steps_of(inspect(design(reflector={"material": "aluminium"})))
     assert place(steps, "into its tinned lug now") < place(steps, "Fit the connector")
     assert not [s for s in steps if "in its hole in the sheet" in s]
+
+
+def test_no_solder_in_a_nest_without_windows() -> None:
+    made = inspected("saltmarsh-2g4")
+    assert made.fixture is not None
+    for window in (True, False):
+        steps = " ".join(steps_of(replace(made, fixture=replace(made.fixture, has_window=window))))
+        assert ("With the radiator in the nest, solder" in steps) is window
+        assert ("Do NOT solder in the check nest" in steps) is not window
+
+
+def test_heat_is_the_disc_s() -> None:
+    """2 pi k t dT / ln(R / r) for 0.8 mm brass (120 W/mK), foot hole 2.1 mm and 1 mm rim, base 123 mm: 35 W."""
+    expected = 2.0 * math.pi * 120.0 * 0.8e-3 * 200.0 / math.log(61.5 / 2.05)
+    assert joint_heat_w(inspected("saltmarsh-2g4").design) == pytest.approx(expected, rel=1e-6)
+    assert any(f"some {expected:.0f} W" in s for s in steps_of(inspected("saltmarsh-2g4")))
 
 
 def test_the_tube_goes_to_the_sheet_first() -> None:

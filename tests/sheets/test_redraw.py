@@ -9,8 +9,11 @@ from pathlib import Path
 import pytest
 from shapely import Polygon
 
+from tests.designs import design
 from tests.sheets.conftest import DEMOS, inspected, pattern_of
 from tests.sheets.paper import Printed, printed_dimensions, printed_table, rounded_outline
+from wavejig.sheets.sheetfiles import write_sheets
+from wavejig.shop import Inspection, inspect
 
 NEAR_MM = 0.05
 
@@ -89,12 +92,17 @@ class Redrawn:
         assert self.lip_x is not None and self.lip_y is not None
         x, y, a, b = self.wide / 2.0, self.high / 2.0, self.lip_x / 2.0, self.lip_y / 2.0
         ear_x, ear_y = self.bends["x+"] + past_x, self.bends["y+"] + past_y
-        reach_x = next(v for v in self._sizes("x") if v not in (self.wide, self.lip_x)) / 2.0
-        reach_y = next(v for v in self._sizes("y") if v not in (self.high, self.lip_y)) / 2.0
+        foot_x, reach_x = self._ear("x", self.wide, self.lip_x)
+        foot_y, reach_y = self._ear("y", self.high, self.lip_y)
         return [
-            (x, reach_y, tip), (ear_x, reach_y, outer), (ear_x, b, hollow), (a, b, hollow), (a, ear_y, hollow),
-            (reach_x, ear_y, outer), (reach_x, y, tip),
+            (x, reach_y, tip), (ear_x, foot_y, outer), (ear_x, b, hollow), (a, b, hollow), (a, ear_y, hollow),
+            (foot_x, ear_y, outer), (reach_x, y, tip),
         ]  # fmt: skip
+
+    def _ear(self, axis: str, whole: float, lip: float) -> tuple[float, float]:
+        """How far an ear reaches from the middle, where it begins and at its tip; upright ears have one size."""
+        sizes = sorted(v / 2.0 for v in self._sizes(axis) if v not in (whole, lip))
+        return sizes[0], sizes[-1]
 
 
 def all_round(quarter: list[tuple[float, float, float]]) -> list[tuple[float, float, float]]:
@@ -106,10 +114,24 @@ def all_round(quarter: list[tuple[float, float, float]]) -> list[tuple[float, fl
     return out
 
 
+LEANING = {"lips": "four", "corners": "mitre", "lip_angle": "60 deg"}  # ears that widen towards their tips
+
+
+def test_leaning_mitred_lips_come_out_too(tmp_path: Path) -> None:
+    made = inspect(design("quad", reflector=LEANING, sheet={"paper": "Letter", "projection": "third"}))
+    write_sheets(made, pattern_of(made), tmp_path)
+    check_redrawn(tmp_path / "drawings" / "blank.dxf", made)
+
+
 @pytest.mark.parametrize("name", DEMOS)
 def test_the_paper_alone_gives_the_blank_again(name: str, written: Callable[[str], Path]) -> None:
-    drawn = Redrawn(written(name) / "drawings" / "blank.dxf")
-    tray = inspected(name).tray
+    check_redrawn(written(name) / "drawings" / "blank.dxf", inspected(name))
+
+
+def check_redrawn(path: Path, made: Inspection) -> None:
+    """The drawing's numbers against the blank of the design."""
+    drawn = Redrawn(path)
+    tray = made.tray
     assert tray is not None
     mitred = tray.corner_style == "mitre" and any(lip.left.ear_mm for lip in tray.lips)
     outline = rounded_outline(all_round(drawn.mitred_corners() if mitred else drawn.corners()))
@@ -119,7 +141,7 @@ def test_the_paper_alone_gives_the_blank_again(name: str, written: Callable[[str
     assert apart(redrawn, expected) < NEAR_MM
     assert apart(expected, redrawn) < NEAR_MM
     # bends
-    pattern = pattern_of(inspected(name))
+    pattern = pattern_of(made)
     assert {b.edge for b in pattern.bends} == set(drawn.bends)
     for bend in pattern.bends:
         k = "xy".index(bend.edge[0])

@@ -13,7 +13,23 @@ from wavejig.stock import connectors, hardware, processes, sheet
 from wavejig.stock.errors import StockError
 from wavejig.stock.tables import UnknownTableError, parse_table, table, table_names
 
-UNITS = {"", "mm", "in", "mm2", "ohm/km", "GPa", "MPa", "MS/m", "g/cm3", "V", "deg", "arcmin", "um", "C"}
+UNITS = {
+    "",
+    "mm",
+    "in",
+    "mm2",
+    "ohm/km",
+    "GPa",
+    "MPa",
+    "MS/m",
+    "g/cm3",
+    "V",
+    "deg",
+    "arcmin",
+    "um",
+    "C",
+    "W/mK",
+}
 
 GOOD = """
 title = "t"

@@ -14,6 +14,7 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    announce,
     input_error,
     say,
     stop,
@@ -29,7 +30,8 @@ if TYPE_CHECKING:
 
 def run(args: argparse.Namespace) -> int:
     """Exit code: 0 all pass; 1 an article fails; 2 a recipe, sweep or reading that cannot be used."""
-    from wavejig.pack import inspect_recipe
+    from wavejig.pack import inspect_recipe, settle_recipe
+    from wavejig.progress import Meter
     from wavejig.recipe import RecipeError
 
     refused = _refuse_names(args)
@@ -45,13 +47,18 @@ def run(args: argparse.Namespace) -> int:
         return _end(args, WRONG_INPUT, unreadable(path, err, args.json))
     if inspection.radiator is None or inspection.tray is None:
         return stop(CANNOT_BE_MADE, f"{path}: cannot be made, so nothing is predicted; see `wavejig check`")
+    sweeps, bad = _sweeps(args, inspection)
+    if not sweeps:
+        return _end(args, WRONG_INPUT, {"recipe": str(path), "refused": bad})
+    meter = Meter(path.name, sys.stderr, quiet=args.json)
+    try:  # what is left free was worked out when the article was built: the same again, from the cache
+        recipe_file, inspection, _ = settle_recipe(path, meter.step, announce)
+    finally:
+        meter.end()
     try:
         readings = _readings(args, recipe_file, inspection)
     except ValueError as err:
         return stop(WRONG_INPUT, f"measured: {err}")
-    sweeps, bad = _sweeps(args, inspection)
-    if not sweeps:
-        return _end(args, WRONG_INPUT, {"recipe": str(path), "refused": bad})
     return _measure(args, recipe_file, inspection, sweeps, readings, bad)
 
 

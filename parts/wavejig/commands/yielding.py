@@ -14,6 +14,7 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    announce,
     input_error,
     say,
     stop,
@@ -53,16 +54,19 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int, dict[str, Any]]:
-    from wavejig.pack import inspect_recipe
+    from wavejig.pack import settle_recipe
     from wavejig.progress import Meter
     from wavejig.recipe import RecipeError
 
+    meter = Meter(path.name, sys.stderr, quiet=args.json)
     try:
-        recipe_file, inspection = inspect_recipe(path)
+        recipe_file, inspection, _ = settle_recipe(path, meter.step, announce)
     except RecipeError as err:
         return WRONG_INPUT, input_error(path, err, args.json)
     except OSError as err:
         return WRONG_INPUT, unreadable(path, err, args.json)
+    finally:
+        meter.end()
     if inspection.radiator is None or inspection.tray is None:
         return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
     from wavejig.field.errors import ModelError
@@ -72,7 +76,6 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
     from wavejig.tuning.yields import find_yield, yield_data
     from wavejig.tuning.yieldtext import yield_text
 
-    meter = Meter(path.name, sys.stderr, quiet=args.json)
     meter.step("meshing")
     design = inspection.design
     try:

@@ -210,6 +210,7 @@ class FoldingDesign:
 
     smallest_flange_mm: float
     tooling_radius_mm: float
+    longest_bend_mm: float
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -36,6 +36,7 @@ from wavejig.stock import connectors, metals, processes, sheet, wire
 from wavejig.stock.errors import StockError
 
 T = TypeVar("T")
+LONGEST_BEND_MM = 1000.0  # of small folding machines; common practice, no source
 POST_SCREW = "M3"  # of spacers that stay; common practice, no source
 
 
@@ -252,6 +253,7 @@ def _folding(recipe: Recipe, stock: _Stock) -> FoldingDesign:
     return FoldingDesign(
         smallest_flange_mm=flange,
         tooling_radius_mm=radius if f.tooling_radius == "auto" else f.tooling_radius,
+        longest_bend_mm=LONGEST_BEND_MM if f.longest_bend == "auto" else f.longest_bend,
     )
 
 

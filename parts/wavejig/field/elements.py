@@ -137,7 +137,7 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     )
     size = np.linalg.norm(corners - centre[:, None], axis=2)
     size = np.where(kind == SEGMENT, size[:, 0], size.max(axis=1))
-    shapes, weights = _shapes(kind, share, radius, corners, centre)
+    shapes, weights = _shapes(kind, share, corners, centre)
     charges = np.zeros((n, 3))
     charges[kind == SEGMENT] = (-1.0, 1.0, 0.0)
     charges[kind == TRIANGLE] = 1.0
@@ -158,7 +158,7 @@ def make_elements(model: Model, unknowns: Unknowns) -> Elements:
     )
 
 
-def _shapes(kind: Index, share: Array, foot: Array, corners: Array, centre: Array) -> tuple[Shapes, Array]:
+def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[Shapes, Array]:
     n = len(kind)
     points = np.zeros((n, 3, 3))
     moments = np.zeros((n, 3, 3, 3))
@@ -193,7 +193,7 @@ def _shapes(kind: Index, share: Array, foot: Array, corners: Array, centre: Arra
 
     fans = kind == FAN
     if fans.any():
-        moments[fans, 0] = _fan_moments(bary, corners[fans], share[fans], foot[fans])
+        moments[fans, 0] = _fan_moments(bary, corners[fans], share[fans])
     return (
         Shapes(
             corners=corners,
@@ -209,25 +209,20 @@ def _shapes(kind: Index, share: Array, foot: Array, corners: Array, centre: Arra
     )
 
 
-def _fan_moments(bary: Array, v: Array, share: Array, foot: Array) -> Array:
-    """Integral of the fan current times each point's linear cardinal function, (fans, 3 points, 3)."""
+def _fan_moments(bary: Array, v: Array, share: Array) -> Array:
+    """Integral of the fan current times each point's linear cardinal function, (fans, 3 points, 3).
+
+    From the axis on, as the charges have it: what the foot covers (fan_start) has an inductance to be left
+    out, but its moment carries the current from the wire to the sheet and radiates.
+    """
     nodes, w = unit_rule(4)
-    inverse = np.linalg.inv(bary)
-    e = v[:, 1:2] + nodes[:, None] * (v[:, 2:3] - v[:, 1:2]) - v[:, :1]
-    inside = fan_start(foot[:, None], np.linalg.norm(e, axis=2))
-    out = np.zeros((len(v), 3, 3))
-    for g, t in enumerate(nodes):
-        # the spreading part from the centre on, the carrying part from the wire's surface on
-        for low, high, carried in (
-            (0.0 * inside[:, g], inside[:, g], 0.0),
-            (inside[:, g], 1.0 + 0.0 * foot, 1.0),
-        ):
-            for x, wx in zip(nodes, w, strict=True):
-                u = low + (high - low) * x
-                at = np.stack([1.0 - u, u * (1.0 - t), u * t], axis=1)
-                k = share * w[g] * wx * (high - low) * (carried - u * u)
-                out += (k[:, None] * (at @ inverse))[:, :, None] * e[:, g][:, None]
-    return out
+    u, t = (g.ravel() for g in np.meshgrid(nodes, nodes, indexing="ij"))
+    weight = (w[:, None] * w[None, :]).ravel() * (1.0 - u**2)
+    # barycentric coordinates of (u, t), and in terms of the three points
+    at = np.stack([1.0 - u, u * (1.0 - t), u * t], axis=1)
+    cardinal = at @ np.linalg.inv(bary)
+    e = np.einsum("gc,fck->fgk", np.stack([-np.ones_like(t), 1.0 - t, t], axis=1), v)
+    return np.asarray(np.einsum("g,gp,fgk,f->fpk", weight, cardinal, e, share))
 
 
 def fan_start(foot_m: Array, reach_m: Array) -> Array:

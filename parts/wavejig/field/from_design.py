@@ -33,14 +33,16 @@ Array = NDArray[np.float64]
 # what halving everything changes.
 WIRE_STEP = 1.0 / 28.0
 SHEET_STEP = 1.0 / 9.0
-LANDING_RADII = 2.2  # cell side at a landing wire, in its radii
+# Cell side at a landing wire, in its radii, however fine the rest: cells inside the wire would carry current
+# where there is none, and give it an inductance it has not.
+LANDING_RADII = 2.2
 COPPER_MS_PER_M = 58.0  # IEC 60028 (100 % IACS), from memory
 _MM = 1e-3
 _SAME_MM = 0.01
 
 
 def model_from_design(design: Design, refine: float = 1.0, plan: MeshPlan | None = None) -> Model:
-    """The model of a design. refine: 2 halves every edge.
+    """The model of a design. refine: 2 halves every edge (but for the cells round a landing wire).
 
     plan: a fresh one is filled; one that has been filled meshes this neighbour of its design alike.
     """
@@ -54,7 +56,7 @@ def model_from_design(design: Design, refine: float = 1.0, plan: MeshPlan | None
         tray,
         [(float(p[0]), float(p[1])) for p in wires.landings],
         SHEET_STEP * wavelength / refine,
-        LANDING_RADII * wires.landing_radius_mm / refine,
+        LANDING_RADII * wires.landing_radius_mm,
         plan,
     )
     plan.close()

@@ -11,6 +11,7 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from wavejig.files.bending_json import bending_data
 from wavejig.files.design_json import check_design_json, design_data, write_design_json
 from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
 from wavejig.files.dxfcheck import check_dxf
@@ -25,6 +26,9 @@ from wavejig.files.stepcheck import check_step
 from wavejig.files.stl import check_stl, write_stl
 from wavejig.files.tables import check_bend_table, write_bend_table
 from wavejig.files.threemf import check_3mf, write_3mf
+from wavejig.fixture.bending.order import plan_order
+from wavejig.fixture.bending.strip import steps_svg
+from wavejig.fixture.bending.tolerance import tolerance
 from wavejig.fixture.liftout import lift_outs
 from wavejig.fixture.nestcut import nest_cut
 from wavejig.fixture.solid import printables as fixture_printables
@@ -177,6 +181,11 @@ class PackFiles:
         cut = nest_cut(self.design, self.fixture.nest)
         layers = Drawing(cut=cut.cut, marks=cut.marks).layers()
         self._dxf(layers, "fixture/check-nest-cut.dxf", "fixture", blanks=cut.parts)
+        self.bend_order = plan_order(self.design, self.radiator, self.fixture)
+        path = self._path("fixture/steps.svg")
+        write_steps(steps_svg(self.design, self.radiator, self.fixture, self.bend_order), path)
+        check_steps(path, self.bend_order)
+        self._note("fixture/steps.svg", "svg", "fixture", "mm")
 
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
@@ -220,6 +229,13 @@ class PackFiles:
             self.spacer,
             self.inspection.findings,
             made,
+        )
+        data["fixture"] |= bending_data(
+            self.design,
+            self.radiator,
+            self.fixture,
+            self.bend_order,
+            tolerance(self.design, self.radiator, self.fixture),
         )
         path = self._path("design.json")
         write_design_json(data, path)

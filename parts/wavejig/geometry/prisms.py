@@ -70,6 +70,10 @@ def clearances_mm(
         last: tuple[float, float] | None = None
         across, depth = np.zeros(0), np.zeros(0)
         for k, (dx, dy, dz) in enumerate(moves):
+            z = points[:, 2] + dz
+            up = np.maximum(np.maximum(prism.bottom_mm - z, z - prism.top_mm), 0.0)
+            if float((up - radius_mm).min()) > out[k]:
+                continue  # wholly above or below, by more than is known already
             if last != (dx, dy):
                 spots = shapely.points(points[:, 0] + dx, points[:, 1] + dy)
                 across = shapely.distance(spots, prism.plan)
@@ -77,8 +81,6 @@ def clearances_mm(
                 depth = np.zeros(len(points))
                 depth[inside] = shapely.distance(spots[inside], edge)
                 last = (dx, dy)
-            z = points[:, 2] + dz
-            up = np.maximum(np.maximum(prism.bottom_mm - z, z - prism.top_mm), 0.0)
             sunk = np.minimum(depth, np.minimum(z - prism.bottom_mm, prism.top_mm - z))
             air = np.where((across <= 0.0) & (up <= 0.0), -sunk, np.hypot(across, up)) - radius_mm
             out[k] = min(out[k], float(air.min()))

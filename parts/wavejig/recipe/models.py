@@ -385,6 +385,7 @@ class Folding(_Table):
         AUTO, description="shortest lip it can fold; auto: 4 x thickness + radius"
     )
     tooling_radius: AutoSize = Field(AUTO, description="inside radius its tool gives; auto: by metal")
+    longest_bend: AutoSize = Field(AUTO, description="longest bend its tool makes; auto: 1000 mm")
 
 
 class Tolerances(_Table):

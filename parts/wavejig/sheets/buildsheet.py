@@ -462,14 +462,15 @@ def _mounting(sheet: BuildSheet) -> Iterator[Any]:
     assert tray is not None
     yield CondPageBreak(50 * mm)
     yield heading("Mounting")
-    lobes = "side by side" if design.polarisation == "vertical" else "one above the other"
+    upright = design.polarisation == "vertical"
+    lobes = ""
+    if design.radiator.family != "quad":
+        lobes = f" and the lobes stand {'side by side' if upright else 'one above the other'}"
     yield lead(
         "Which way up:",
         f"for {design.polarisation} polarisation edge {design.reflector.up} (marked THIS EDGE UP) hangs "
-        "uppermost; the feed "
-        f"gap then lies {'upright' if design.polarisation == 'vertical' else 'level'} and the lobes "
-        f"stand {lobes}. Both ends "
-        "of the link must match. Turned a quarter, the link loses 20 dB and more.",
+        f"uppermost; the feed gap then lies {'upright' if upright else 'level'}{lobes}. Both ends of the link must "
+        "match: turned a quarter, the link loses 20 dB and more.",
     )
     holes = [h for h in tray.holes if h.purpose == "mounting"]
     if holes:

@@ -12,6 +12,7 @@ Source of the group codes: DXF Reference, Autodesk 2012 (from memory).
 from __future__ import annotations
 
 import io
+import math
 from collections.abc import Iterable
 from pathlib import Path
 from typing import Any
@@ -23,8 +24,18 @@ from wavejig.files.dxf import fixed_metadata
 from wavejig.files.errors import FileCheckError
 from wavejig.files.names import clean_name
 from wavejig.sheets.frame import everything
-from wavejig.sheets.layout import DimGroup, Drawn, Head, Stroke, Word
-from wavejig.sheets.model import Pen, Pt, Sheet
+from wavejig.sheets.layout import (
+    ARROW_MM,
+    GAP_MM,
+    OVER_MM,
+    TEXT_OFF_MM,
+    DimGroup,
+    Drawn,
+    Head,
+    Stroke,
+    Word,
+)
+from wavejig.sheets.model import DIM_TEXT_MM, Pen, Pt, Sheet
 
 # layer name, DXF colour index, linetype of each pen; colours are taste, no source
 _LAYERS: dict[Pen, tuple[str, int, str]] = {
@@ -34,7 +45,7 @@ _LAYERS: dict[Pen, tuple[str, int, str]] = {
     "grey": ("thin-grey", 8, "CONTINUOUS"),
     "centre": ("centre-lines", 1, "CENTER"),
     "hidden": ("hidden", 8, "HIDDEN"),
-    "bend": ("bend-lines", 5, "PHANTOM"),
+    "bend": ("bend-lines", 5, "DIVIDE"),
     "mark": ("marks", 3, "CONTINUOUS"),
     "frame": ("frame", 7, "CONTINUOUS"),
 }
@@ -42,10 +53,15 @@ _LAYERS: dict[Pen, tuple[str, int, str]] = {
 _DASHES = {
     "CENTER": (9.0, 6.0, -1.0, 1.0, -1.0),
     "HIDDEN": (3.0, 2.0, -1.0),
-    "PHANTOM": (10.0, 5.0, -1.0, 1.0, -1.0, 1.0, -1.0),
+    "DIVIDE": (10.0, 5.0, -1.0, 1.0, -1.0, 1.0, -1.0),
 }
 _TEXT_LAYER, _DIM_LAYER = "lettering", "dimensions"
-_STYLE = "LETTERING"
+_STYLE, _DIM_STYLE = "LETTERING", "WAVEJIG"
+# paper mm; text above the line and along it, two decimals without trailing zeros
+_DIM_SETTINGS: dict[str, float | int] = {
+    "DIMTXT": DIM_TEXT_MM, "DIMASZ": ARROW_MM, "DIMEXO": GAP_MM, "DIMEXE": OVER_MM, "DIMGAP": TEXT_OFF_MM,
+    "DIMTAD": 1, "DIMDEC": 2, "DIMZIN": 8, "DIMTIH": 0, "DIMTOH": 0,
+}  # fmt: skip
 _PLACES = 6
 
 
@@ -104,18 +120,13 @@ class _Writer:
         document.layers.add(_TEXT_LAYER, color=7)
         document.layers.add(_DIM_LAYER, color=4)
         document.styles.add(_STYLE, font="txt.shx")
-        style = document.dimstyles.new("WAVEJIG")
-        style.dxf.dimscale = self.factor
-        style.dxf.dimtxt = 2.5
-        style.dxf.dimasz = 2.5
-        style.dxf.dimexo = 0.8
-        style.dxf.dimexe = 1.5
-        style.dxf.dimtad = 1
-        style.dxf.dimdec = 2
-        style.dxf.dimzin = 8
-        style.dxf.dimtih = 0
-        style.dxf.dimtoh = 0
+        style = document.dimstyles.new(_DIM_STYLE)
         style.dxf.dimtxsty = _STYLE
+        # some viewers draw dimensions anew, and by the header's settings instead of the style's
+        document.header["$DIMSTYLE"] = _DIM_STYLE
+        for name, value in {"DIMSCALE": self.factor, **_DIM_SETTINGS}.items():
+            style.set_dxf_attrib(name.lower(), value)
+            document.header[f"${name}"] = value
         return document
 
     def finish(self, document: DxfDocument, sheet: Sheet) -> None:
@@ -196,13 +207,15 @@ class _Writer:
                     self._word(block, part, "0")
         points = [self.put(p) for p in group.points]
         word = next(p for p in group.parts if isinstance(p, Word))
+        turn, half = math.radians(word.rotation_deg), word.height_mm / 2.0
+        middle = (word.at[0] - half * math.sin(turn), word.at[1] + half * math.cos(turn))
         attributes: dict[str, Any] = {
             "layer": _DIM_LAYER,
-            "dimstyle": "WAVEJIG",
+            "dimstyle": _DIM_STYLE,
             "geometry": block.name,
             "text": coded(group.text),
-            "text_midpoint": self.put(word.at),
-            "attachment_point": 8,  # bottom centre
+            "text_midpoint": self.put(middle),
+            "attachment_point": 5,  # by its middle
         }
         # 32: the block is this dimension's alone; 128: the text stands where the user put it
         match group.kind:
@@ -216,9 +229,9 @@ class _Writer:
                 attributes |= {"dimtype": 4 | 32 | 128, "defpoint": points[0], "defpoint4": points[1]}
             case "angle":
                 vertex, first, second, arc = points
-                # three-point angular: the vertex and one point on each side
-                attributes |= {"dimtype": 5 | 32 | 128, "defpoint": arc, "defpoint2": first, "defpoint3": second,
-                               "defpoint4": vertex}  # fmt: skip
+                # between two lines: some viewers do not know the kind with three points
+                attributes |= {"dimtype": 2 | 32 | 128, "defpoint2": vertex, "defpoint3": first,
+                               "defpoint4": vertex, "defpoint": second, "defpoint5": arc}  # fmt: skip
         dimension = space.new_entity("DIMENSION", attributes)
         own = group.factor / self.factor
         if group.kind != "angle" and abs(own - 1.0) > 1e-9:

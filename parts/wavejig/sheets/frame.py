@@ -49,15 +49,12 @@ def everything(sheet: Sheet) -> Iterator[Drawn]:
     for table in sheet.tables:
         yield from table_marks(table)
     x, y = sheet.notes_at
+    beside_mm = wide - BORDER_MM - BLOCK_WIDE_MM - 2.0 - x  # notes stand left of the title block
     for note in sheet.notes:
-        for line in wrapped(note, max(wide - BORDER_MM - 2.0 - x, 40.0) if x > wide / 2 else BLOCK_LEFT_MM):
+        for line in wrapped(note, beside_mm):
             yield Word(at=(x, y), text=line, height_mm=SMALL_TEXT_MM, anchor="left")
-            y -= SMALL_TEXT_MM * 1.7
-        y -= 0.8
-
-
-BLOCK_LEFT_MM = 96.0
-"""Width for notes that stand left of the title block."""
+            y -= SMALL_TEXT_MM * 1.5
+        y -= 0.5
 
 
 def wrapped(text: str, wide_mm: float, height_mm: float = SMALL_TEXT_MM) -> Iterator[str]:

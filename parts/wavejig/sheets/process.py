@@ -13,6 +13,7 @@ from wavejig.design.model import Design
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
 from wavejig.sheets.model import number
+from wavejig.shop.bench import joint_heat_w
 from wavejig.spacer.model import Spacer
 from wavejig.stock.hardware import screws
 from wavejig.stock.processes import plastic
@@ -35,7 +36,7 @@ def assembly_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: 
             *_wire(design, radiator, fixture),
             *_reflector(design),
             *(
-                _legs(design, radiator, spacer)
+                _legs(design, radiator, spacer, fixture)
                 if design.feed.style == "legs"
                 else _tube(design, radiator, spacer)
             ),
@@ -99,14 +100,13 @@ def _reflector(design: Design) -> Iterator[str]:
 
 
 def _iron(design: Design) -> str:
-    """How the sheet draws heat, in words, from its size."""
+    """How the sheet draws heat, in words, from its size and metal."""
     r = design.reflector
-    area_cm2 = r.base_x_mm * r.base_y_mm / 100.0
-    mass_g = area_cm2 * r.thickness_mm / 10.0 * r.metal.density_g_per_cm3
+    watts = joint_heat_w(design)
+    drawn = f", some {watts:.0f} W" if watts is not None else ""
     return (
-        f"the sheet ({area_cm2:.0f} cm\u00b2 of {number(r.thickness_mm, 2)} mm {r.metal.name}, "
-        f"{mass_g:.0f} g) draws the "
-        "heat: a strong iron with a broad bit, or warm the sheet from below first"
+        f"the sheet ({number(r.base_x_mm, 0)} \u00d7 {number(r.base_y_mm, 0)} mm of {number(r.thickness_mm)} mm "
+        f"{r.metal.name}) draws the heat{drawn}: a strong iron with a broad bit, or warm the sheet from below first"
     )
 
 
@@ -147,7 +147,7 @@ def _clip(spacer: Spacer) -> str:
     )
 
 
-def _legs(design: Design, radiator: Radiator, spacer: Spacer) -> Iterator[str]:
+def _legs(design: Design, radiator: Radiator, spacer: Spacer, fixture: Fixture) -> Iterator[str]:
     feed = design.feed
     c = feed.connector
     assert c is not None
@@ -186,26 +186,31 @@ def _legs(design: Design, radiator: Radiator, spacer: Spacer) -> Iterator[str]:
     laps = [
         j for j in radiator.joints if j.kind == "lap" and "main" in j.between and "connector" not in j.between
     ]
+    if laps and not fixture.has_window:
+        yield (
+            "Do NOT solder in the check nest: its plastic is too near the joints. Hold the radiator in a vice "
+            "between wooden jaws for the laps that follow, and check it in the nest again when it is cold."
+        )
+    where = "With the radiator in the nest, solder" if fixture.has_window else "Solder"
     for joint in laps:
         names = " and ".join(dict.fromkeys(NAMES[b] for b in joint.between))
         if joint.between[0] == joint.between[1]:
+            yield f"{where} the lap of the {names}: {joint.note}, {number(joint.length_mm, 1)} mm long."
+        elif not (feed.ground == "lug" and "ground-leg" in joint.between):
             yield (
-                f"With the radiator in the nest, solder the lap of the {names}: {joint.note}, "
-                f"{number(joint.length_mm, 1)} mm long."
-            )
-        elif feed.ground == "lug" and "ground-leg" in joint.between:
-            continue
-        else:
-            yield (
-                f"Solder {names} together: {joint.note}, lap {number(joint.length_mm, 1)} mm. Hold the "
-                "leg with its foot in "
-                "place or in the nest, so that it points where it will land."
+                f"{where} {names} together: {joint.note}, lap {number(joint.length_mm, 1)} mm. The leg must "
+                "point to where it will land."
             )
     yield _spacer_on(design, spacer)
     pin = "into the pin's solder cup" if feed.pin_joint == "bore" else "beside the pin"
     yield (
-        f"Lower the radiator onto the spacer: the pin leg goes {pin}, the ground leg to its "
-        "place. +y (the pin's side) is up in the drawings."
+        f"Lower the radiator onto the spacer: the pin leg goes {pin}, "
+        + (
+            "the ground leg's arm comes under its side"
+            if feed.ground == "lug"
+            else "the ground leg to its landing"
+        )
+        + ". The pin's side is y+, up in the drawings."
     )
     yield _clip(spacer)
     if feed.ground == "sheet":

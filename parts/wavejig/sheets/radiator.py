@@ -284,7 +284,11 @@ def _end_view(design: Design, radiator: Radiator, left: float, top: float, botto
     near = _SHEET_PAST_MM + 4.0
     for piece in radiator.pieces:
         for run in _near_feed(
-            piece.path.sample(chord_error_mm=0.01, step_mm=0.5), near, (y_low, y_high), deep
+            piece.path.sample(chord_error_mm=0.01, step_mm=0.5),
+            feed.terminal_pin[0],
+            near,
+            (y_low, y_high),
+            deep,
         ):
             items += [
                 Shape(contour=o, holes=h, pen="wire")
@@ -340,10 +344,12 @@ def _end_view(design: Design, radiator: Radiator, left: float, top: float, botto
 
 
 def _near_feed(
-    points: np.ndarray, near: float, between: tuple[float, float], lowest: float
+    points: np.ndarray, feed_x: float, near: float, between: tuple[float, float], lowest: float
 ) -> list[np.ndarray]:
-    """Stretches of a path within `near` of the feed in x, between two y and not below `lowest`."""
-    keep = (np.abs(points[:, 0]) <= near) & (points[:, 1] >= between[0]) & (points[:, 1] <= between[1])
+    """Stretches of a path within `near` of `feed_x` in x, between two y and not below `lowest`."""
+    keep = (
+        (np.abs(points[:, 0] - feed_x) <= near) & (points[:, 1] >= between[0]) & (points[:, 1] <= between[1])
+    )
     keep &= points[:, 2] >= lowest
     runs: list[np.ndarray] = []
     start = None

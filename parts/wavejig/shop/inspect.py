@@ -14,6 +14,8 @@ from wavejig.radiator.plan import plan as plan_radiator
 from wavejig.reflector.model import Tray, TrayError
 from wavejig.reflector.tray import corner_practice
 from wavejig.reflector.tray import plan as plan_tray
+from wavejig.shop.bench import bench_findings
+from wavejig.shop.electrical import electrical_findings
 from wavejig.shop.feed import conflict_findings, feed_findings, value_findings
 from wavejig.shop.finding import ERROR, Finding
 from wavejig.shop.outdoors import outdoor_findings
@@ -66,6 +68,8 @@ def inspect(design: Design) -> Inspection:
     found += feed_findings(design)
     found += value_findings(design)
     found += outdoor_findings(design)
+    found += bench_findings(design)
+    found += electrical_findings(design, radiator)
     if tray is not None:
         found += sheet_findings(design, tray)
     if radiator is not None:

@@ -66,6 +66,7 @@ def _folds(design: Design, tray: Tray) -> Iterator[Finding]:
                 remedy="Make the lips higher, use thinner sheet, or give the shop's own smallest_flange.",
                 where="reflector.lip_height",
             )
+    yield from _machine(design, tray)
     r = design.reflector
     if not tray.lips or not r.metal.foldable:
         return
@@ -88,6 +89,45 @@ def _folds(design: Design, tray: Tray) -> Iterator[Finding]:
             f"{design.folding.tooling_radius_mm:g} mm: the blank would come out another size",
             remedy='Leave inside_bend_radius "auto", or ask the shop for that tool.',
             where="reflector.inside_bend_radius",
+        )
+
+
+def _machine(design: Design, tray: Tray) -> Iterator[Finding]:
+    """The folding machine's length, the order that four lips need, the grain of the sheet."""
+    longest = max((lip.left.half_mm + lip.right.half_mm for lip in tray.lips), default=0.0)
+    if longest > design.folding.longest_bend_mm + 1e-9:
+        yield Finding(
+            code="bend-over-brake",
+            severity=ERROR,
+            message=f"a bend {longest:.0f} mm long; the longest the folding machine makes is "
+            f"{design.folding.longest_bend_mm:g} mm",
+            remedy="Use a smaller base, lips on the shorter edges, or another shop (folding.longest_bend).",
+            where="folding.longest_bend",
+        )
+    if {lip.edge[0] for lip in tray.lips} != {"x", "y"} or not design.reflector.metal.foldable:
+        return
+    inner = min(lip.left.half_mm + lip.right.half_mm for lip in tray.lips)
+    height = max(lip.height_mm for lip in tray.lips)
+    yield Finding(
+        code="box-fold",
+        severity=NOTE,
+        message="four lips make a box: the last two folds go between lips that stand already, which needs fingers "
+        f"no wider than {inner:.0f} mm that clear {height:g} mm",
+        remedy="Fold two opposite lips first, then the others with a box-and-pan brake or a loose bar.",
+        where="reflector.lips",
+    )
+    r = design.reflector
+    need = minimum_inside_radius_mm(r.metal, r.thickness_mm)
+    if need > 0.0 and r.inside_radius_mm < 2.0 * need - 1e-9:
+        yield Finding(
+            code="fold-along-grain",
+            severity=NOTE,
+            message=f"with lips on all sides one pair folds along the grain of the sheet, where {r.metal.temper} "
+            f"{r.metal.name} should have about {2.0 * need:g} mm inside radius; the design has "
+            f"{r.inside_radius_mm:g} mm",
+            remedy="Lay the blanks at 45 degrees to the grain, or bend a trial along it and look for cracks.",
+            where="reflector.inside_bend_radius",
+            source="twice the radius across the grain: common practice, no source",
         )
 
 

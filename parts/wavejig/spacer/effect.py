@@ -81,5 +81,5 @@ def filled_share(
 
 def _along_mm(post: Post) -> float:
     """Length of wire over a post: across its corners, at most."""
-    x0, y0, x1, y1 = post.outline.bounds()
-    return math.hypot(x1 - x0, y1 - y0)
+    corners = post.outline.vertices
+    return max(math.dist(a[:2], b[:2]) for a in corners for b in corners)

@@ -20,6 +20,8 @@ from wavejig.spacer.model import BlockPiece, Spacer
 
 STEP_MM = 0.5
 LIFTS = 12
+MOST_STEPS = 48
+_NEAR_MM = 6.0
 TOUCH_MM = 0.01  # the wire rests on the piece; outlines are smoothed by this
 
 
@@ -60,7 +62,8 @@ def withdrawals(design: Design, radiator: Radiator, spacer: Spacer) -> tuple[Wit
 def moves_mm(piece: BlockPiece) -> np.ndarray:
     """(k, 3) places of the piece on its way, from where it holds the wire: pulled, then lifted clear."""
     dx, dy = piece.withdrawal
-    pulls = np.linspace(0.0, piece.travel_mm, max(2, math.ceil(piece.travel_mm / STEP_MM) + 1))
+    count = min(max(2, math.ceil(piece.travel_mm / STEP_MM) + 1), MOST_STEPS)
+    pulls = np.linspace(0.0, piece.travel_mm, count)
     out = np.column_stack([pulls * dx, pulls * dy, np.zeros(len(pulls))])
     lifts = np.linspace(0.0, piece.layers[-1].top_mm + 2.0, LIFTS + 1)[1:]
     up = np.column_stack(
@@ -76,10 +79,16 @@ def _withdraw(
         Prism(plan=contour_polygon(s.contour), bottom_mm=s.bottom_mm, top_mm=s.top_mm) for s in piece.layers
     ]
     moves = moves_mm(piece)
-    # the piece moves one way: the wire, seen from it, the other
-    whole = clearances_mm(points, radius_mm, layers, -moves)
-    rims = clearances_mm(points, radius_mm, layers[1:], -moves)
     dx, dy = piece.withdrawal
+    # wire that the piece passes nowhere near
+    x0, y0, x1, y1 = layers[0].plan.bounds
+    low = np.array([x0 + min(0.0, dx * piece.travel_mm), y0 + min(0.0, dy * piece.travel_mm)]) - _NEAR_MM
+    high = np.array([x1 + max(0.0, dx * piece.travel_mm), y1 + max(0.0, dy * piece.travel_mm)]) + _NEAR_MM
+    near = np.all((points[:, :2] >= low) & (points[:, :2] <= high), axis=1)
+    points, radius_mm = points[near], radius_mm[near]
+    # the piece moves one way: the wire, seen from it, the other
+    floor = clearances_mm(points, radius_mm, layers[:1], -moves)
+    rims = clearances_mm(points, radius_mm, layers[1:], -moves)
     spots = _hardware(design)
     hardware = math.inf
     for x, y, r in spots:
@@ -91,7 +100,7 @@ def _withdraw(
         piece=piece.name,
         way=f"{piece.travel_mm:g} mm towards {towards}, then straight up",
         travel_mm=piece.travel_mm,
-        least_wire_mm=float(whole.min()),
+        least_wire_mm=float(min(floor.min(), rims.min())),
         least_rim_mm=float(rims.min()),
         least_hardware_mm=hardware,
         lip_mm=piece.available_mm - piece.travel_mm,

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 from functools import cache
 from itertools import pairwise
@@ -86,3 +87,20 @@ def sheet_size(name: str) -> SheetSize:
         if size.name == name:
             return size
     raise unknown_name("sheet size", name, [size.name for size in sheet_sizes()])
+
+
+def heat_flow_w(
+    metal_name: str, thickness_mm: float, joint_radius_mm: float, sheet_radius_mm: float, rise_k: float
+) -> float:
+    """Watts that flow from a round joint out to the sheet's rim when the joint is `rise_k` hotter than the rim.
+
+    Steady conduction in a disc, P = 2 pi k t dT / ln(R / r) (textbook, from memory); what the air takes on the
+    way comes on top. Source of k: table `heat-conductivity`. Raises StockError for a metal off the table.
+    """
+    for row in table("heat-conductivity").rows:
+        if row["name"] == metal_name:
+            carrying_um = float(row["carrying_um"])
+            thick_m = (carrying_um / 1000.0 if carrying_um else thickness_mm) / 1000.0
+            spread = math.log(max(sheet_radius_mm / joint_radius_mm, 1.01))
+            return 2.0 * math.pi * float(row["conductivity_w_per_mk"]) * thick_m * rise_k / spread
+    raise unknown_name("sheet metal", metal_name, [str(r["name"]) for r in table("heat-conductivity").rows])

@@ -44,11 +44,15 @@ def _changes(recipe: Recipe) -> Iterator[tuple[str, Recipe]]:
     if recipe.feed.style == "legs":
         feed = recipe.feed.model_copy(update={"style": "tube", "leg_spacing": "auto"})
         yield 'a tube to the terminals (feed.style = "tube")', recipe.model_copy(update={"feed": feed})
-    wire = round(resolve(recipe).radiator.wire_diameter_mm * THICKER, 1)
-    radiator = recipe.radiator.model_copy(
-        update={"wire": WireSize(standard="diameter", number=wire), "inside_bend_radius": "auto"}
-    )
-    yield f'thicker wire (radiator.wire = "{wire:g} mm")', recipe.model_copy(update={"radiator": radiator})
+    diameter = resolve(recipe).radiator.wire_diameter_mm
+    for word, factor in (("thicker", THICKER), ("thinner", 1.0 / THICKER)):
+        wire = round(diameter * factor, 1)
+        radiator = recipe.radiator.model_copy(
+            update={"wire": WireSize(standard="diameter", number=wire), "inside_bend_radius": "auto"}
+        )
+        yield f'{word} wire (radiator.wire = "{wire:g} mm")', recipe.model_copy(
+            update={"radiator": radiator}
+        )
     if recipe.reflector.lips == "none" and not recipe.reflector.material.startswith("laminate"):
         reflector = recipe.reflector.model_copy(update={"lips": "four"})
         yield (

@@ -8,6 +8,7 @@ read, or was cut short, counts as absent.
 
 from __future__ import annotations
 
+import contextlib
 import hashlib
 import json
 import math
@@ -64,7 +65,8 @@ def save(recipe: Recipe, aim: str, grid_mm: float, values: Mapping[str, float]) 
         beside.write_text(text, encoding="utf-8")
         beside.replace(path)
     except OSError:
-        beside.unlink(missing_ok=True)
+        with contextlib.suppress(OSError):
+            beside.unlink()
 
 
 def _file(name: str) -> Path:

@@ -12,8 +12,9 @@ from wavejig.recipe.edit import Put, edited
 from wavejig.recipe.errors import RecipeError
 from wavejig.recipe.models import Recipe
 from wavejig.shop import inspect
+from wavejig.tuning.freedom import freedoms
 from wavejig.tuning.measured import Measured
-from wavejig.tuning.vary import over_mm
+from wavejig.tuning.vary import PLACES, over_mm
 
 
 class NothingToWriteError(Exception):

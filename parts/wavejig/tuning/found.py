@@ -27,6 +27,7 @@ from wavejig.tuning.yields import FREQUENCY
 
 Array = NDArray[np.float64]
 Complex = NDArray[np.complex128]
+Mask = NDArray[np.bool_]
 
 LIGHT_MM_PER_S = 299_792_458_000.0  # exact (SI Brochure, 9th ed. 2019)
 OFFSET = "reference_plane"
@@ -231,7 +232,7 @@ class _Problem:
         error = self.explored.error_reflection
         return np.asarray(np.sqrt(even**2 + (share * size) ** 2 + FLOOR**2 + error**2) * widen)
 
-    def _residual(self, x: Array, noise: Array, prior: Array, free: Array) -> Array:
+    def _residual(self, x: Array, noise: Array, prior: Array, free: Mask) -> Array:
         left = (self.reflection(x) - self.s) / noise
         known = np.zeros(len(x))
         known[: self.d] = self.mean
@@ -249,7 +250,7 @@ class _Problem:
             columns.append(np.concatenate([slope.real, slope.imag]))
         return np.array(columns).T
 
-    def _descend(self, x: Array, prior: Array, free: Array, noise: Array) -> tuple[float, Array]:
+    def _descend(self, x: Array, prior: Array, free: Mask, noise: Array) -> tuple[float, Array]:
         """Levenberg-Marquardt within what the surface covers."""
         damping = 1e-3
         residual = self._residual(x, noise, prior, free)

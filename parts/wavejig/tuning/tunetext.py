@@ -89,14 +89,15 @@ def puts(recipe: Recipe, answer: Tuned, wire_diameter_mm: float) -> list[Put]:
     """The tuned values as keys of the recipe, sides as the recipe measures them."""
     remark = f"tuned for {answer.aim}: worst {answer.after.worst_db:.1f} dB, {answer.after.gain_dbi:.1f} dBi"
     out = []
+    starts = {f.name: f.start for f in answer.free}
     for name, value in answer.values.items():
         table, key = PLACES[name]
-        if key == "base":
-            continue
+        if key == "base" or (name == "lip_height" and value == starts[name]):
+            continue  # a sheet left as it starts may stay auto
         if name in ("side", "lobe_diameter"):
             value += over_mm(recipe, wire_diameter_mm)
         out.append(Put(table=table, key=key, value=f'"{value:.6g} {_UNITS.get(name, "mm")}"', remark=remark))
-    if "base_x" in answer.values or "base_y" in answer.values:
+    if any(answer.values[n] != starts[n] for n in ("base_x", "base_y") if n in starts):
         pair = []
         for i, name in enumerate(("base_x", "base_y")):
             asked = recipe.reflector.base[i]
