@@ -4,15 +4,21 @@ from __future__ import annotations
 
 import math
 from dataclasses import replace
+from pathlib import Path
 from typing import Any
 
 import numpy as np
 import pytest
+from pypdf import PdfReader
 
 from tests.designs import design
 from tests.sheets.conftest import DEMOS, inspected, pattern_of
-from wavejig.sheets import bending, lists
-from wavejig.sheets.process import assembly_steps, screw_for
+from wavejig.fixture.bending.model import BendOrder, BendStep, PieceOrder
+from wavejig.sheets import bending, checks, lists
+from wavejig.sheets.buildsheet import BuildSheet, write_build_sheet
+from wavejig.sheets.feedsteps import screw_for
+from wavejig.sheets.laid import laid
+from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.station import distance_m, eirp_w, exposure, public_limit_w_per_m2, wind
 from wavejig.sheets.template import OVERLAP_MM, templates
 from wavejig.shop import Inspection, inspect
@@ -167,9 +173,9 @@ def test_screws_fit_their_holes() -> None:
 # -- tables -------------------------------------------------------------------------------------------
 
 
-def checks_of(made: Inspection) -> tuple[lists.Check, ...]:
+def checks_of(made: Inspection) -> tuple[checks.Check, ...]:
     assert made.radiator and made.tray
-    return lists.first_article(made.design, made.radiator, made.tray, pattern_of(made))
+    return checks.first_article(made.design, made.radiator, made.tray, pattern_of(made))
 
 
 @pytest.mark.parametrize("name", DEMOS)
@@ -226,7 +232,7 @@ def test_a_wire_with_all_bends_made_lies_as_the_finished_one(name: str, from_end
     every = {b.number for b in piece.bends}
     want = piece.path.sample(chord_error_mm=0.02, step_mm=2.0)[:, :2]
     for bend in (b for b in piece.bends if b.in_plane):
-        got = bending.laid(piece, every, bend.number, from_end=from_end)
+        got = laid(piece, every, bend.number, from_end=from_end)
         for sought in want[::7]:
             assert np.hypot(*(got - sought).T).min() < 1.1
 
@@ -235,12 +241,58 @@ def test_a_wire_not_yet_bent_leaves_the_pin_straight_on() -> None:
     """Before bend 3 the wire runs on in the direction it has before the bend, beyond where the corner will be."""
     piece = inspected("saltmarsh-2g4").radiator.main  # type: ignore[union-attr]
     arc = piece.path.arcs[2]
-    got = bending.laid(piece, {1, 2}, 3, from_end=False)
+    got = laid(piece, {1, 2}, 3, from_end=False)
     start = np.array(arc.start[:2])
     heading = np.cross(np.array(arc.normal), np.array(arc.start) - np.array(arc.centre))[:2] / arc.radius_mm
     end = got[-1]
     assert float(np.dot(end - start, heading)) > 100.0  # the rest of the wire is that long
     assert abs(float(np.cross(np.append(heading, 0.0), np.append(end - start, 0.0))[2])) < 0.01
+
+
+def planned(numbers: tuple[int, ...], held: str) -> BendOrder:
+    """An order on the board alone, to see it drawn; nobody asked whether it collides."""
+    steps = tuple(
+        BendStep(
+            piece="main", number=n, place="board", tool="dowel", held=held, pins=numbers[: i + 1], pins_in=(n,),
+            pins_out=(), clamp=False, located="stop" if i == 0 else "formed bend", mark_mm=0.0, trim_first=False,
+            lift_deg=0.0, rest_deg=0.0, tail_mm=10.0, loaded_angle_deg=90.0, angle_deg=90.0,
+        )
+        for i, n in enumerate(numbers)
+    )  # fmt: skip
+    piece = PieceOrder(piece="main", steps=steps, found=True, reason="", remedies=(), looked=0, complete=True)
+    return BendOrder(pieces=(piece,))
+
+
+@pytest.mark.parametrize("held", ["start", "end"])
+def test_pictures_follow_the_planned_order(held: str) -> None:
+    made = inspected("ridge-868")
+    assert made.radiator and made.fixture
+    numbers = (1, 2, 3, 4, 5, 6, 7) if held == "start" else (7, 6, 5, 4, 3, 2, 1)
+    shown = bending.frames(made.radiator, made.fixture, planned(numbers, held))
+    assert [f.title.split()[-1] for f in shown] == [str(n) for n in numbers]
+    assert all(f"Put in pin {n}." in f.text for f, n in zip(shown, numbers, strict=True))
+    assert all(("the start side swings" in f.text) is (held == "end") for f in shown)
+
+
+def test_a_wire_held_at_its_end_is_bent_from_there() -> None:
+    """With only the last bend made, the far straight lies as in the finished wire and the start points away."""
+    piece = inspected("ridge-868").radiator.main  # type: ignore[union-attr]
+    got = laid(piece, {7}, 7, from_end=True)
+    want = piece.path.sample(chord_error_mm=0.02, step_mm=2.0)[:, :2]
+    assert np.hypot(*(got[-1] - want[-1])) < 0.05
+    assert np.hypot(*(got[0] - want[0])) > 100.0
+
+
+def test_an_order_that_was_not_found_is_owned_up_to(tmp_path: Path) -> None:
+    made = inspected("ridge-868")
+    reason = "bend 4 meets the clamp"
+    piece = PieceOrder(
+        piece="main", steps=(), found=False, reason=reason, remedies=(), looked=9, complete=True
+    )
+    sheet = BuildSheet(inspection=made, pattern=pattern_of(made), order=BendOrder(pieces=(piece,)))
+    write_build_sheet(sheet, tmp_path / "sheet.pdf")
+    text = " ".join(" ".join(p.extract_text().split()) for p in PdfReader(tmp_path / "sheet.pdf").pages)
+    assert f"no order without a collision was found ({reason})" in text
 
 
 # -- templates ----------------------------------------------------------------------------------------

@@ -6,6 +6,7 @@ import math
 from collections.abc import Callable
 from pathlib import Path
 
+import ezdxf
 import pytest
 from shapely import Polygon
 
@@ -186,3 +187,31 @@ def test_a_wrong_number_on_the_paper_is_noticed(written: Callable[[str], Path]) 
         Polygon(tray.outline.points(0.002)),
     )
     assert apart(redrawn, expected) > NEAR_MM
+
+
+def test_no_view_of_the_blank_is_mirrored(written: Callable[[str], Path]) -> None:
+    """The drawn circles of the main view stand at the holes' own places, x to the right, y up."""
+    path = written("saltmarsh-2g4") / "drawings" / "blank.dxf"
+    circles = {
+        (round(c.dxf.center.x, 4), round(c.dxf.center.y, 4), round(2.0 * c.dxf.radius, 4))
+        for c in ezdxf.readfile(path).modelspace().query("CIRCLE")
+    }
+    tray = inspected("saltmarsh-2g4").tray
+    assert tray is not None
+    wanted = {(round(h.x_mm, 4), round(h.y_mm, 4), round(h.diameter_mm, 4)) for h in tray.holes}
+    assert wanted <= circles
+    lopsided = {(x, y) for x, y, _ in wanted if (x, -y) not in {(u, v) for u, v, _ in wanted}}
+    assert lopsided  # so a mirrored view could not have passed
+
+
+def test_the_nest_is_the_mirror_image_and_says_so(written: Callable[[str], Path]) -> None:
+    texts = [
+        t.plain_text()
+        for t in ezdxf.readfile(written("saltmarsh-2g4") / "drawings" / "fixture.dxf")
+        .modelspace()
+        .query("TEXT")
+    ]
+    (nest,) = [t for t in texts if t.startswith("CHECK NEST")]
+    assert "face DOWN" in nest and "mirror image" in nest
+    (board,) = [t for t in texts if t.startswith("BENDING BOARD")]
+    assert "as the antenna from its radiator side" in board

@@ -57,6 +57,8 @@ CASES: list[tuple[str, str, dict[str, Any], dict[str, Any]]] = [
     ("post-too-weak", "warning", {"radiator": {"inside_bend_radius": "1.8 mm", "metal": "bronze", "temper": "annealed"},
                                   "wire": "3 mm", "band": ["430 MHz", "440 MHz"], "feed": {"style": "tube"},
                                   "cutter": {"stock_sheet": ["2000 mm", "1000 mm"]}}, {}),
+    ("springback-untried", "note", {}, {"radiator": {"trial": [
+        {"former": "6 mm", "bent_to": "100 deg", "relaxed_to": "99.3 deg"}]}}),
     ("fixture-style", "note", {"fixture": {"style": "stop-block"}}, {}),
     ("nest-heat", "warning", {"band": ["7.0 GHz", "7.2 GHz"], "wire": "0.8 mm", "feed": {"style": "tube", "tube": "tube-2.2"}}, {}),
     ("fixture-tiled", "note", {"printer": {"bed": ["100 mm", "100 mm", "100 mm"]}}, {}),
@@ -114,4 +116,5 @@ def test_each_code_in_the_code_is_tried_here() -> None:
     assert untried <= {
         "springback-rough", "wires-touch", "straight-short", "measure-connector", "spacer-conflict", "spacer-note",
         "fixture-note", "tray-cannot-be-folded", "hole-in-bend", "marks-left-out",
+        "no-bend-order",
     }  # fmt: skip

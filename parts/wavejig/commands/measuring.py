@@ -27,6 +27,8 @@ if TYPE_CHECKING:
     from wavejig.tuning.measured import Measured
     from wavejig.tuning.sweepfile import MeasuredSweep
 
+FAR_READING = 0.2  # of the drawn size: then something else was measured, or over something else
+
 
 def run(args: argparse.Namespace) -> int:
     """Exit code: 0 all pass; 1 an article fails; 2 a recipe, sweep or reading that cannot be used."""
@@ -38,6 +40,10 @@ def run(args: argparse.Namespace) -> int:
     if refused is not None:
         return refused
     path: Path = args.recipe
+    try:
+        given = _given(args)
+    except ValueError as err:
+        return stop(WRONG_INPUT, f"measured: {err}")
     try:
         recipe_file, inspection = inspect_recipe(path)
     except RecipeError as err:
@@ -56,7 +62,7 @@ def run(args: argparse.Namespace) -> int:
     finally:
         meter.end()
     try:
-        readings = _readings(args, recipe_file, inspection)
+        readings = _readings(given, len(args.sweeps) == 1, recipe_file, inspection)
     except ValueError as err:
         return stop(WRONG_INPUT, f"measured: {err}")
     return _measure(args, recipe_file, inspection, sweeps, readings, bad)
@@ -168,19 +174,13 @@ def _refuse_names(args: argparse.Namespace) -> int | None:
     return None
 
 
-def _readings(args: argparse.Namespace, recipe_file: RecipeFile, inspection: Inspection) -> dict[str, float]:
-    """Calliper readings over the centreline: the recipe's, and those of the command line above them.
-
-    Raises ValueError that says what to write.
-    """
+def _given(args: argparse.Namespace) -> dict[str, float]:
+    """The command line's readings, as taken. Raises ValueError that says what to write."""
     from wavejig.recipe.units import LENGTH, UnitError, parse
-    from wavejig.tuning.spread import MEASURED_KEYS, centreline_readings, readings_of
+    from wavejig.tuning.spread import MEASURED_KEYS
 
-    recipe, wire = recipe_file.recipe, inspection.design.radiator.wire_diameter_mm
-    if len(args.sweeps) > 1:
-        if args.reading:
-            raise ValueError("--reading belongs to one article; give its sweep alone")
-        return {}
+    if args.reading and len(args.sweeps) > 1:
+        raise ValueError("--reading belongs to one article; give its sweep alone")
     given: dict[str, float] = {}
     for text in args.reading:
         name, _, size = text.partition("=")
@@ -191,14 +191,29 @@ def _readings(args: argparse.Namespace, recipe_file: RecipeFile, inspection: Ins
             given[name] = parse(size.strip(), LENGTH)
         except UnitError as err:
             raise ValueError(f"--reading {text}: {err.allowed}. {err.fix}") from err
-    found = {**readings_of(recipe, wire), **centreline_readings(recipe, wire, given)}
-    known = dict(inspection.design.values)
+    return given
+
+
+def _readings(
+    given: Mapping[str, float], one: bool, recipe_file: RecipeFile, inspection: Inspection
+) -> dict[str, float]:
+    """Readings over the centreline: the recipe's, and those given above them. Raises ValueError.
+
+    one: whether a single article was swept; the recipe's readings are of no batch.
+    """
+    from wavejig.tuning.spread import centreline_readings, readings_of
+
+    if not one:
+        return {}
+    recipe, wire = recipe_file.recipe, inspection.design.radiator.wire_diameter_mm
+    found = {**readings_of(recipe, wire), **centreline_readings(recipe, wire, dict(given))}
+    known = {name: value.value for name, value in inspection.design.values}
     for name, value in found.items():
         if name not in known:
             raise ValueError(f"reading {name}: this radiator has no such dimension")
-        if abs(value / known[name].value - 1.0) > 0.2:
+        if abs(value / known[name] - 1.0) > FAR_READING:
             raise ValueError(
-                f"reading {name}: {value:.2f} mm over the centreline is far from the {known[name].value:.2f} mm drawn; "
+                f"reading {name}: {value:.2f} mm over the centreline is far from the {known[name]:.2f} mm drawn; "
                 "is it read over what measured_over says?"
             )
     return found

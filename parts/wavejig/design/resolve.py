@@ -37,6 +37,9 @@ from wavejig.stock.errors import StockError
 
 T = TypeVar("T")
 LONGEST_BEND_MM = 1000.0  # of small folding machines; common practice, no source
+# Own paths have no one side: as for two square lobes. A band narrower than this is lost in a print's own
+# errors. Common practice, no source.
+OWN_PATH_NEST, LEAST_NEST_MM = 1.41, 0.15
 POST_SCREW = "M3"  # of spacers that stay; common practice, no source
 
 
@@ -83,7 +86,7 @@ def resolve(recipe: Recipe) -> Design:
             side_mm=recipe.tolerances.side,
             bend_angle_deg=recipe.tolerances.bend_angle,
             standoff_mm=recipe.tolerances.standoff,
-            nest_mm=recipe.tolerances.nest,
+            nest_mm=_nest_mm(recipe, radiator, lobes),
         ),
         polarisation=recipe.mounting.polarisation,
         pole_mm=None if recipe.mounting.pole == "none" else recipe.mounting.pole,
@@ -217,6 +220,23 @@ def _reflector(
     )
     ledger.conflicts += conflicts
     return reflector
+
+
+def _nest_mm(recipe: Recipe, radiator: RadiatorDesign, lobes: Lobes) -> float:
+    """Half-width of the check nest's band: how far the wire's farthest point moves when every side is off by
+    its tolerance and the radiator lies as well as it can, about its middle."""
+    asked = recipe.tolerances.nest
+    if asked != "auto":
+        return asked
+    side = recipe.tolerances.side
+    if radiator.side_mm is not None:
+        xs = [c.at[0] for c in lobes.corners]
+        moved = (max(xs) - min(xs)) / 2.0 / radiator.side_mm * side
+    elif radiator.lobe_diameter_mm is not None:
+        moved = max(abs(x) for x, _ in lobes.far) / radiator.lobe_diameter_mm * side
+    else:
+        moved = OWN_PATH_NEST * side
+    return round(max(moved, LEAST_NEST_MM), 3)
 
 
 def _printer(recipe: Recipe) -> PrinterDesign:

@@ -16,7 +16,7 @@ from numpy.typing import NDArray
 
 from wavejig.field.model import Model
 from wavejig.field.quadrature import triangle_rule, unit_rule
-from wavejig.field.unknowns import FAN, FAN_LATEST, SEGMENT, TRIANGLE, Unknowns, wire_ends
+from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE, Unknowns, wire_ends
 
 Array = NDArray[np.float64]
 Index = NDArray[np.int64]
@@ -212,7 +212,7 @@ def _shapes(kind: Index, share: Array, corners: Array, centre: Array) -> tuple[S
 def _fan_moments(bary: Array, v: Array, share: Array) -> Array:
     """Integral of the fan current times each point's linear cardinal function, (fans, 3 points, 3).
 
-    From the axis on, as the charges have it: what the foot covers (fan_start) has an inductance to be left
+    From the axis on, as the charges have it: what the foot covers has an inductance to be left
     out, but its moment carries the current from the wire to the sheet and radiates.
     """
     nodes, w = unit_rule(4)
@@ -223,8 +223,3 @@ def _fan_moments(bary: Array, v: Array, share: Array) -> Array:
     cardinal = at @ np.linalg.inv(bary)
     e = np.einsum("gc,fck->fgk", np.stack([-np.ones_like(t), 1.0 - t, t], axis=1), v)
     return np.asarray(np.einsum("g,gp,fgk,f->fpk", weight, cardinal, e, share))
-
-
-def fan_start(foot_m: Array, reach_m: Array) -> Array:
-    """Where a fan's current begins: the wire's surface as a part of the way to the far side, at most FAN_LATEST."""
-    return np.minimum(foot_m / reach_m, FAN_LATEST)

@@ -152,20 +152,27 @@ class _Wires:
         arm = self.pieces["ground-leg"].path
         first = arm.segments[0]
         begin = np.array(first.end)  # the arm's straight ends where its bend begins
-        best: tuple[float, Array] | None = None
-        for line in main.lines:
-            a, b = np.array(line.start), np.array(line.end)
+        lines = [(np.array(line.start), np.array(line.end)) for line in main.lines]
+
+        def foot(number: int) -> Array:
+            a, b = lines[number]
             t = float(np.clip((begin - a) @ (b - a) / float((b - a) @ (b - a)), 0.0, 1.0))
-            foot = a + (b - a) * t
-            gap = float(np.linalg.norm(foot - begin))
-            if best is None or gap < best[0]:
-                best = (gap, foot)
-        assert best is not None
-        tap = best[1]
-        for line in main.lines:  # a tap next to a straight's end is at its end: no slivers of wire
-            for end in (np.array(line.start), np.array(line.end)):
-                if np.linalg.norm(end - tap) < self.r.wire_diameter_mm:
-                    tap = end
+            return np.asarray(a + (b - a) * t)
+
+        def place() -> tuple[int, int]:
+            """Which line, and which end of it (-1: between its ends)."""
+            near = min(range(len(lines)), key=lambda n: float(np.linalg.norm(foot(n) - begin)))
+            tap, found = foot(near), (near, -1)
+            for n, ends in enumerate(
+                lines
+            ):  # a tap next to a straight's end is at its end: no slivers of wire
+                for k, end in enumerate(ends):
+                    if np.linalg.norm(end - tap) < self.r.wire_diameter_mm:
+                        tap, found = end, (n, k)
+            return found
+
+        line, end = self.plan.choose("tap", place)
+        tap = foot(line) if end < 0 else lines[line][end]
         return begin, tap
 
     def _ground_leg(self, tap: tuple[Array, Array]) -> None:

@@ -15,11 +15,11 @@ import math
 import numpy as np
 from numpy.typing import NDArray
 
-from wavejig.field.elements import Elements, fan_start
+from wavejig.field.elements import Elements
 from wavejig.field.model import Insulation, Model
 from wavejig.field.quadrature import triangle_rule, unit_rule
 from wavejig.field.units import MU_0_H_PER_M
-from wavejig.field.unknowns import FAN, SEGMENT, TRIANGLE
+from wavejig.field.unknowns import FAN, FAN_LATEST, SEGMENT, TRIANGLE
 
 Array = NDArray[np.float64]
 Complex = NDArray[np.complex128]
@@ -106,6 +106,11 @@ def _row(first: int, second: int, value: float) -> tuple[Index, Index, Array]:
     return np.array([first]), np.array([second]), np.array([value])
 
 
+def _fan_start(elements: Elements, fan: int, reach_m: float) -> float:
+    """Where a fan's carried current begins, as a part of the way to the far side: at the wire's surface."""
+    return min(float(elements.radius_m[fan]) / reach_m, FAN_LATEST)
+
+
 def _fan_overlap(elements: Elements, fan: int) -> float:
     """The fan's current with itself: (share^2 / 2A) |e|^2 (carried - u^2)^2 / u, carried 1 from the foot on."""
     v = elements.shapes.corners[fan]
@@ -113,7 +118,7 @@ def _fan_overlap(elements: Elements, fan: int) -> float:
     total = 0.0
     for t, w in zip(nodes, weights, strict=True):
         e2 = float(np.sum(((1.0 - t) * v[1] + t * v[2] - v[0]) ** 2))
-        u = float(fan_start(elements.radius_m[fan], np.sqrt(e2)))
+        u = _fan_start(elements, fan, math.sqrt(e2))
         total += w * e2 * (u**4 / 4.0 - math.log(u) - (1.0 - u**2) + (1.0 - u**4) / 4.0)
     return float(elements.share[fan] ** 2 * total / (2.0 * elements.shapes.area[fan]))
 
@@ -125,7 +130,7 @@ def _fan_with(elements: Elements, fan: int, corner: Array, area: float) -> float
     total = 0.0
     for t, wt in zip(nodes, weights, strict=True):
         e = (1.0 - t) * v[1] + t * v[2] - v[0]
-        start = float(fan_start(elements.radius_m[fan], np.linalg.norm(e)))
+        start = _fan_start(elements, fan, float(np.linalg.norm(e)))
         for low, high, carried in ((0.0, start, 0.0), (start, 1.0, 1.0)):
             for x, wx in zip(nodes, weights, strict=True):
                 u = low + (high - low) * x

@@ -137,10 +137,14 @@ def check_layers(layers: Sequence[Layer]) -> None:
                 raise DrawingError(f"layer {layer.name}, entity {number}: {fault}")
     if not any(layer.entities for layer in layers):
         raise DrawingError("drawing: got no entity on any layer, need at least one.")
-    pair = overlapping(
-        piece for layer in layers for entity in layer.entities for piece in pieces_of(entity, layer.name)
-    )
-    if pair:
+    # where a machine follows the lines, nothing may lie on anything; in a view for people two parts may touch
+    cut = any(is_cut_layer(layer.name) for layer in layers)
+    for group in [layers] if cut else [[layer] for layer in layers]:
+        pair = overlapping(
+            piece for layer in group for entity in layer.entities for piece in pieces_of(entity, layer.name)
+        )
+        if not pair:
+            continue
         a, b = pair
         raise DrawingError(
             f"layers {a.owner} and {b.owner}: drawn twice near ({b.middle[0]:.3f}, {b.middle[1]:.3f}) mm; "

@@ -6,7 +6,7 @@ written stops the build.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -23,9 +23,11 @@ from wavejig.files.mesh import Measure, Mesh, measure, tessellate
 from wavejig.files.printable import BED_MARGIN_MM, Printability, require_printable
 from wavejig.files.step import NamedSolid, write_step
 from wavejig.files.stepcheck import check_step
+from wavejig.files.steps import check_steps, write_steps
 from wavejig.files.stl import check_stl, write_stl
 from wavejig.files.tables import check_bend_table, write_bend_table
 from wavejig.files.threemf import check_3mf, write_3mf
+from wavejig.fixture.bending.model import BendOrder
 from wavejig.fixture.bending.order import plan_order
 from wavejig.fixture.bending.strip import steps_svg
 from wavejig.fixture.bending.tolerance import tolerance
@@ -37,6 +39,8 @@ from wavejig.radiator.solid import piece_solid
 from wavejig.reflector.flat import FlatPattern, flat_pattern, with_kerf
 from wavejig.reflector.solid import tray_solid
 from wavejig.shop import Inspection
+from wavejig.shop.bending import order_findings
+from wavejig.shop.finding import Finding
 from wavejig.shop.predicted import prediction_findings
 from wavejig.spacer.effect import post_effect
 from wavejig.spacer.solid import printables as spacer_printables
@@ -89,6 +93,7 @@ class PackFiles:
         self.predict = predict
         self.announce = announce
         self.prediction: Prediction | None = None
+        self.bend_order = BendOrder(pieces=())
         self.entries: list[Entry] = []
         self.assembly: list[NamedSolid] = []
         self.meshes: dict[str, tuple[Mesh, Measure]] = {}
@@ -182,6 +187,7 @@ class PackFiles:
         layers = Drawing(cut=cut.cut, marks=cut.marks).layers()
         self._dxf(layers, "fixture/check-nest-cut.dxf", "fixture", blanks=cut.parts)
         self.bend_order = plan_order(self.design, self.radiator, self.fixture)
+        self._found(order_findings(self.bend_order))
         path = self._path("fixture/steps.svg")
         write_steps(steps_svg(self.design, self.radiator, self.fixture, self.bend_order), path)
         check_steps(path, self.bend_order)
@@ -208,10 +214,7 @@ class PackFiles:
         self.prediction = predict(self.design, model=model, announce=self.announce)
         for name, kind, units in write_field(self.root / "field", model, self.prediction):
             self._note(f"field/{name}", kind, "field", units)
-        found = (*self.inspection.findings, *prediction_findings(self.prediction))
-        self.inspection = replace(
-            self.inspection, findings=tuple(sorted(found, key=lambda f: f.sort_key))
-        )
+        self._found(prediction_findings(self.prediction))
 
     def write_design(self) -> None:
         """design.json."""
@@ -241,6 +244,13 @@ class PackFiles:
         write_design_json(data, path)
         check_design_json(path, data)
         self._note("design.json", "json", "design", "mm")
+
+    def _found(self, more: Iterable[Finding]) -> None:
+        """Findings that only a build can make."""
+        found = (*self.inspection.findings, *more)
+        self.inspection = replace(
+            self.inspection, findings=tuple(sorted(found, key=lambda f: f.sort_key))
+        )
 
     # -- files --------------------------------------------------------------------------------------
 

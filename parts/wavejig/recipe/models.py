@@ -403,8 +403,10 @@ class Tolerances(_Table):
     standoff: Annotated[float, quantity(LENGTH, 0.01, 10.0)] = Field(
         0.3, description="plus or minus, standoff"
     )
-    nest: Annotated[float, quantity(LENGTH, 0.05, 10.0)] = Field(
-        0.5, description="half-width of the check nest's band beyond the wire"
+    nest: Annotated[float | Auto, auto_quantity(LENGTH, 0.05, 10.0)] = Field(
+        AUTO,
+        description="half-width of the check nest's band beyond the wire; auto: it takes sides within their "
+        "tolerance and no others",
     )
     distribution: Annotated[str, choice("normal", "uniform")] = Field(
         "normal",

@@ -5,16 +5,29 @@ The datum is the crossing of the centre lines, which is the middle of the base. 
 
 from __future__ import annotations
 
-import math
 from collections.abc import Iterator
-from dataclasses import replace
 
 import numpy as np
 
-from wavejig.design.model import Design, Hole
-from wavejig.geometry.plane import Circle, Contour
+from wavejig.design.model import Design
+from wavejig.geometry.plane import Circle
 from wavejig.reflector.flat import FlatPattern
-from wavejig.reflector.model import EDGES, Tray, TrayLip, along, outward, place
+from wavejig.reflector.model import EDGES, Tray, along, outward, place
+from wavejig.sheets.blankcorners import (
+    SEEN,
+    corner_detail,
+    corner_sizes,
+    corner_window,
+    ear_sizes,
+)
+from wavejig.sheets.blankholes import (
+    TABLES_WIDE_MM,
+    crowd,
+    feed_detail,
+    hole_labels,
+    tables_of,
+    window_of,
+)
 from wavejig.sheets.common import block, general_mm, plus_minus, sheet_text
 from wavejig.sheets.fit import best_scale
 from wavejig.sheets.fonts import width_mm
@@ -27,22 +40,16 @@ from wavejig.sheets.model import (
     Item,
     Line,
     LinearDim,
-    RadiusDim,
     Ring,
     Shape,
     Sheet,
-    Table,
     Text,
     View,
     number,
-    scale_text,
 )
 
-SEEN = "seen from the radiator side"
-HOLE_TABLE, BEND_TABLE = "hole-table", "bend-table"
 # Paper kept free round the blank for its dimension lines.
 _AROUND_MM = 26.0
-_TABLES_WIDE_MM = 84.0
 _DETAIL_REACH_MM = 17.0  # half the side of the feed's detail, unless the holes want more
 
 
@@ -51,8 +58,8 @@ def blank_drawing(design: Design, tray: Tray, pattern: FlatPattern) -> Sheet:
     paper = landscape(design.sheet.paper)
     x0, y0, x1, y1 = room(paper)
     wide, high = pattern.size_mm
-    detail_holes = _crowd(tray)
-    table_left = x1 - _TABLES_WIDE_MM
+    detail_holes = crowd(tray)
+    table_left = x1 - TABLES_WIDE_MM
     room_wide = table_left - x0 - 2.0 * _AROUND_MM
     room_high = y1 - y0 - 2.0 * _AROUND_MM - 4.0
     scale = best_scale(wide, high, room_wide, room_high, most=2.0)
@@ -69,16 +76,14 @@ def blank_drawing(design: Design, tray: Tray, pattern: FlatPattern) -> Sheet:
             title_at=(middle[0], y0 + 1.0),
         )
     ]
-    tables = [*_tables(tray, labels, table_left, y1)]
+    tables = [*tables_of(tray, labels, table_left, y1)]
     below = tables[-1].at[1] - tables[-1].height_mm - 3.0
-    mitred = _corner_window(tray) is not None
-    wide_mm = 31.0 if mitred else _TABLES_WIDE_MM
+    mitred = corner_window(tray) is not None
+    wide_mm = 31.0 if mitred else TABLES_WIDE_MM
     if in_detail:
-        views.append(_detail(tray, detail_holes, labels, table_left, below, y0, wide_mm))
+        views.append(feed_detail(tray, detail_holes, labels, table_left, below, y0, wide_mm))
     if mitred:
-        views.append(
-            _corner_detail(tray, pattern, table_left + wide_mm, below, y0, _TABLES_WIDE_MM - wide_mm)
-        )
+        views.append(corner_detail(tray, pattern, table_left + wide_mm, below, y0, TABLES_WIDE_MM - wide_mm))
     notes = (
         "All bends fold UP, towards the viewer. The face shown is the face that looks at the radiator.",
         "Holes: x to the right, y upwards from the datum (crossing of the centre lines = middle of the "
@@ -107,30 +112,12 @@ def blank_drawing(design: Design, tray: Tray, pattern: FlatPattern) -> Sheet:
     )
 
 
-def hole_labels(tray: Tray) -> tuple[str, ...]:
-    """A letter and number for each hole: A1, A2 for alike ones in the order they stand in the tray."""
-    kinds: dict[tuple[str, float], str] = {}
-    counts: dict[str, int] = {}
-    out = []
-    for hole in tray.holes:
-        letter = kinds.setdefault((hole.purpose, hole.diameter_mm), chr(ord("A") + len(kinds) % 26))
-        counts[letter] = counts.get(letter, 0) + 1
-        out.append(f"{letter}{counts[letter]}")
-    return tuple(x if counts[x[0]] > 1 else x[0] for x in out)
-
-
 def _symmetrical(tray: Tray) -> bool:
     return all(
         (a is None) == (b is None)
         and (a is None or b is None or (a.height_mm, a.angle_deg) == (b.height_mm, b.angle_deg))
         for a, b in ((tray.lip("x+"), tray.lip("x-")), (tray.lip("y+"), tray.lip("y-")))
     )
-
-
-def _crowd(tray: Tray) -> list[Hole]:
-    """Holes of the feed, which stand too close for labels at a small scale."""
-    feed = [h for h in tray.holes if h.purpose in ("connector", "flange", "foot", "tube")]
-    return feed if len(feed) > 1 else []
 
 
 def _main(
@@ -156,7 +143,7 @@ def _main(
             r = hole.diameter_mm / 2.0 + 1.2 / scale
             yield Text(at=(hole.x_mm + r * 0.75, hole.y_mm + r * 0.75), text=label, height_mm=DIM_TEXT_MM)
     if in_detail:
-        half, cx, cy = _window([h for h in tray.holes if id(h) in in_detail])
+        half, cx, cy = window_of([h for h in tray.holes if id(h) in in_detail])
         yield Chain(
             points=(
                 (cx - half, cy - half),
@@ -168,7 +155,7 @@ def _main(
             pen="thin",
         )
         yield Text(at=(cx + half, cy + half), text="F", height_mm=DIM_TEXT_MM, shift=(0.8, 0.8), bold=True)
-    if window := _corner_window(tray):
+    if window := corner_window(tray):
         xa, ya, xb, yb = window
         yield Chain(points=((xa, ya), (xb, ya), (xb, yb), (xa, yb)), closed=True, pen="thin")
         yield Text(at=(xb, yb), text="K", height_mm=DIM_TEXT_MM, shift=(0.8, 0.8), bold=True)
@@ -239,231 +226,7 @@ def _sizes(design: Design, tray: Tray, pattern: FlatPattern) -> Iterator[Item]:
             yield LinearDim(a=(0.0, y1), b=(on[0], y1), offset_mm=10.0)
         else:
             yield LinearDim(a=(x1, 0.0), b=(x1, on[1]), offset_mm=-10.0, angle_deg=90.0)
-    yield from _corner_sizes(pattern.outline, _corner_window(tray), within=False)
+    yield from corner_sizes(pattern.outline, corner_window(tray), within=False)
     for lip in tray.lips:
         if lip.left.ear_mm is not None:
-            yield from _ear_sizes(lip)
-
-
-def _ear_sizes(lip: TrayLip) -> Iterator[Item]:
-    """How far a mitred lip's ears reach, on the two edges whose sides are free."""
-    assert lip.left.ear_mm is not None
-    start = lip.bend_end_mm + lip.left.ear_mm
-    foot, tip = lip.left.reach_mm(lip.left.ear_mm), lip.left.reach_mm(lip.flange_mm)
-    same = abs(foot - tip) < 1e-6
-    if lip.edge == "y+":
-        y = lip.tip_mm
-        yield LinearDim(a=(-tip, y), b=(tip, y), offset_mm=18.0)
-        if not same:
-            yield LinearDim(a=(-foot, start), b=(foot, start), offset_mm=-6.0)
-    if lip.edge == "x+":
-        x = lip.tip_mm
-        yield LinearDim(a=(x, -tip), b=(x, tip), offset_mm=-18.0, angle_deg=90.0)
-        if not same:
-            yield LinearDim(a=(start, -foot), b=(start, foot), offset_mm=6.0, angle_deg=90.0)
-
-
-def _corner_sizes(
-    outline: Contour, window: tuple[float, float, float, float] | None, *, within: bool
-) -> Iterator[Item]:
-    """Radii of the outline's arcs in the corner at x+, y+ (all four are alike).
-
-    window: x0, y0, x1, y1 of the corner's detail; only the arcs within it, or only those without.
-    """
-    done: set[tuple[float, bool]] = set()
-    arcs = sorted(_arcs(outline), key=lambda a: -(a[0][0] + 2.0 * a[0][1]))
-    for centre, radius, middle_deg, hollow in arcs:
-        x = centre[0] + radius * math.cos(math.radians(middle_deg))
-        y = centre[1] + radius * math.sin(math.radians(middle_deg))
-        key = (round(radius, 6), hollow)
-        if x <= 0.0 or y <= 0.0 or key in done:
-            continue
-        if window and (window[0] <= x <= window[2] and window[1] <= y <= window[3]) != within:
-            continue
-        done.add(key)
-        count = sum(1 for _, r, _, h in arcs if (round(r, 6), h) == key)
-        yield RadiusDim(
-            centre=centre,
-            radius_mm=radius,
-            angle_deg=middle_deg,
-            inside=hollow,
-            reach_mm=9.0 if not hollow else 14.0,
-            before=f"{count}\u00d7 " if count > 1 else "",
-        )
-
-
-def _corner_window(tray: Tray) -> tuple[float, float, float, float] | None:
-    """The stretch of sheet round the corner at x+, y+ that is drawn larger when lips are mitred."""
-    a, b = tray.lip("x+"), tray.lip("y+")
-    if a is None or b is None or a.right.ear_mm is None or b.left.ear_mm is None:
-        return None
-    past = a.right.ear_mm + 0.6
-    x = a.bend_end_mm + a.right.ear_mm
-    y = b.bend_end_mm + b.left.ear_mm
-    return (b.left.half_mm - past, a.right.half_mm - past, x + past, y + past)
-
-
-def _corner_detail(
-    tray: Tray, pattern: FlatPattern, left: float, top: float, bottom: float, wide: float
-) -> View:
-    """The mitred corner at x+, y+, with where its ears begin (from the bend lines) and its radii."""
-    window = _corner_window(tray)
-    assert window is not None
-    a, b = tray.lip("x+"), tray.lip("y+")
-    assert a is not None and b is not None and a.right.ear_mm is not None and b.left.ear_mm is not None
-    x0, y0, x1, y1 = window
-    cx, cy = (x0 + x1) / 2.0, (y0 + y1) / 2.0
-    scale = best_scale(x1 - x0, y1 - y0, wide - 18.0, top - bottom - 26.0, most=5.0)
-    items: list[Item] = []
-    for run in clipped(pattern.outline, window):
-        items.append(Chain(points=tuple((x - cx, y - cy) for x, y in run), pen="outline"))
-    bend_x, bend_y = (a.tangent_mm + a.bend_end_mm) / 2.0, (b.tangent_mm + b.bend_end_mm) / 2.0
-    items.append(Line(a=(bend_x - cx, y0 - cy), b=(bend_x - cx, a.right.half_mm - cy), pen="bend"))
-    items.append(Line(a=(x0 - cx, bend_y - cy), b=(b.left.half_mm - cx, bend_y - cy), pen="bend"))
-    ear_x, ear_y = a.bend_end_mm + a.right.ear_mm, b.bend_end_mm + b.left.ear_mm
-    items.append(LinearDim(a=(bend_x - cx, y0 - cy), b=(ear_x - cx, a.right.half_mm - cy), offset_mm=-5.0))
-    items.append(
-        LinearDim(
-            a=(x0 - cx, bend_y - cy), b=(b.left.half_mm - cx, ear_y - cy), offset_mm=5.0, angle_deg=90.0
-        )
-    )
-    for count, dim in enumerate(_corner_sizes(pattern.outline, window, within=True)):
-        assert isinstance(dim, RadiusDim)
-        centre = (dim.centre[0] - cx, dim.centre[1] - cy)
-        items.append(replace(dim, centre=centre, reach_mm=(8.0, 16.0, 24.0)[count % 3]))
-    at = (left + wide / 2.0 - 3.0, (top + bottom) / 2.0 + 4.0)
-    return View(
-        title=f"K ({scale_text(scale)})",
-        items=tuple(items),
-        at=at,
-        scale=scale,
-        title_at=(left + wide / 2.0, bottom + 0.8),
-    )
-
-
-def clipped(
-    outline: Contour, window: tuple[float, float, float, float]
-) -> Iterator[tuple[tuple[float, float], ...]]:
-    """The stretches of an outline inside a window, as chains; cut to the window's edge within 0.05 mm."""
-    x0, y0, x1, y1 = window
-    loop = outline.points(0.005)
-    dense: list[np.ndarray] = []
-    for p, q in zip(loop, np.roll(loop, -1, axis=0), strict=True):
-        n = max(1, math.ceil(float(np.hypot(*(q - p))) / 0.05))
-        dense.extend(p + (q - p) * k / n for k in range(n))
-    keep = [bool(x0 <= p[0] <= x1 and y0 <= p[1] <= y1) for p in dense]
-    if all(keep) or not any(keep):
-        return
-    start = next(i for i in range(len(keep)) if keep[i] and not keep[i - 1])
-    run: list[tuple[float, float]] = []
-    for i in range(len(dense) + 1):
-        k = (start + i) % len(dense)
-        if i < len(dense) and keep[k]:
-            run.append((float(dense[k][0]), float(dense[k][1])))
-        elif run:
-            if len(run) > 1:
-                yield tuple(run)
-            run = []
-
-
-def _arcs(outline: Contour) -> Iterator[tuple[tuple[float, float], float, float, bool]]:
-    """Centre, radius, direction of the arc's middle from the centre, and whether it is a hollow corner."""
-    vertices = outline.vertices
-    for (x0, y0, bulge), (x1, y1, _) in zip(vertices, (*vertices[1:], vertices[0]), strict=True):
-        if not bulge:
-            continue
-        theta = 4.0 * math.atan(abs(bulge))
-        radius = math.hypot(x1 - x0, y1 - y0) / (2.0 * math.sin(theta / 2.0))
-        offset = (1.0 - bulge**2) / (4.0 * bulge)
-        centre = ((x0 + x1) / 2.0 - (y1 - y0) * offset, (y0 + y1) / 2.0 + (x1 - x0) * offset)
-        chord = math.degrees(math.atan2(y1 - y0, x1 - x0))
-        yield centre, radius, chord - math.copysign(90.0, bulge), bulge < 0.0
-
-
-def _tables(tray: Tray, labels: tuple[str, ...], left: float, top: float) -> Iterator[Table]:
-    rows = tuple(
-        (label, number(h.x_mm), number(h.y_mm), f"\u00d8{number(h.diameter_mm)}", h.purpose)
-        for label, h in zip(labels, tray.holes, strict=True)
-    )
-    holes = Table(
-        title="HOLES from the datum, mm",
-        head=("hole", "x", "y", "size", "for"),
-        rows=rows,
-        widths_mm=(12.0, 17.0, 17.0, 15.0, 21.0),
-        at=(left, top),
-        name=HOLE_TABLE,
-    )
-    yield holes
-    if not tray.lips:
-        return
-    bends = Table(
-        title="BENDS, mm",
-        head=("edge", "datum to bend", "edge to bend", "angle", "R inside"),
-        rows=tuple(
-            (
-                lip.edge,
-                number((lip.tangent_mm + lip.bend_end_mm) / 2.0),
-                f"({number(lip.tip_mm - (lip.tangent_mm + lip.bend_end_mm) / 2.0)})",
-                f"UP {number(lip.angle_deg)}\u00b0",
-                number(tray.inside_radius_mm),
-            )
-            for lip in tray.lips
-        ),
-        widths_mm=(10.0, 22.0, 20.0, 15.0, 15.0),
-        at=(left, top - holes.height_mm - 4.0),
-        name=BEND_TABLE,
-    )
-    yield bends
-    lip = tray.lips[0]
-    yield Table(
-        title="BEND FIGURES",
-        head=("allowance", "deduction", "K-factor", "setback"),
-        rows=(
-            (
-                number(lip.allowance_mm, 3),
-                number(lip.deduction_mm, 3),
-                number(lip.k_factor, 3),
-                number(lip.setback_mm, 3),
-            ),
-        ),
-        widths_mm=(20.5, 20.5, 20.5, 20.5),
-        at=(left, bends.at[1] - bends.height_mm - 4.0),
-        name="bend-figures",
-    )
-
-
-def _window(holes: list[Hole]) -> tuple[float, float, float]:
-    """Half side, x and y of the square round some holes."""
-    xs = [v for h in holes for v in (h.x_mm - h.diameter_mm / 2.0, h.x_mm + h.diameter_mm / 2.0)]
-    ys = [v for h in holes for v in (h.y_mm - h.diameter_mm / 2.0, h.y_mm + h.diameter_mm / 2.0)]
-    half = max(max(xs) - min(xs), max(ys) - min(ys)) / 2.0 + 3.5
-    return half, (max(xs) + min(xs)) / 2.0, (max(ys) + min(ys)) / 2.0
-
-
-def _detail(
-    tray: Tray,
-    holes: list[Hole],
-    labels: tuple[str, ...],
-    left: float,
-    top: float,
-    bottom: float,
-    wide: float,
-) -> View:
-    half, cx, cy = _window(holes)
-    scale = best_scale(2.0 * half, 2.0 * half, wide - 2.0, top - bottom - 8.0, most=5.0)
-    names = dict(zip((id(h) for h in tray.holes), labels, strict=True))
-    items: list[Item] = [
-        Line(a=(-half, -cy), b=(half, -cy), pen="centre"),
-        Line(a=(-cx, -half), b=(-cx, half), pen="centre"),
-        Chain(points=((-half, -half), (half, -half), (half, half), (-half, half)), closed=True, pen="thin"),
-    ]
-    for hole in holes:
-        c = Circle(x_mm=hole.x_mm - cx, y_mm=hole.y_mm - cy, diameter_mm=hole.diameter_mm)
-        items.append(Ring(circle=c, cross=True))
-        r = hole.diameter_mm / 2.0 + 0.8 / scale
-        items.append(
-            Text(at=(c.x_mm + r * 0.72, c.y_mm + r * 0.72), text=names[id(hole)], height_mm=DIM_TEXT_MM)
-        )
-    at = (left + wide / 2.0 - 1.0, (top + bottom) / 2.0 + 2.5)
-    title = f"F ({scale_text(scale)}): {SEEN}" if wide > 60.0 else f"F ({scale_text(scale)})"
-    return View(title=title, items=tuple(items), at=at, scale=scale, title_at=(at[0], bottom + 0.8))
+            yield from ear_sizes(lip)

@@ -24,17 +24,7 @@ from wavejig.files.dxf import fixed_metadata
 from wavejig.files.errors import FileCheckError
 from wavejig.files.names import clean_name
 from wavejig.sheets.frame import everything
-from wavejig.sheets.layout import (
-    ARROW_MM,
-    GAP_MM,
-    OVER_MM,
-    TEXT_OFF_MM,
-    DimGroup,
-    Drawn,
-    Head,
-    Stroke,
-    Word,
-)
+from wavejig.sheets.marks import ARROW_MM, GAP_MM, OVER_MM, TEXT_OFF_MM, DimGroup, Drawn, Head, Stroke, Word
 from wavejig.sheets.model import DIM_TEXT_MM, Pen, Pt, Sheet
 
 # layer name, DXF colour index, linetype of each pen; colours are taste, no source

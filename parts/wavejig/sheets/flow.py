@@ -14,7 +14,7 @@ from reportlab.pdfgen.canvas import Canvas
 from reportlab.platypus import Flowable, Paragraph, Table
 
 from wavejig.sheets.fonts import BOLD, REGULAR, printable, use_fonts
-from wavejig.sheets.layout import Drawn
+from wavejig.sheets.marks import Drawn
 from wavejig.sheets.pdf import draw
 
 GREY, PALE = Color(0.45, 0.45, 0.45), Color(0.92, 0.92, 0.92)

@@ -6,7 +6,8 @@ from collections.abc import Iterator
 
 from wavejig.geometry.plane import Circle, Contour
 from wavejig.sheets.fonts import width_mm
-from wavejig.sheets.layout import Drawn, Stroke, Word, lay_out
+from wavejig.sheets.layout import lay_out
+from wavejig.sheets.marks import Drawn, Stroke, Word
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
     ROW_MM,

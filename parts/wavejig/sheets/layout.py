@@ -8,16 +8,25 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable, Iterable, Iterator
-from dataclasses import dataclass
-from typing import Literal
 
 import numpy as np
 
 from wavejig.geometry.plane import Circle, Contour
 from wavejig.sheets.fonts import width_mm
+from wavejig.sheets.marks import (
+    ARROW_MM,
+    GAP_MM,
+    OVER_MM,
+    TEXT_OFF_MM,
+    DimGroup,
+    Drawn,
+    Head,
+    Stroke,
+    Word,
+    arrow_head,
+)
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
-    Anchor,
     AngleDim,
     Arrow,
     Chain,
@@ -26,7 +35,6 @@ from wavejig.sheets.model import (
     Item,
     Line,
     LinearDim,
-    Pen,
     Pt,
     RadiusDim,
     Ring,
@@ -35,62 +43,6 @@ from wavejig.sheets.model import (
     View,
     number,
 )
-
-# Arrow, gap to the part and overshoot of extension lines: after ISO 129-1, from memory.
-ARROW_MM, GAP_MM, OVER_MM, TEXT_OFF_MM = 2.5, 0.8, 1.5, 0.8
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Stroke:
-    """A chain of straights on paper, a closed contour with its holes, or a circle."""
-
-    points: tuple[Pt, ...] = ()
-    contour: Contour | None = None
-    holes: tuple[Contour, ...] = ()
-    circle: Circle | None = None
-    pen: Pen = "thin"
-    filled: bool = False
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Head:
-    """A filled arrow head: tip, then the two corners of its back."""
-
-    tip: Pt
-    back: tuple[Pt, Pt]
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Word:
-    """One line of lettering on paper."""
-
-    at: Pt
-    text: str
-    height_mm: float
-    anchor: Anchor
-    rotation_deg: float = 0.0
-    bold: bool = False
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class DimGroup:
-    """One dimension: its parts, what it measures, and its definition points on paper.
-
-    kind: "linear", "diameter", "radius" or "angle". points: linear: a, b, on the dimension line; diameter: two
-    opposite rim points; radius: centre, rim; angle: vertex, a point on each side, one on the arc. value: true
-    mm or deg. factor: true mm for one paper mm.
-    """
-
-    kind: Literal["linear", "diameter", "radius", "angle"]
-    parts: tuple[Stroke | Head | Word, ...]
-    points: tuple[Pt, ...]
-    angle_deg: float
-    value: float
-    text: str
-    factor: float
-
-
-Drawn = Stroke | Head | Word | DimGroup
 
 
 def lay_out(view: View) -> Iterator[Drawn]:
@@ -141,7 +93,7 @@ def _item(item: Item, view: View) -> Iterator[Drawn]:
             # a wide line would blunt the head's point
             neck = (tip[0] - ARROW_MM * math.cos(heading), tip[1] - ARROW_MM * math.sin(heading))
             yield Stroke(points=(tail, neck), pen=item.pen)
-            yield _head(tip, heading)
+            yield arrow_head(tip, heading)
         case _:
             yield _dim(item, view, put)
 
@@ -185,10 +137,10 @@ def _linear(dim: LinearDim, a: Pt, b: Pt, view: View) -> DimGroup:
     inside = length >= 2.0 * ARROW_MM + 1.0
     if inside:
         parts.append(Stroke(points=(_pt(fa), _pt(fb))))
-        parts += [_head(_pt(fa), t + math.pi), _head(_pt(fb), t)]
+        parts += [arrow_head(_pt(fa), t + math.pi), arrow_head(_pt(fb), t)]
     else:
         parts.append(Stroke(points=(_pt(fa - u * 2.0 * ARROW_MM), _pt(fb + u * 2.0 * ARROW_MM))))
-        parts += [_head(_pt(fa), t), _head(_pt(fb), t + math.pi)]
+        parts += [arrow_head(_pt(fa), t), arrow_head(_pt(fb), t + math.pi)]
     if wide + 1.0 <= length:
         middle = (fa + fb) / 2.0
     else:  # beside the line's end, on a shelf of its own
@@ -215,7 +167,7 @@ def _diameter(dim: DiameterDim, centre: Pt, view: View) -> DimGroup:
     rim, far = c + u * r, c + u * (r + dim.reach_mm)
     text = f"{dim.before}\u00d8{number(dim.circle.diameter_mm)}{dim.after}"
     parts: list[Stroke | Head | Word] = [Stroke(points=(_pt(far), _pt(rim)))]
-    parts.append(_head(_pt(rim), math.radians(dim.angle_deg) + math.pi))
+    parts.append(arrow_head(_pt(rim), math.radians(dim.angle_deg) + math.pi))
     parts += _shelf(far, u, text)
     return DimGroup(
         kind="diameter",
@@ -236,7 +188,7 @@ def _radius(dim: RadiusDim, centre: Pt, view: View) -> DimGroup:
     far = c - u * max(dim.reach_mm - r, 1.0) if dim.inside else c + u * (r + dim.reach_mm)
     text = f"{dim.before}R{number(dim.radius_mm)}{dim.after}"
     parts: list[Stroke | Head | Word] = [Stroke(points=(_pt(far), _pt(rim)))]
-    parts.append(_head(_pt(rim), math.radians(dim.angle_deg) + (0.0 if dim.inside else math.pi)))
+    parts.append(arrow_head(_pt(rim), math.radians(dim.angle_deg) + (0.0 if dim.inside else math.pi)))
     parts += _shelf(far, -u if dim.inside else u, text)
     return DimGroup(
         kind="radius",
@@ -258,8 +210,8 @@ def _angle(dim: AngleDim, vertex: Pt, view: View) -> DimGroup:
     middle = dim.from_deg + turn / 2.0
     away = _unit(middle)
     parts: list[Stroke | Head | Word] = [Stroke(points=tuple(_pt(p) for p in arc))]
-    parts.append(_head(_pt(arc[-1]), math.radians(dim.from_deg + turn + 90.0)))
-    parts.append(_head(_pt(arc[0]), math.radians(dim.from_deg - 90.0)))
+    parts.append(arrow_head(_pt(arc[-1]), math.radians(dim.from_deg + turn + 90.0)))
+    parts.append(arrow_head(_pt(arc[0]), math.radians(dim.from_deg - 90.0)))
     for a in (dim.from_deg, dim.to_deg):
         parts.append(Stroke(points=(_pt(v), _pt(v + _unit(a) * (dim.radius_mm + OVER_MM)))))
     wide = width_mm(text, DIM_TEXT_MM)
@@ -297,15 +249,6 @@ def _shelf(far: np.ndarray, u: np.ndarray, text: str) -> Iterable[Stroke | Word]
 
 def _word(at: Pt, text: str, rotation_deg: float) -> Word:
     return Word(at=at, text=text, height_mm=DIM_TEXT_MM, anchor="centre", rotation_deg=rotation_deg)
-
-
-def _head(tip: Pt, direction_rad: float) -> Head:
-    """An arrow head that points in a direction: slender, 15 degrees from side to side or so."""
-    back = []
-    for side in (1.0, -1.0):
-        a = direction_rad + math.pi + side * math.radians(8.0)
-        back.append((tip[0] + ARROW_MM * math.cos(a), tip[1] + ARROW_MM * math.sin(a)))
-    return Head(tip=tip, back=(back[0], back[1]))
 
 
 def _unit(angle_deg: float) -> np.ndarray:

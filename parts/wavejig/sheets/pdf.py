@@ -14,7 +14,7 @@ from wavejig.files.errors import FileCheckError
 from wavejig.geometry.plane import Contour
 from wavejig.sheets.fonts import BOLD, CAP_HEIGHT, REGULAR, printable, use_fonts
 from wavejig.sheets.frame import everything
-from wavejig.sheets.layout import DimGroup, Drawn, Head, Stroke, Word
+from wavejig.sheets.marks import DimGroup, Drawn, Head, Stroke, Word
 from wavejig.sheets.model import Pen, Sheet
 
 # Line widths in mm after ISO 128-2's series (0.5 wide, 0.25 narrow), from memory, one step thinner on A4;

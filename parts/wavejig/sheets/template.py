@@ -12,7 +12,8 @@ from wavejig.radiator.drawing import views as plan_views
 from wavejig.radiator.model import Radiator
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import Tray
-from wavejig.sheets.layout import Drawn, Stroke, Word, lay_out
+from wavejig.sheets.layout import lay_out
+from wavejig.sheets.marks import Drawn, Stroke, Word
 from wavejig.sheets.model import Chain, Item, Line, Ring, Shape, View
 
 BAR_MM = 100.0

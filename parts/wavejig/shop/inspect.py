@@ -15,6 +15,7 @@ from wavejig.reflector.model import Tray, TrayError
 from wavejig.reflector.tray import corner_practice
 from wavejig.reflector.tray import plan as plan_tray
 from wavejig.shop.bench import bench_findings
+from wavejig.shop.bending import springback_findings
 from wavejig.shop.electrical import electrical_findings
 from wavejig.shop.feed import conflict_findings, feed_findings, value_findings
 from wavejig.shop.finding import ERROR, Finding
@@ -78,6 +79,7 @@ def inspect(design: Design) -> Inspection:
         found += spacer_findings(design, spacer)
         fixture = plan_fixture(design, radiator, None if tray is None else tray.outline)
         found += fixture_findings(design, fixture)
+        found += springback_findings(design, radiator, fixture)
     return Inspection(
         design=design,
         radiator=radiator,

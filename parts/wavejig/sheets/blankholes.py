@@ -1,0 +1,137 @@
+"""Holes of the blank: their labels, table, and the crowd round the feed drawn larger. Lengths in mm."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+
+from wavejig.design.model import Hole
+from wavejig.geometry.plane import Circle
+from wavejig.reflector.model import Tray
+from wavejig.sheets.blankcorners import (
+    SEEN,
+)
+from wavejig.sheets.fit import best_scale
+from wavejig.sheets.model import (
+    DIM_TEXT_MM,
+    Chain,
+    Item,
+    Line,
+    Ring,
+    Table,
+    Text,
+    View,
+    number,
+    scale_text,
+)
+
+HOLE_TABLE, BEND_TABLE = "hole-table", "bend-table"
+
+
+TABLES_WIDE_MM = 84.0
+
+
+def hole_labels(tray: Tray) -> tuple[str, ...]:
+    """A letter and number for each hole: A1, A2 for alike ones in the order they stand in the tray."""
+    kinds: dict[tuple[str, float], str] = {}
+    counts: dict[str, int] = {}
+    out = []
+    for hole in tray.holes:
+        letter = kinds.setdefault((hole.purpose, hole.diameter_mm), chr(ord("A") + len(kinds) % 26))
+        counts[letter] = counts.get(letter, 0) + 1
+        out.append(f"{letter}{counts[letter]}")
+    return tuple(x if counts[x[0]] > 1 else x[0] for x in out)
+
+
+def crowd(tray: Tray) -> list[Hole]:
+    """Holes of the feed, which stand too close for labels at a small scale."""
+    feed = [h for h in tray.holes if h.purpose in ("connector", "flange", "foot", "tube")]
+    return feed if len(feed) > 1 else []
+
+
+def tables_of(tray: Tray, labels: tuple[str, ...], left: float, top: float) -> Iterator[Table]:
+    rows = tuple(
+        (label, number(h.x_mm), number(h.y_mm), f"\u00d8{number(h.diameter_mm)}", h.purpose)
+        for label, h in zip(labels, tray.holes, strict=True)
+    )
+    holes = Table(
+        title="HOLES from the datum, mm",
+        head=("hole", "x", "y", "size", "for"),
+        rows=rows,
+        widths_mm=(12.0, 17.0, 17.0, 15.0, 21.0),
+        at=(left, top),
+        name=HOLE_TABLE,
+    )
+    yield holes
+    if not tray.lips:
+        return
+    bends = Table(
+        title="BENDS, mm",
+        head=("edge", "datum to bend", "edge to bend", "angle", "R inside"),
+        rows=tuple(
+            (
+                lip.edge,
+                number((lip.tangent_mm + lip.bend_end_mm) / 2.0),
+                f"({number(lip.tip_mm - (lip.tangent_mm + lip.bend_end_mm) / 2.0)})",
+                f"UP {number(lip.angle_deg)}\u00b0",
+                number(tray.inside_radius_mm),
+            )
+            for lip in tray.lips
+        ),
+        widths_mm=(10.0, 22.0, 20.0, 15.0, 15.0),
+        at=(left, top - holes.height_mm - 4.0),
+        name=BEND_TABLE,
+    )
+    yield bends
+    lip = tray.lips[0]
+    yield Table(
+        title="BEND FIGURES",
+        head=("allowance", "deduction", "K-factor", "setback"),
+        rows=(
+            (
+                number(lip.allowance_mm, 3),
+                number(lip.deduction_mm, 3),
+                number(lip.k_factor, 3),
+                number(lip.setback_mm, 3),
+            ),
+        ),
+        widths_mm=(20.5, 20.5, 20.5, 20.5),
+        at=(left, bends.at[1] - bends.height_mm - 4.0),
+        name="bend-figures",
+    )
+
+
+def window_of(holes: list[Hole]) -> tuple[float, float, float]:
+    """Half side, x and y of the square round some holes."""
+    xs = [v for h in holes for v in (h.x_mm - h.diameter_mm / 2.0, h.x_mm + h.diameter_mm / 2.0)]
+    ys = [v for h in holes for v in (h.y_mm - h.diameter_mm / 2.0, h.y_mm + h.diameter_mm / 2.0)]
+    half = max(max(xs) - min(xs), max(ys) - min(ys)) / 2.0 + 3.5
+    return half, (max(xs) + min(xs)) / 2.0, (max(ys) + min(ys)) / 2.0
+
+
+def feed_detail(
+    tray: Tray,
+    holes: list[Hole],
+    labels: tuple[str, ...],
+    left: float,
+    top: float,
+    bottom: float,
+    wide: float,
+) -> View:
+    half, cx, cy = window_of(holes)
+    scale = best_scale(2.0 * half, 2.0 * half, wide - 2.0, top - bottom - 8.0, most=5.0)
+    names = dict(zip((id(h) for h in tray.holes), labels, strict=True))
+    items: list[Item] = [
+        Line(a=(-half, -cy), b=(half, -cy), pen="centre"),
+        Line(a=(-cx, -half), b=(-cx, half), pen="centre"),
+        Chain(points=((-half, -half), (half, -half), (half, half), (-half, half)), closed=True, pen="thin"),
+    ]
+    for hole in holes:
+        c = Circle(x_mm=hole.x_mm - cx, y_mm=hole.y_mm - cy, diameter_mm=hole.diameter_mm)
+        items.append(Ring(circle=c, cross=True))
+        r = hole.diameter_mm / 2.0 + 0.8 / scale
+        items.append(
+            Text(at=(c.x_mm + r * 0.72, c.y_mm + r * 0.72), text=names[id(hole)], height_mm=DIM_TEXT_MM)
+        )
+    at = (left + wide / 2.0 - 1.0, (top + bottom) / 2.0 + 2.5)
+    title = f"F ({scale_text(scale)}): {SEEN}" if wide > 60.0 else f"F ({scale_text(scale)})"
+    return View(title=title, items=tuple(items), at=at, scale=scale, title_at=(at[0], bottom + 0.8))
