@@ -205,12 +205,8 @@ def test_no_view_of_the_blank_is_mirrored(written: Callable[[str], Path]) -> Non
 
 
 def test_the_nest_is_the_mirror_image_and_says_so(written: Callable[[str], Path]) -> None:
-    texts = [
-        t.plain_text()
-        for t in ezdxf.readfile(written("saltmarsh-2g4") / "drawings" / "fixture.dxf")
-        .modelspace()
-        .query("TEXT")
-    ]
+    path = written("saltmarsh-2g4") / "drawings" / "fixture.dxf"
+    texts = [t.plain_text() for t in ezdxf.readfile(path).modelspace().query("TEXT")]
     (nest,) = [t for t in texts if t.startswith("CHECK NEST")]
     assert "face DOWN" in nest and "mirror image" in nest
     (board,) = [t for t in texts if t.startswith("BENDING BOARD")]

@@ -5,7 +5,7 @@ from __future__ import annotations
 import itertools
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from wavejig.geometry.plane import Contour
 from wavejig.radiator.drawing import views as plan_views
@@ -13,8 +13,8 @@ from wavejig.radiator.model import Radiator
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import Tray
 from wavejig.sheets.layout import lay_out
-from wavejig.sheets.marks import Drawn, Stroke, Word
-from wavejig.sheets.model import Chain, Item, Line, Ring, Shape, View
+from wavejig.sheets.marks import Drawn, Head, Stroke, Word
+from wavejig.sheets.model import Arrow, Chain, Item, Line, Ring, Shape, Text, View
 
 BAR_MM = 100.0
 OVERLAP_MM = 10.0  # of neighbouring tiles, to glue on; common practice, no source
@@ -58,7 +58,7 @@ def _radiator(radiator: Radiator) -> Iterator[Item]:
             yield Chain(points=line.points, pen="centre")
     low, high = radiator.main.path.bounds()
     yield Line(a=(low[0], 0.0), b=(high[0], 0.0), pen="grey")
-    yield Line(a=(0.0, low[1]), b=(0.0, high[1]), pen="grey")
+    yield from _up(low[1], high[1], 0.0)
 
 
 def _blank(tray: Tray, pattern: FlatPattern) -> Iterator[Item]:
@@ -72,6 +72,13 @@ def _blank(tray: Tray, pattern: FlatPattern) -> Iterator[Item]:
     x0, y0, x1, y1 = pattern.outline.bounds()
     yield Line(a=(x0, 0.0), b=(x1, 0.0), pen="centre")
     yield Line(a=(0.0, y0), b=(0.0, y1), pen="centre")
+    yield from _up(0.12 * y1, 0.42 * y1, 0.25 * x0)
+
+
+def _up(from_y: float, to_y: float, x: float) -> Iterator[Item]:
+    """Which way is up in the drawings: without it a turned template can be read two ways."""
+    yield Arrow(tail=(x, from_y), tip=(x, to_y))
+    yield Text(at=(x, (from_y + 2.0 * to_y) / 3.0), text="y+", shift=(1.2, 0.0))
 
 
 def _tiled(
@@ -124,12 +131,21 @@ def _placed(
     *,
     turned: bool,
 ) -> Iterator[Drawn]:
-    """Strokes moved (and turned) to a tile; what lies wholly outside its window is left out, chains are cut."""
+    """What is drawn, moved (and turned) to a tile; what lies outside its window is left out, chains are cut."""
 
     def put(x: float, y: float) -> tuple[float, float]:
         return (origin[0] - y, origin[1] + x) if turned else (origin[0] + x, origin[1] + y)
 
     for thing in drawn:
+        if isinstance(thing, Word):
+            at = put(*thing.at)
+            if _within(at, window):
+                yield replace(thing, at=at, rotation_deg=thing.rotation_deg + (90.0 if turned else 0.0))
+            continue
+        if isinstance(thing, Head):
+            if _within(put(*thing.tip), window):
+                yield Head(tip=put(*thing.tip), back=(put(*thing.back[0]), put(*thing.back[1])))
+            continue
         if not isinstance(thing, Stroke):
             continue
         if thing.contour is not None:
