@@ -7,26 +7,13 @@ Exit codes: 0 fine; 1 a design that cannot be made or misses a figure its recipe
 from __future__ import annotations
 
 import argparse
-import json
 import sys
+from importlib import import_module
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import Any
 
 import wavejig
-from wavejig.commands.telling import (
-    CANNOT_BE_MADE,
-    MACHINE,
-    OK,
-    WRONG_INPUT,
-    announce,
-    input_error,
-    say,
-    stop,
-    unreadable,
-)
-
-if TYPE_CHECKING:
-    from wavejig.shop import Finding, Inspection
+from wavejig.commands.telling import MACHINE, OK, WRONG_INPUT
 
 COMMANDS = ("new", "check", "match", "tune", "build", "yield", "measured", "stock")
 _OPTIONS = (
@@ -59,7 +46,7 @@ def main(argv: list[str] | None = None) -> int:
     """Run the command line; returns the exit code."""
     try:
         args = _parser().parse_args(argv)
-        return int(args.run(args))
+        return int(import_module(f"wavejig.commands.{args.module}").run(args))
     except KeyboardInterrupt:
         print("interrupted; packs already on disk are as they were", file=sys.stderr)  # noqa: T201
         return MACHINE
@@ -112,7 +99,7 @@ def _parser() -> argparse.ArgumentParser:
     )
     new.add_argument("file", nargs="?", type=Path, metavar="FILE", help="the recipe to write")
     new.add_argument("--schema", action="store_true", help="print the JSON Schema of recipes instead")
-    new.set_defaults(run=_new)
+    new.set_defaults(module="starting")
 
     check = command(
         "check",
@@ -120,7 +107,7 @@ def _parser() -> argparse.ArgumentParser:
         "  wavejig check saltmarsh-2g4.toml\n  wavejig check recipes/*.toml --json\n",
     )
     _recipes(check)
-    check.set_defaults(run=_check)
+    check.set_defaults(module="checking")
 
     match = command(
         "match",
@@ -129,11 +116,13 @@ def _parser() -> argparse.ArgumentParser:
         "  wavejig match recipes/*.toml --json\n",
     )
     _recipes(match)
-    match.add_argument("--plot", type=Path, metavar="FILE", help="draw the match and both cuts (png, svg, pdf)")
+    match.add_argument(
+        "--plot", type=Path, metavar="FILE", help="draw the match and both cuts (png, svg, pdf)"
+    )
     match.add_argument(
         "--as-is", action="store_true", help="do not tune: kept or starting values for what is auto"
     )
-    match.set_defaults(run=_match)
+    match.set_defaults(module="matching")
 
     tune = command(
         "tune",
@@ -148,7 +137,7 @@ def _parser() -> argparse.ArgumentParser:
     )  # fmt: skip
     tune.add_argument("--grid", default="0.05 mm", metavar="SIZE", help="what the shop can hold (0.05 mm)")
     tune.add_argument("--write", action="store_true", help="put the values into the recipe, comments kept")
-    tune.set_defaults(run=_tune)
+    tune.set_defaults(module="tuning")
 
     build = command(
         "build",
@@ -160,7 +149,7 @@ def _parser() -> argparse.ArgumentParser:
     build.add_argument(
         "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
     )
-    build.set_defaults(run=_build)
+    build.set_defaults(module="building")
 
     yields = command(
         "yield",
@@ -170,8 +159,10 @@ def _parser() -> argparse.ArgumentParser:
     )
     _recipes(yields)
     yields.add_argument("--plot", type=Path, metavar="FILE", help="draw it (png, svg, pdf)")
-    yields.add_argument("--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])")
-    yields.set_defaults(run=_yield)
+    yields.add_argument(
+        "--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])"
+    )
+    yields.set_defaults(module="yielding")
 
     measured = command(
         "measured",
@@ -181,7 +172,9 @@ def _parser() -> argparse.ArgumentParser:
         "  wavejig measured saltmarsh-2g4.toml batch/*.s1p --record record.csv\n",
     )
     measured.add_argument("recipe", type=Path, metavar="RECIPE", help="the recipe (TOML)")
-    measured.add_argument("sweeps", nargs="+", type=Path, metavar="SWEEP", help="Touchstone files (.s1p, .s2p)")
+    measured.add_argument(
+        "sweeps", nargs="+", type=Path, metavar="SWEEP", help="Touchstone files (.s1p, .s2p)"
+    )
     measured.add_argument(
         "--reading",
         action="append",
@@ -192,9 +185,11 @@ def _parser() -> argparse.ArgumentParser:
     measured.add_argument("--write", action="store_true", help="put what follows into the recipe")
     measured.add_argument("--record", type=Path, metavar="FILE", help="write a test record (.csv or .txt)")
     measured.add_argument("--plot", type=Path, metavar="FILE", help="draw it (png, svg, pdf)")
-    measured.add_argument("--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])")
+    measured.add_argument(
+        "--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])"
+    )
     measured.add_argument("--json", action="store_true", help="results as JSON on stdout")
-    measured.set_defaults(run=_measured)
+    measured.set_defaults(module="measuring")
 
     stock = command(
         "stock",
@@ -203,218 +198,13 @@ def _parser() -> argparse.ArgumentParser:
     )
     stock.add_argument("table", nargs="?", metavar="TABLE", help="a table's name; without one, the list")
     stock.add_argument("--json", action="store_true", help="for programs")
-    stock.set_defaults(run=_stock)
+    stock.set_defaults(module="stocking")
     return parser
 
 
 def _recipes(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("recipes", nargs="+", type=Path, metavar="RECIPE", help="recipe files (TOML)")
     parser.add_argument("--json", action="store_true", help="results as JSON on stdout")
-
-
-# -- commands -----------------------------------------------------------------------------------------
-
-
-def _new(args: argparse.Namespace) -> int:
-    if args.schema:
-        from wavejig.recipe.models import Recipe
-
-        schema = {"$schema": "https://json-schema.org/draft/2020-12/schema", **Recipe.model_json_schema()}
-        say(json.dumps(schema, indent=1))
-        return OK
-    if args.file is None:
-        return stop(WRONG_INPUT, "new: which file? Try: wavejig new my-antenna.toml")
-    from wavejig.recipe.starter import starter
-
-    try:
-        with args.file.open("x", encoding="utf-8", newline="\n") as stream:
-            stream.write(starter(args.file.stem))
-    except FileExistsError:
-        return stop(WRONG_INPUT, f"{args.file}: exists already, and is left as it is; choose another name")
-    except OSError as err:
-        return stop(MACHINE, f"{args.file}: cannot be written: {err.strerror}")
-    say(f"{args.file} written. Next: wavejig check {args.file}")
-    return OK
-
-
-def _check(args: argparse.Namespace) -> int:
-    from wavejig.pack import inspect_recipe
-    from wavejig.recipe import RecipeError
-
-    code, results = OK, []
-    for path in args.recipes:
-        try:
-            _, inspection = inspect_recipe(path)
-        except RecipeError as err:
-            code = max(code, WRONG_INPUT)
-            results.append(input_error(path, err, args.json))
-            continue
-        except OSError as err:
-            code = max(code, WRONG_INPUT)
-            results.append(unreadable(path, err, args.json))
-            continue
-        if not inspection.can_be_made:
-            code = max(code, CANNOT_BE_MADE)
-        results.append({"recipe": str(path), **_inspection_data(inspection)})
-        if not args.json:
-            say(_inspection_text(path, inspection))
-    if args.json:
-        say(json.dumps(results, indent=1))
-    return code
-
-
-def _yield(args: argparse.Namespace) -> int:
-    from wavejig.commands.yielding import run
-
-    return run(args)
-
-
-def _measured(args: argparse.Namespace) -> int:
-    from wavejig.commands.measuring import run
-
-    return run(args)
-
-
-def _match(args: argparse.Namespace) -> int:
-    from wavejig.commands.matching import run
-
-    return run(args)
-
-
-def _tune(args: argparse.Namespace) -> int:
-    from wavejig.commands.tuning import run
-
-    return run(args)
-
-
-def _build(args: argparse.Namespace) -> int:
-    from wavejig.pack import CannotBeMadeError, build
-    from wavejig.progress import Meter
-    from wavejig.recipe import RecipeError
-
-    code, results = OK, []
-    for path in args.recipes:
-        meter = Meter(path.name, sys.stderr, quiet=args.json)
-        try:
-            built = build(path, args.out, meter.step, predict=not args.skip_field, announce=announce)
-        except RecipeError as err:
-            meter.end()
-            code = max(code, WRONG_INPUT)
-            results.append(input_error(path, err, args.json))
-        except CannotBeMadeError as err:
-            meter.end()
-            code = max(code, CANNOT_BE_MADE)
-            results.append({"recipe": str(path), "pack": None, **_inspection_data(err.inspection)})
-            if not args.json:
-                sys.stderr.write(_inspection_text(path, err.inspection) + "\nNo pack was written.\n")
-        except OSError as err:
-            meter.end()
-            if err.filename is not None and Path(str(err.filename)) == path:
-                code = max(code, WRONG_INPUT)
-                results.append(unreadable(path, err, args.json))
-                continue
-            code = MACHINE
-            message = f"{path}: pack not written: {err.strerror or err}"
-            message += f" ({err.filename})" if err.filename else ""
-            results.append({"recipe": str(path), "pack": None, "error": message})
-            sys.stderr.write(f"{message}; an earlier pack is as it was\n")
-        else:
-            meter.end()
-            results.append(
-                {
-                    "recipe": str(path),
-                    "pack": str(built.folder),
-                    "files": built.files,
-                    "bytes": built.bytes,
-                    **_inspection_data(built.inspection),
-                }
-            )
-            if not args.json:
-                say(_built_text(built))
-            if not built.keeps_its_promise:
-                code = max(code, CANNOT_BE_MADE)
-                sys.stderr.write(f"{path}: the pack is written, but {_missed(built)}\n")
-    if args.json:
-        say(json.dumps(results, indent=1))
-    return code
-
-
-def _stock(args: argparse.Namespace) -> int:
-    from wavejig.stock.show import list_tables, table_data, table_text
-    from wavejig.stock.tables import UnknownTableError
-
-    if args.table is None:
-        say(json.dumps(list_tables(), indent=1) if args.json else _table_list(list_tables()))
-        return OK
-    try:
-        say(json.dumps(table_data(args.table), indent=1) if args.json else table_text(args.table))
-    except UnknownTableError as err:
-        return stop(WRONG_INPUT, str(err))
-    return OK
-
-
-# -- telling ------------------------------------------------------------------------------------------
-
-
-def _inspection_data(inspection: Inspection) -> dict[str, Any]:
-    return {
-        "name": inspection.design.name,
-        "can_be_made": inspection.can_be_made,
-        "values": {
-            k: {"value": v.value, "from": v.origin, "unit": v.unit} for k, v in inspection.design.values
-        },
-        "findings": [
-            {
-                "code": f.code,
-                "severity": f.severity,
-                "message": f.message,
-                "where": f.where,
-                "remedy": f.remedy,
-                "source": f.source,
-            }
-            for f in inspection.findings
-        ],
-    }
-
-
-def _inspection_text(path: Path, inspection: Inspection) -> str:
-    counts = {s: sum(f.severity == s for f in inspection.findings) for s in ("error", "warning", "note")}
-    verdict = "can be made" if inspection.can_be_made else "cannot be made"
-    head = f"{path}: {inspection.design.name} {verdict}: " + ", ".join(
-        f"{n} {word}{'' if n == 1 else 's'}" for word, n in counts.items()
-    )
-    lines = [head, *(_finding_text(f) for f in inspection.findings)]
-    width = max((len(k) for k, _ in inspection.design.values), default=0)
-    lines.append("  values:")
-    lines += [
-        f"    {key.replace('_', ' '):<{width}}  {value.value:9.3f} {value.unit:<3}  {value.origin}"
-        + (f": {value.source}" if value.source else "")
-        for key, value in inspection.design.values
-    ]
-    return "\n".join(lines)
-
-
-def _finding_text(f: Finding) -> str:
-    return f"  {f.severity:<7} {f.code} ({f.where}): {f.message}\n          {f.remedy}"
-
-
-def _built_text(built: Any) -> str:
-    counts = [f"{sum(f.severity == s for f in built.inspection.findings)} {s}s" for s in ("warning", "note")]
-    warnings = [_finding_text(f) for f in built.inspection.findings if f.severity == "warning"]
-    head = (
-        f"{built.folder}: {built.files} files, {built.bytes / 1e6:.1f} MB, each read back and found right; "
-        f"{' and '.join(counts)}"
-    )
-    return "\n".join([head, *warnings])
-
-
-def _missed(built: Any) -> str:
-    return next(f.message for f in built.inspection.findings if f.code == "prediction-misses")
-
-
-def _table_list(tables: list[dict[str, Any]]) -> str:
-    width = max(len(t["name"]) for t in tables)
-    return "\n".join(f"{t['name']:<{width}}  {t['title']} ({t['rows']} rows)" for t in tables)
 
 
 if __name__ == "__main__":

@@ -7,6 +7,8 @@ integrals, a route the product does not use.
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 from scipy.optimize import brentq
@@ -162,6 +164,15 @@ def test_two_dipoles_in_phase() -> None:
     assert response.directivity_dbi(across, voltages=(1.0, 0.0))[0, 0] == pytest.approx(5.978, abs=0.02)
     solved = solve(side_by_side(0.5, 1e-6, 40), [LIGHT_HZ])
     assert solved.directivity_dbi(across, voltages=(1.0, 1.0))[0, 0] == pytest.approx(5.978, abs=0.05)
+
+
+def test_two_dipoles_in_phase_over_an_infinite_sheet() -> None:
+    """The same two 0.25 above a sheet: 9.921 dBi, 0.02 dB, imposed currents."""
+    one = over_plane(0.5, 1e-5, 60, 0.25)
+    shifted = tuple(replace(w, start=(0.5, *w.start[1:]), end=(0.5, *w.end[1:])) for w in one.wires)
+    model = replace(one, wires=one.wires + shifted)
+    currents = wire_currents(elements_of(model), lambda p: np.sin(2.0 * np.pi * (0.25 - np.abs(p[:, 1]))))
+    assert with_currents(model, currents).directivity_dbi(UP)[0, 0] == pytest.approx(9.921, abs=0.02)
 
 
 @pytest.mark.parametrize(("slenderness", "shortening"), [(5000.0, 0.02), (50.0, 0.05)])
