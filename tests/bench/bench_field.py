@@ -4,7 +4,8 @@ One frequency (fill, solve, far field: two cuts of 361 directions and the sphere
 LAPACK's zgesv of the same size, at about 600 and 1,200 unknowns, on one and two threads, without mirror
 symmetry and with it. Wanted: at most 4 without (aim 2). Then the memory of 4,000 unknowns (at most 2 GiB)
 and the first compile with an empty cache (at most 20 s; the next process pays none). Each measurement is a
-process of its own, ours and LAPACK's in turn within it; printed are medians and ratios of one run.
+process of its own, ours and LAPACK's in turn within it; printed are medians and ratios of one run. zgesv
+with one right side runs on one thread in the usual libraries; what their threaded zgetrf takes stands beside.
 """
 
 from __future__ import annotations
@@ -25,7 +26,7 @@ HZ = 2.44e9
 def child_speed(size: int, rounds: int) -> dict[str, float]:
     """Median seconds of each stage, ours and LAPACK's in turn."""
     import numpy as np
-    from scipy.linalg.lapack import zgesv
+    from scipy.linalg.lapack import zgesv, zgetrf
 
     from tests.field.antennas import biquad
     from wavejig.field.matrix import impedance_matrix
@@ -61,6 +62,8 @@ def child_speed(size: int, rounds: int) -> dict[str, float]:
     for _ in range(rounds + 1):
         copy = plain.copy(order="F")
         timed("zgesv", lambda a=copy: zgesv(a, right, overwrite_a=1))
+        copy = plain.copy(order="F")
+        timed("zgetrf", lambda a=copy: zgetrf(a, overwrite_a=1))
         z = timed("fill", lambda: impedance_matrix(model, elements, prepared.passes, HZ))
         copy = z.copy().T
         half = timed("solve, mirrors", lambda a=copy: solve_by_parity(a, drive, mirrors))
@@ -137,13 +140,17 @@ def main() -> None:
         for size in (600,) if quick else (600, 1200):
             t = run("speed", size, 5 if quick else 9, threads=threads)
             lapack = t["zgesv"]
-            part = {k: t[k] / lapack for k in ("fill", "solve", "far field", "solve, mirrors", "prepare")}
+            part = {
+                k: t[k] / lapack
+                for k in ("fill", "solve", "far field", "solve, mirrors", "prepare", "zgetrf")
+            }
             total = part["fill"] + part["solve"] + part["far field"]
             mirrored = part["fill"] + part["solve, mirrors"] + part["far field"]
             print(
                 f"  {t['unknowns']:5.0f} unknowns, {threads} threads: fill {part['fill']:.2f} + solve "
                 f"{part['solve']:.2f} + far {part['far field']:.2f} = {total:.2f};  with {t['mirrors']:.0f} mirrors "
                 f"solve {part['solve, mirrors']:.2f}, total {mirrored:.2f}   (once per sweep: {part['prepare']:.2f}; "
+                f"zgetrf alone {part['zgetrf']:.2f}; "
                 f"zgesv {lapack * 1e3:.0f} ms)",
                 flush=True,
             )

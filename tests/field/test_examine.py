@@ -13,7 +13,8 @@ from scipy.spatial.transform import Rotation
 
 from tests.field.antennas import LIGHT_HZ, biquad, dipole, loop, over_plane
 from wavejig.field import Insulation, Model, ModelError, ModelWarning, Port, Wire, solve
-from wavejig.field.examine import examine, segment_distance
+from wavejig.field.clearances import segment_distance
+from wavejig.field.examine import examine
 from wavejig.field.shapes import chain, grid_lines, plate
 
 ROD = dipole(0.5, 1e-3, 20)

@@ -50,31 +50,21 @@ def by_triangles(size_mm: float) -> Response:
     return solve(over_sheet(size_mm), HZ)
 
 
-def test_a_large_sheet_is_as_good_as_an_infinite_one() -> None:
-    """1.5 and 2 waves across, averaged (the rim's echo turns its sign): impedance within 2 % (0.8 % reached).
+@pytest.mark.parametrize(
+    "size_mm",
+    [123.0, 246.0, *(pytest.param(s, marks=pytest.mark.slow) for s in (185.0, 308.0, 369.0, 492.0))],
+)
+def test_a_sheet_of_any_size_is_as_good_as_an_infinite_one(size_mm: float) -> None:
+    """One to four waves across: impedance within 2.5 % (1.8 % reached), conductance within 3 % (2.2 % reached).
 
-    This holds the attachment functions to account: with the sheet's current begun at the legs' axes instead
-    of their surfaces, 3 ohm of reactance are too much here, 5 %.
+    So close before a loop, the rim is hardly felt at the port. This holds the attachment functions to
+    account: with the sheet's current begun at the legs' axes instead of their surfaces, 3 ohm of reactance
+    are too much, and the conductance is off by 20 % where it is steepest.
     """
-    infinite = by_images().impedance_ohm
-    large = (by_triangles(185.0).impedance_ohm + by_triangles(246.0).impedance_ohm) / 2.0
-    assert np.abs(large / infinite - 1.0).max() < 0.02
-    # and at each size by itself the conductance, within the echo
-    for size in (185.0, 246.0):
-        y = by_triangles(size).admittance_s[:, 0, 0]
-        assert y.real == pytest.approx(by_images().admittance_s[:, 0, 0].real, rel=0.10)
-
-
-@pytest.mark.slow
-def test_the_echo_of_the_rim_dies_away() -> None:
-    """From one wave across to four: the conductance closes in on the infinite ground's."""
-    infinite = by_images().admittance_s[:, 0, 0]
-    away = []
-    for size in (123.0, 246.0, 369.0, 492.0):
-        y = by_triangles(size).admittance_s[:, 0, 0]
-        away.append(float(np.abs(y.real / infinite.real - 1.0).max()))
-    assert away[-1] < 0.6 * away[0]
-    assert away[-1] < 0.05
+    infinite, sheet = by_images(), by_triangles(size_mm)
+    assert np.abs(sheet.impedance_ohm / infinite.impedance_ohm - 1.0).max() < 0.025
+    y = sheet.admittance_s[:, 0, 0].real
+    assert y == pytest.approx(infinite.admittance_s[:, 0, 0].real, rel=0.03)
 
 
 def peak(model: Model) -> tuple[float, float]:

@@ -97,7 +97,7 @@ def test_two_bodies_are_told() -> None:
     a = tessellate(box(5, 5, 5), name="a")
     both = Mesh(
         name="pair",
-        vertices=np.vstack([a.vertices, a.vertices + [20.0, 0.0, 0.0]]),
+        vertices=np.vstack([a.vertices, np.add(a.vertices, [20.0, 0.0, 0.0])]),
         faces=np.vstack([a.faces, a.faces + len(a.vertices)]),
     )
     assert printability(both).bodies == 2

@@ -20,7 +20,7 @@ from wavejig.sheets.feedsteps import screw_for
 from wavejig.sheets.laid import laid
 from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.station import distance_m, eirp_w, exposure, public_limit_w_per_m2, wind
-from wavejig.sheets.template import OVERLAP_MM, templates
+from wavejig.sheets.template import OVERLAP_MM, Tile, templates
 from wavejig.shop import Inspection, inspect
 from wavejig.shop.bench import joint_heat_w
 
@@ -318,3 +318,38 @@ def test_tiles_show_the_same_where_they_overlap() -> None:
     left, right = circles(0), circles(1)
     both = [(a, b) for a in left for b in right if abs(a[0] - step - b[0]) < 0.01 and abs(a[1] - b[1]) < 0.01]
     assert len(left) + len(right) - len(both) == 3  # two clamp holes of the upper half, and the tube's
+
+
+def rings(tile: Tile) -> dict[float, list[tuple[float, float]]]:
+    """Middles of the closed round chains on a page, by their diameter to 0.01 mm."""
+    found: dict[float, list[tuple[float, float]]] = {}
+    for s in tile.drawn:
+        points = np.array(getattr(s, "points", None) or [(0.0, 0.0)])
+        if len(points) > 12 and np.allclose(points[0], points[-1]):
+            low, high = points.min(axis=0), points.max(axis=0)
+            if abs((high - low)[0] - (high - low)[1]) < 0.02:
+                middle = (low + high) / 2.0
+                found.setdefault(round(float((high - low)[0]), 1), []).append(
+                    (float(middle[0]), float(middle[1]))
+                )
+    return found
+
+
+@pytest.mark.parametrize(("frame", "turned"), [((500.0, 600.0), False), ((440.0, 400.0), True)])
+def test_templates_are_turned_but_never_mirrored(frame: tuple[float, float], turned: bool) -> None:
+    """From the tube's hole to each clamp hole it is as far, and the same way round, as in the design."""
+    made = inspected("ridge-868")
+    assert made.radiator and made.tray
+    (tile,) = [
+        t for t in templates(made.radiator, made.tray, pattern_of(made), frame) if "BLANK" in t.caption
+    ]
+    assert ("turned a quarter" in tile.caption) is turned
+    holes = {h.purpose: h for h in made.tray.holes if h.purpose == "tube"}
+    clamps = [h for h in made.tray.holes if h.purpose == "mounting"]
+    drawn = rings(tile)
+    ((x0, y0),) = drawn[round(holes["tube"].diameter_mm, 1)]
+    got = sorted((round(x - x0, 2), round(y - y0, 2)) for x, y in drawn[round(clamps[0].diameter_mm, 1)])
+    away = [(h.x_mm - holes["tube"].x_mm, h.y_mm - holes["tube"].y_mm) for h in clamps]
+    want = sorted((round(-y, 2), round(x, 2)) if turned else (round(x, 2), round(y, 2)) for x, y in away)
+    assert np.allclose(got, want, atol=0.02)
+    assert not np.allclose(sorted((-x, y) for x, y in want), want, atol=0.02)  # a mirrored page would differ

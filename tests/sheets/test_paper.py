@@ -5,13 +5,16 @@ from __future__ import annotations
 import csv
 import hashlib
 import itertools
+import os
 import re
+import shutil
 import subprocess
 import sys
 from collections.abc import Callable
 from dataclasses import replace
 from pathlib import Path
 
+import ezdxf
 import numpy as np
 import pdfplumber
 import pypdfium2
@@ -147,10 +150,13 @@ def test_recipe_text_is_never_markup(tmp_path: Path) -> None:
     finding = replace(plain.findings[0], message=nasty, severity="warning")
     spoilt = replace(plain, design=replace(plain.design, name=nasty), findings=(finding, *plain.findings[1:]))
     write_sheets(spoilt, pattern_of(plain), tmp_path)
+    squeezed = "".join(nasty.split())
     for path in sorted(tmp_path.rglob("*.pdf")):
-        assert "".join(nasty.split()) in "".join(words(path).split()), path.name
-    import ezdxf
-
+        assert squeezed in "".join(words(path).split()), path.name
+    text = "".join(words(tmp_path / "build-sheet.pdf").split())
+    pages = len(PdfReader(tmp_path / "build-sheet.pdf").pages)
+    assert f"{finding.code}:{squeezed}." in text  # a paragraph's own words
+    assert text.count(f"{squeezed}:buildsheet") == pages + 1  # every footer, and the title
     texts = [
         t.plain_text() for t in ezdxf.readfile(tmp_path / "drawings" / "blank.dxf").modelspace().query("TEXT")
     ]
@@ -257,3 +263,25 @@ def test_fonts_are_embedded_and_text_can_be_selected(written: Callable[[str], Pa
             assert re.match(r"/[A-Z0-9]{6}\+BitstreamVeraSans", name), name
             assert "/FontFile2" in font["/FontDescriptor"].get_object()
             assert "/ToUnicode" in font
+
+
+def test_a_plane_cad_viewer_draws_the_dimensions(tmp_path: Path, written: Callable[[str], Path]) -> None:
+    """The viewer makes dimensions anew from their definition points: much more ink than without them."""
+    if shutil.which("librecad") is None:
+        pytest.skip("librecad is not installed")
+    whole, bare = tmp_path / "whole.dxf", tmp_path / "bare.dxf"
+    shutil.copy(written(SALTMARSH) / "drawings" / "blank.dxf", whole)
+    document = ezdxf.readfile(whole)
+    for dimension in list(document.modelspace().query("DIMENSION")):
+        document.modelspace().delete_entity(dimension)
+    document.saveas(bare)
+    ink = []
+    for path in (whole, bare):
+        subprocess.run(
+            ["librecad", "dxf2pdf", "-a", "-p", "420x297", str(path)],
+            check=True, capture_output=True, cwd=tmp_path, timeout=240,
+            env={**os.environ, "QT_QPA_PLATFORM": "offscreen", "XDG_RUNTIME_DIR": str(tmp_path), "HOME": str(tmp_path)},
+        )  # fmt: skip
+        page = pypdfium2.PdfDocument(path.with_suffix(".pdf"))[0]
+        ink.append(int((page.render(scale=2.0, grayscale=True).to_numpy() < 250).sum()))
+    assert ink[0] > 1.1 * ink[1]

@@ -20,7 +20,9 @@ from wavejig.tuning.spread import Spread, spread
 from wavejig.tuning.sweepfile import BESIDE
 
 
-def admittance(article: Nominal, values: Mapping[str, float], f: NDArray[np.float64]) -> NDArray[np.complex128]:
+def admittance(
+    article: Nominal, values: Mapping[str, float], f: NDArray[np.float64]
+) -> NDArray[np.complex128]:
     """Series resonance at the band's middle for nominal sizes; standoff sets resistance, the gap a capacitance."""
     drawn = article.values
     target = article.design.target

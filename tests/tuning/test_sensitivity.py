@@ -21,9 +21,7 @@ def test_ishigami() -> None:
     v2 = a**2 / 8
     v13 = b**2 * np.pi**8 * (1 / 18 - 1 / 50)
     found = shares(output, 3, base=8192)
-    for got, first, total in zip(
-        found, (v1, v2, 0.0), (v1 + v13, v2, v13), strict=True
-    ):
+    for got, first, total in zip(found, (v1, v2, 0.0), (v1 + v13, v2, v13), strict=True):
         assert got.first == pytest.approx(first / variance, abs=0.01)
         assert got.total == pytest.approx(total / variance, abs=0.01)
 

@@ -22,7 +22,9 @@ def numbers(s: complex, kind: str) -> str:
     return f"{size:.9f} {np.degrees(np.angle(s)):.7f}"
 
 
-def text(unit: str = "MHz", kind: str = "RI", ohm: str = "50", ports: int = 1, head: str = "! a sweep\n") -> str:
+def text(
+    unit: str = "MHz", kind: str = "RI", ohm: str = "50", ports: int = 1, head: str = "! a sweep\n"
+) -> str:
     rows = []
     for f, s in zip(F, S, strict=True):
         rest = " 0.1 0.2 0.1 0.2 0.5 0.1" if ports == 2 else ""
@@ -62,7 +64,9 @@ def lines(keep: slice) -> str:
 
 
 def rows_of(s: np.ndarray, f: np.ndarray = F) -> str:
-    return "# Hz S RI R 50\n" + "".join(f"{a:.1f} {b.real:.9f} {b.imag:.9f}\n" for a, b in zip(f, s, strict=True))
+    return "# Hz S RI R 50\n" + "".join(
+        f"{a:.1f} {b.real:.9f} {b.imag:.9f}\n" for a, b in zip(f, s, strict=True)
+    )
 
 
 SWAPPED = text().splitlines()

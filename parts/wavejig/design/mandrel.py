@@ -31,7 +31,8 @@ def mandrel_for(
 ) -> Mandrel:
     """The pin for a wanted finished inside radius, or (None) the smallest usual dowel for this wire.
 
-    insulation_mm: on one side, between metal and pin; radii are the metal's. A dowel within PIN_MATCH_MM of the wanted pin is taken, and the radius it leaves is the finished one.
+    insulation_mm: on one side, between metal and pin; radii are the metal's. A dowel within PIN_MATCH_MM
+    of the wanted pin is taken, and the radius it leaves is the finished one.
     Raises ValueError when no pin gives the wanted radius (the wire would have to be bent tighter than it
     is thick).
     """

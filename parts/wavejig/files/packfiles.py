@@ -248,9 +248,7 @@ class PackFiles:
     def _found(self, more: Iterable[Finding]) -> None:
         """Findings that only a build can make."""
         found = (*self.inspection.findings, *more)
-        self.inspection = replace(
-            self.inspection, findings=tuple(sorted(found, key=lambda f: f.sort_key))
-        )
+        self.inspection = replace(self.inspection, findings=tuple(sorted(found, key=lambda f: f.sort_key)))
 
     # -- files --------------------------------------------------------------------------------------
 

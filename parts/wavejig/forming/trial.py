@@ -13,7 +13,7 @@ Lengths in mm, angles in deg, stress in MPa.
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 
 from wavejig.forming.wire import relaxed_radius_mm
@@ -21,6 +21,9 @@ from wavejig.forming.wire import relaxed_radius_mm
 # Radii this many times apart tell n; nearer ones tell only the reading error. Our own choice.
 TELLING_RATIO = 2.0
 MOST_N = 0.8
+# No wire's flow stress at the bend's outer fibre is above this share of its modulus (spring wire: about 1 %).
+# From memory.
+STRONGEST_SHARE = 0.03
 _MPA_PER_GPA = 1000.0
 
 
@@ -68,11 +71,16 @@ def fit_flow_stress(
     telling = max(radii) >= TELLING_RATIO * min(radii)
     n = hardening_exponent
     if telling:
-        n = _least(lambda x: _misfit(readings, diameter_mm, youngs_modulus_gpa, x)[0], 0.0, MOST_N)
+
+        def misfit(x: float) -> float:
+            try:
+                return _misfit(readings, diameter_mm, youngs_modulus_gpa, x)[0]
+            except ValueError:  # this n would need a wire stronger than there is
+                return math.inf
+
+        n = _least(misfit, 0.0, MOST_N)
     _, k = _misfit(readings, diameter_mm, youngs_modulus_gpa, n)
-    errors = [
-        r.bent_deg * (_share(r, diameter_mm, youngs_modulus_gpa, k, n) - r.share) for r in readings
-    ]
+    errors = [r.bent_deg * (_share(r, diameter_mm, youngs_modulus_gpa, k, n) - r.share) for r in readings]
     return Fitted(
         strength_coefficient_mpa=k,
         hardening_exponent=n,
@@ -107,9 +115,7 @@ def _share(
     reading: Reading, diameter_mm: float, modulus_gpa: float, coefficient_mpa: float, exponent: float
 ) -> float:
     """Springback as a share of the loaded angle, by the model."""
-    relaxed = relaxed_radius_mm(
-        reading.loaded_radius_mm, diameter_mm, modulus_gpa, coefficient_mpa, exponent
-    )
+    relaxed = relaxed_radius_mm(reading.loaded_radius_mm, diameter_mm, modulus_gpa, coefficient_mpa, exponent)
     return 1.0 - reading.loaded_radius_mm / relaxed  # 1 where it springs back straight
 
 
@@ -117,24 +123,37 @@ def _misfit(
     readings: Sequence[Reading], diameter_mm: float, modulus_gpa: float, exponent: float
 ) -> tuple[float, float]:
     """Sum of squares of the springback's logarithms, and the K that makes it least."""
-    limit = 0.5 * modulus_gpa * _MPA_PER_GPA
 
     def wanted(reading: Reading) -> float:
-        low, high = 1e-3, limit
+        strain = diameter_mm / 2.0 / reading.loaded_radius_mm
+        strongest = STRONGEST_SHARE * modulus_gpa * _MPA_PER_GPA / strain**exponent
+        low, high = 1e-3, min(strongest, 0.5 * modulus_gpa * _MPA_PER_GPA)
         if _share(reading, diameter_mm, modulus_gpa, high, exponent) < reading.share:
             raise ValueError(
                 f"bent to {reading.bent_deg:g} deg, relaxed to {reading.relaxed_deg:g} deg: more springback than "
-                "a wire of this thickness can have; check former and angles"
+                "wire of this metal and thickness can have; check former and angles"
             )
-        for _ in range(200):
-            middle = math.sqrt(low * high)
-            if _share(reading, diameter_mm, modulus_gpa, middle, exponent) < reading.share:
-                low = middle
-            else:
-                high = middle
-            if high / low < 1.0 + 1e-13:
+
+        def miss(log_k: float) -> float:
+            share = _share(reading, diameter_mm, modulus_gpa, math.exp(log_k), exponent)
+            return math.log(max(share, 1e-300)) - math.log(reading.share)
+
+        # regula falsi of Illinois in logarithms, where the springback is nearly a straight line of slope one
+        x0, x1 = math.log(low), math.log(high)
+        y0, y1 = miss(x0), miss(x1)
+        side = 0
+        for _ in range(80):
+            x = (x0 * y1 - x1 * y0) / (y1 - y0)
+            y = miss(x)
+            if abs(y) < 1e-11 or x1 - x0 < 1e-13:
                 break
-        return math.sqrt(low * high)
+            if y < 0.0:
+                x0, y0 = x, y
+                y1, side = (y1 / 2.0 if side < 0 else y1), -1
+            else:
+                x1, y1 = x, y
+                y0, side = (y0 / 2.0 if side > 0 else y0), 1
+        return math.exp(x)
 
     each = [wanted(r) for r in readings]
     k = math.exp(sum(math.log(x) for x in each) / len(each))
@@ -145,7 +164,7 @@ def _misfit(
     return total, k
 
 
-def _least(f, low: float, high: float) -> float:  # type: ignore[no-untyped-def]
+def _least(f: Callable[[float], float], low: float, high: float) -> float:
     """Where f is least between low and high: a coarse look, then golden sections."""
     steps = 16
     places = [low + (high - low) * i / steps for i in range(steps + 1)]
@@ -153,11 +172,14 @@ def _least(f, low: float, high: float) -> float:  # type: ignore[no-untyped-def]
     a, b = places[max(best - 1, 0)], places[min(best + 1, steps)]
     golden = (math.sqrt(5.0) - 1.0) / 2.0
     c, d = b - golden * (b - a), a + golden * (b - a)
-    for _ in range(60):
-        if f(c) < f(d):
-            b, d = d, c
+    at_c, at_d = f(c), f(d)
+    for _ in range(26):  # to a millionth
+        if at_c < at_d:
+            b, d, at_d = d, c, at_c
             c = b - golden * (b - a)
+            at_c = f(c)
         else:
-            a, c = c, d
+            a, c, at_c = c, d, at_d
             d = a + golden * (b - a)
+            at_d = f(d)
     return (a + b) / 2.0

@@ -56,7 +56,8 @@ def _bulge(points: np.ndarray, error_mm: float) -> float | None:
     if np.abs(np.hypot(spokes[:, 0], spokes[:, 1]) - radius).max() > error_mm:
         return None
     steps = np.arctan2(
-        spokes[:-1, 0] * spokes[1:, 1] - spokes[:-1, 1] * spokes[1:, 0], (spokes[:-1] * spokes[1:]).sum(axis=1)
+        spokes[:-1, 0] * spokes[1:, 1] - spokes[:-1, 1] * spokes[1:, 0],
+        (spokes[:-1] * spokes[1:]).sum(axis=1),
     )
     total = float(steps.sum())
     one_way = np.all(steps > 0.0) or np.all(steps < 0.0)

@@ -9,6 +9,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 import shapely
@@ -47,7 +48,7 @@ def slabs(
     whole = contour_polygon(outline)
     levels = sorted({0.0, thickness_mm, *(min(d, thickness_mm) for _, d in cuts)})
     out = []
-    for upper, lower in zip(levels[:-1], levels[1:], strict=True):
+    for upper, lower in pairwise(levels):
         gone = [area for area, depth in cuts if depth >= lower - 1e-9]
         plan = whole.difference(union_all(gone)) if gone else whole
         if not plan.is_empty:

@@ -15,7 +15,8 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
-_HEADER = re.compile(r"\s*\[(?P<array>\[)?\s*(?P<name>[^\]]+?)\s*\]")
+# a table's header; a row of a list over several lines holds quotes or commas
+_HEADER = re.compile(r"""\s*\[(?P<array>\[)?\s*(?P<name>[^\[\]"',]+?)\s*\]\]?\s*(#.*)?$""")
 
 
 class EditError(ValueError):
@@ -108,7 +109,7 @@ def _table(lines: list[str], name: str) -> tuple[int, int] | None:
             continue
         if start is not None:
             return start, i
-        if not found["array"] and re.sub(r"[\s\"']", "", found["name"]) == name:
+        if not found["array"] and re.sub(r"\s", "", found["name"]) == name:
             start = i
     return None if start is None else (start, len(lines))
 

@@ -72,9 +72,7 @@ def moves_mm(piece: BlockPiece) -> np.ndarray:
     return np.vstack([out, up])
 
 
-def _withdraw(
-    design: Design, piece: BlockPiece, points: np.ndarray, radius_mm: np.ndarray
-) -> Withdrawal:
+def _withdraw(design: Design, piece: BlockPiece, points: np.ndarray, radius_mm: np.ndarray) -> Withdrawal:
     layers = [
         Prism(plan=contour_polygon(s.contour), bottom_mm=s.bottom_mm, top_mm=s.top_mm) for s in piece.layers
     ]

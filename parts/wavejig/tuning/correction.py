@@ -46,22 +46,41 @@ def puts(recipe: Recipe, found: Measured) -> list[Put]:
             ),
             Put(table="measured", key="sweep", value=_text(names[0]), remark=f"from {source}"),
         ]
-    over = over_mm(recipe, found.explored.article.design.radiator.wire_diameter_mm)
-    for change in found.changes:
-        extra = over if change.key in ("side", "lobe_diameter") else 0.0
-        out.append(
-            Put(
-                table="radiator",
-                key=change.key,
-                value=f'"{round(change.new + extra, 3):g} mm"',
-                remark=f"{round(change.now + extra, 3):g} mm before; from {source}",
-            )
-        )
-    if not out:
+    if not out and not found.changes:
         raise NothingToWriteError(
             "the sweep says nothing new about the model, and the recipe needs no change"
         )
+    return out + _sizes(recipe, found, source)
+
+
+def _sizes(recipe: Recipe, found: Measured, source: str) -> list[Put]:
+    """Changed dimensions; and those still auto, as they were on the article: else they would be tuned anew."""
+    design = found.explored.article.design
+    changed = {c.key: c for c in found.changes}
+    values = {name: value.value for name, value in design.values}
+    free = [f.name for f in freedoms(recipe, resolve(recipe))]
+    over = over_mm(recipe, design.radiator.wire_diameter_mm)
+    drawn = f"as drawn when {source} was measured"
+    out = []
+    for name in dict.fromkeys([*free, *changed]):
+        table, key = PLACES[name]
+        if key == "base":
+            continue
+        extra = over if name in ("side", "lobe_diameter") else 0.0
+        unit = "deg" if name == "lobe_angle" else "mm"
+        size = changed[name].new if name in changed else values[name]
+        remark = (
+            f"{_size(changed[name].now + extra)} {unit} before; from {source}" if name in changed else drawn
+        )
+        out.append(Put(table=table, key=key, value=f'"{_size(size + extra)} {unit}"', remark=remark))
+    if any(name in free for name in ("base_x", "base_y")):
+        pair = ", ".join(f'"{_size(values[n])} mm"' for n in ("base_x", "base_y"))
+        out.append(Put(table="reflector", key="base", value=f"[{pair}]", remark=drawn))
     return out
+
+
+def _size(value: float) -> str:
+    return f"{round(value, 3):.8g}"
 
 
 def written_problems(path: Path, wanted: list[Put]) -> str:

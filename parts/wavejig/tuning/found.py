@@ -152,12 +152,21 @@ class _Problem:
 
     def reflection(self, x: Array) -> Complex:
         """(F,) as measured, for unknowns (d + 6,)."""
-        values = (axes_centre(self.explored) + x[: self.d] * self.sigma)[None, :]
-        factor = np.array([self.explored.spread.frequency * (1.0 + x[self.d + 1])])
-        s = self.surface.reflection(values, self.f, factor)[0]
+        return self._seen(self._article(x[None, :])[0], x)
+
+    def _article(self, x: Array) -> Complex:
+        """(N, F) at the model's own plane, for unknowns (N, d + 6)."""
+        values = self.centre + x[:, : self.d] * self.sigma
+        factor = self.explored.spread.frequency * (1.0 + x[:, self.d + 1])
+        return self.surface.reflection(values, self.f, factor)
+
+    def _seen(self, s: Complex, x: Array) -> Complex:
+        """The same through the analyser, from its plane."""
         track, direct = complex(*x[self.d + 2 : self.d + 4]), complex(*x[self.d + 4 : self.d + 6])
-        turn = np.exp(-4j * np.pi * self.f / LIGHT_MM_PER_S * x[self.d])
-        return np.asarray(direct + (1.0 + track) * s * turn)
+        return np.asarray(direct + (1.0 + track) * s * self._turn(x))
+
+    def _turn(self, x: Array) -> Complex:
+        return np.asarray(np.exp(-4j * np.pi * self.f / LIGHT_MM_PER_S * x[self.d]))
 
     def start(self) -> Array:
         """Nominal dimensions, and the plane's offset that fits them best."""
@@ -181,7 +190,7 @@ class _Problem:
         for turn in (0.0, -0.25, 0.25):  # a start in the neighbouring valleys too
             x = start.copy()
             x[self.d] += turn * LIGHT_MM_PER_S / float(self.f.mean())
-            cost, x = self._descend(x, prior, free, noise)
+            cost, x = self._descend(x, prior, free, noise, most=10)
             if best is None or cost < best[0] - 1e-9:
                 best = (cost, x)
         assert best is not None
@@ -239,23 +248,32 @@ class _Problem:
         return np.concatenate([left.real, left.imag, (x - known)[free] / prior[free]])
 
     def _jacobian(self, x: Array, noise: Array) -> Array:
-        """(2 F, d + 6) by central differences: the surface is a formula, so steps may be small."""
-        steps = np.concatenate([np.full(self.d, 1e-4), [1e-3, 1e-6], np.full(len(_CALIBRATION), 1e-4)])
-        columns = []
-        for i, step in enumerate(steps):
-            up, down = x.copy(), x.copy()
-            up[i] += step
-            down[i] -= step
-            slope = (self.reflection(up) - self.reflection(down)) / (2.0 * step) / noise
-            columns.append(np.concatenate([slope.real, slope.imag]))
-        return np.array(columns).T
+        """(2 F, d + 6): by central differences on the surface (a formula, so steps may be small), else exact."""
+        moved = [*range(self.d), self.d + 1]
+        steps = np.array([*[1e-4] * self.d, 1e-6])
+        around = np.repeat(x[None, :], 2 * len(moved), axis=0)
+        for row, (i, step) in enumerate(zip(moved, steps, strict=True)):
+            around[2 * row, i] += step
+            around[2 * row + 1, i] -= step
+        s = self._article(around)
+        turn, track = self._turn(x), 1.0 + complex(*x[self.d + 2 : self.d + 4])
+        slopes = np.empty((len(x), len(self.f)), dtype=np.complex128)
+        slopes[moved] = (s[0::2] - s[1::2]) / (2.0 * steps[:, None]) * track * turn
+        plain = self._article(x[None, :])[0] * turn
+        slopes[self.d] = -4j * np.pi * self.f / LIGHT_MM_PER_S * track * plain
+        slopes[self.d + 2], slopes[self.d + 3] = plain, 1j * plain
+        slopes[self.d + 4], slopes[self.d + 5] = 1.0, 1j
+        slopes /= noise
+        return np.concatenate([slopes.real, slopes.imag], axis=1).T
 
-    def _descend(self, x: Array, prior: Array, free: Mask, noise: Array) -> tuple[float, Array]:
+    def _descend(
+        self, x: Array, prior: Array, free: Mask, noise: Array, most: int = 60
+    ) -> tuple[float, Array]:
         """Levenberg-Marquardt within what the surface covers."""
         damping = 1e-3
         residual = self._residual(x, noise, prior, free)
         cost = float(residual @ residual)
-        for _ in range(60):
+        for _ in range(most):
             jacobian = np.vstack([self._jacobian(x, noise)[:, free], np.diag(1.0 / prior[free])])
             gram, slope = jacobian.T @ jacobian, jacobian.T @ residual
             moved = False
