@@ -26,7 +26,8 @@ ARTICLES = 50
 
 def main(names: list[str]) -> None:
     print(
-        "recipe                dims  solves  form         own error  unseen rms  unseen max   band worst      pass  s/solve"
+        "recipe                dims  solves  form         own error  unseen rms  unseen max   band worst      "
+        "pass  s/solve"
     )
     for name in names:
         recipe, article = near(name)
@@ -62,7 +63,8 @@ def main(names: list[str]) -> None:
         print(
             f"{name:<20}  {len(known.names):4d}  {explored.solves:6d}  {explored.surface.curve.form:<11}  "
             f"{explored.error_db:7.4f} dB  {np.sqrt(np.mean(miss**2)):7.4f} dB  {abs(miss).max():7.4f} dB  "
-            f"{worst.min():5.2f} to {worst.max():5.2f}  {100 * found.passing.value:5.1f} %  {taken / explored.solves:5.2f}",
+            f"{worst.min():5.2f} to {worst.max():5.2f}  {100 * found.passing.value:5.1f} %  "
+            f"{taken / explored.solves:5.2f}",
             flush=True,
         )
 

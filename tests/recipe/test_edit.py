@@ -69,10 +69,11 @@ def test_what_cannot_be_changed_safely_is_left_to_the_hand(text: str) -> None:
         edited(text, [SIDE])
 
 
-@given(
-    st.lists(st.sampled_from(["", "# remark", 'wire = "1 mm"', 'metal = "copper" # x = 1', "standoff='2 mm'"]), max_size=6, unique=True),
-    st.sampled_from(["", "\n", "\n[feed]\nstyle = 'tube'\n", "\n[[reflector.holes]]\nx = '1 mm'\n"]),
-)  # fmt: skip
+ROWS = ["", "# remark", 'wire = "1 mm"', 'metal = "copper" # x = 1', "standoff='2 mm'"]
+RESTS = ["", "\n", "\n[feed]\nstyle = 'tube'\n", "\n[[reflector.holes]]\nx = '1 mm'\n"]
+
+
+@given(st.lists(st.sampled_from(ROWS), max_size=6, unique=True), st.sampled_from(RESTS))
 def test_any_layout_is_changed_in_that_key_only(rows: list[str], rest: str) -> None:
     text = "[radiator]\n" + "\n".join(rows) + rest
     before, after = tomllib.loads(text), tomllib.loads(edited(text, [SIDE]))

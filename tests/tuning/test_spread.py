@@ -97,3 +97,11 @@ def test_lips_never_lean_inwards() -> None:
     values = random_articles((by["lip_angle"],), np.linspace(0.001, 0.999, 500)[:, None])[:, 0]
     assert values.max() <= 90.0
     assert values.min() < 89.0
+
+
+def test_posts_that_stay_lower_the_frequency_and_widen_it() -> None:
+    recipe, article = near("boatshed-5g8")
+    found = spread(recipe, article, posts=0.01)
+    assert found.frequency == pytest.approx(0.995)
+    assert found.frequency_sigma == pytest.approx(np.hypot(0.01, 0.01 / np.sqrt(12.0)))
+    assert "posts" in found.frequency_source

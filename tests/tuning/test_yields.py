@@ -12,7 +12,8 @@ from tests.tuning.articles import near
 from wavejig.recipe.models import Measured, Tolerances
 from wavejig.tuning.points import cut_normal, random_articles
 from wavejig.tuning.surface import reflection, worst_return_loss_db
-from wavejig.tuning.yields import FREQUENCY, _wilson, find_yield, yield_data
+from wavejig.tuning.yielddata import yield_data
+from wavejig.tuning.yields import FREQUENCY, _wilson, find_yield
 from wavejig.tuning.yieldtext import yield_text
 
 

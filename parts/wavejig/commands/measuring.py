@@ -16,6 +16,7 @@ from wavejig.commands.telling import (
     WRONG_INPUT,
     announce,
     input_error,
+    post_share,
     say,
     stop,
     unreadable,
@@ -90,7 +91,15 @@ def _measure(
     try:
         article = nominal(recipe_file.recipe, inspection.design).meshed()
         with workers(args.cluster) as executor:
-            found = measure(recipe_file.recipe, article, sweeps, readings, executor, told=meter.step)
+            found = measure(
+                recipe_file.recipe,
+                article,
+                sweeps,
+                readings,
+                executor,
+                posts=post_share(inspection),
+                told=meter.step,
+            )
     except (ArticleError, ModelError) as err:
         return stop(CANNOT_BE_MADE, f"{args.recipe}: its neighbours cannot be predicted: {err}")
     except ClusterError as err:

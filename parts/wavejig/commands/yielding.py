@@ -16,6 +16,7 @@ from wavejig.commands.telling import (
     WRONG_INPUT,
     announce,
     input_error,
+    post_share,
     say,
     stop,
     unreadable,
@@ -73,7 +74,8 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
     from wavejig.tuning.asbuilt import ArticleError, nominal
     from wavejig.tuning.explore import explore
     from wavejig.tuning.spread import spread
-    from wavejig.tuning.yields import find_yield, yield_data
+    from wavejig.tuning.yielddata import yield_data
+    from wavejig.tuning.yields import find_yield
     from wavejig.tuning.yieldtext import yield_text
 
     meter.step("meshing")
@@ -82,7 +84,7 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
         article = nominal(recipe_file.recipe, design).meshed()
         explored = explore(
             article,
-            spread(recipe_file.recipe, article),
+            spread(recipe_file.recipe, article, post_share(inspection)),
             executor,
             told=lambda done, of: meter.step(f"solved {done} of {of}"),
         )

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 
+from wavejig.design.model import own_inset_mm
 from wavejig.recipe.errors import Problem, show
 from wavejig.recipe.models import Recipe
 
@@ -75,6 +76,7 @@ class _Checker:
                 'only with insulation = "enamel" or "plastic"',
                 "Say what the insulation is, or remove the thickness.",
             )
+        self._own_dish()
         if r.reflector.k_factor != "auto" and r.reflector.bend_deduction != "auto":
             self._problem(
                 "reflector.k_factor",
@@ -82,6 +84,70 @@ class _Checker:
                 "one of k_factor and bend_deduction",
                 "Both say the same; keep the shop's own figure.",
             )
+
+    def _own_dish(self) -> None:
+        """[reflector.own] against the rest of [reflector]."""
+        ref = self.recipe.reflector
+        own = ref.own
+        if ref.kind != "own":
+            if own.diameter is not None or own.size is not None or own.depth is not None:
+                self._problem(
+                    "reflector.kind",
+                    ref.kind,
+                    '"own" where [reflector.own] gives a dish',
+                    'Write kind = "own", or remove [reflector.own].',
+                )
+            return
+        round_one = own.shape == "round"
+        wanted, other = ("diameter", "size") if round_one else ("size", "diameter")
+        example = '"160 mm"' if round_one else '["200 mm", "150 mm"]'
+        if getattr(own, wanted) is None:
+            self._problem(
+                f"reflector.own.{wanted}",
+                "nothing",
+                f"the floor's {wanted}, for shape {own.shape}",
+                f"Measure it inside and write {wanted} = {example}.",
+            )
+        if getattr(own, other) is not None:
+            self._problem(
+                f"reflector.own.{other}",
+                "a value",
+                f"no {other} for shape {own.shape}",
+                f"Remove it, or change shape from {own.shape}.",
+            )
+        if own.depth is None:
+            self._problem(
+                "reflector.own.depth",
+                "nothing",
+                "the height of the wall inside",
+                'Measure from the floor to the rim and write depth = "45 mm".',
+            )
+        floor = (own.diameter,) if round_one else own.size
+        shortest = min((f for f in floor or () if f is not None), default=None)
+        inset = own_inset_mm(own.slope, own.radius)
+        if shortest is not None and 2.0 * inset >= shortest / 2.0:
+            self._problem(
+                "reflector.own.radius",
+                f"{own.radius:g} mm",
+                f"below {own.radius * shortest / (4.0 * inset):.1f} mm for a floor of {shortest:g} mm",
+                "Half of the floor at least must be flat.",
+            )
+        if own.depth is not None and own.depth < own.radius:
+            self._problem(
+                "reflector.own.radius",
+                f"{own.radius:g} mm",
+                f"at most the depth of {own.depth:g} mm",
+                "Measure both again.",
+            )
+        usual = type(ref)()
+        for key in ("base", "lips", "lip_height", "inside_bend_radius", "k_factor", "bend_deduction"):
+            if getattr(ref, key) != getattr(usual, key):
+                self._problem(
+                    f"reflector.{key}",
+                    show(getattr(ref, key)) if not isinstance(getattr(ref, key), tuple) else "a list",
+                    'only for sheet that is cut and folded, not with kind = "own"',
+                    "Remove it; [reflector.own] holds the dish's sizes.",
+                )
 
     def _own_path(self, corners: tuple[tuple[float, ...], ...], ground: int | None) -> None:
         first, last = corners[0], corners[-1]

@@ -7,6 +7,7 @@ y > 0, the ground terminal the one at y < 0.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 from wavejig.geometry.plane import Circle
@@ -144,11 +145,41 @@ class Hole:
     purpose: str
 
 
+def own_inset_mm(slope_deg: float, radius_mm: float) -> float:
+    """From where floor and wall would meet sharply to where the floor is flat."""
+    return radius_mm * math.tan(math.radians(90.0 - slope_deg) / 2.0)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class OwnShape:
+    """A dish, box or lid that is there already, measured inside. Its floor is the reflector's base.
+
+    shape: "round" or "rectangular"; depth_mm: floor to rim, straight up; slope_deg: the wall's lean
+    outwards from upright; radius_mm: inside, between floor and wall; rim_mm: flat rim turned outwards.
+    """
+
+    shape: str
+    depth_mm: float
+    slope_deg: float
+    radius_mm: float
+    rim_mm: float
+
+    def reach_mm(self, height_mm: float) -> float:
+        """How much further out the wall's inside stands at a height than the floor's sharp edge."""
+        return height_mm * math.tan(math.radians(self.slope_deg))
+
+    @property
+    def inset_mm(self) -> float:
+        """From the floor's sharp edge to where the floor is flat."""
+        return own_inset_mm(self.slope_deg, self.radius_mm)
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class ReflectorDesign:
-    """The sheet: base between outer mould lines, lips, holes."""
+    """The sheet: base between outer mould lines, lips, holes. Kind "own": base is the inside floor, sharp edge
+    to sharp edge (both the diameter when round)."""
 
-    kind: str  # "flat" or "tray"
+    kind: str  # "flat", "tray" or "own"
     metal: Metal
     thickness_mm: float
     base_x_mm: float
@@ -160,6 +191,7 @@ class ReflectorDesign:
     corner_style: str  # "relief" or "mitre"
     holes: tuple[Hole, ...]
     up: str  # edge that hangs uppermost: "y+" or "x+"
+    own: OwnShape | None = None  # kind "own" only
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

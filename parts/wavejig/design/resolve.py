@@ -204,12 +204,15 @@ def _reflector(
     recipe: Recipe, stock: _Stock, lobes: Lobes, feed: FeedDesign, wavelength_mm: float, ledger: Ledger
 ) -> ReflectorDesign:
     half = extent(lobes, stock.wire_mm)
-    start = default_base(wavelength_mm, half)
-    rule = "one wavelength, or the radiator and a margin"
-    base = (
-        ledger.auto("base_x", recipe.reflector.base[0], start[0], rule),
-        ledger.auto("base_y", recipe.reflector.base[1], start[1], rule),
-    )
+    if recipe.reflector.kind == "own":
+        base = _own_base(recipe, ledger)
+    else:
+        start = default_base(wavelength_mm, half)
+        rule = "one wavelength, or the radiator and a margin"
+        base = (
+            ledger.auto("base_x", recipe.reflector.base[0], start[0], rule),
+            ledger.auto("base_y", recipe.reflector.base[1], start[1], rule),
+        )
     lip_height = 0.0
     if recipe.reflector.lips != "none":
         auto = starting.lip_height_mm(wavelength_mm)
@@ -220,6 +223,20 @@ def _reflector(
     )
     ledger.conflicts += conflicts
     return reflector
+
+
+def _own_base(recipe: Recipe, ledger: Ledger) -> tuple[float, float]:
+    """The floor of the user's own dish; its sizes noted under names of their own: nobody varies them."""
+    own = recipe.reflector.own
+    size = own.size if own.diameter is None else (own.diameter, own.diameter)
+    assert size is not None and own.depth is not None  # told as contradictions before
+    if own.diameter is not None:
+        ledger.value("own_diameter", own.diameter, "recipe")
+    else:
+        ledger.value("own_x", size[0], "recipe")
+        ledger.value("own_y", size[1], "recipe")
+    ledger.value("own_depth", own.depth, "recipe")
+    return size
 
 
 def _nest_mm(recipe: Recipe, radiator: RadiatorDesign, lobes: Lobes) -> float:

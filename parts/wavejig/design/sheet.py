@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import math
+
 from wavejig.design import starting
-from wavejig.design.model import Conflict, FeedDesign, Hole, Lip, Point2, ReflectorDesign
+from wavejig.design.model import Conflict, FeedDesign, Hole, Lip, OwnShape, Point2, ReflectorDesign
 from wavejig.forming.sheet import din6935_k_factor, k_from_deduction, outside_setback_mm
 from wavejig.recipe.models import Recipe
 from wavejig.stock.hardware import clearance_hole_mm
@@ -13,11 +15,14 @@ from wavejig.stock.metals import Metal
 DRAIN_HOLE_MM = 5.0  # water bridges smaller holes
 CLAMP_BOLT = "M6"
 CLAMP_PLAY_MM = 1.0  # pole to clamp bolt
+WALL_ROOM_MM = 1.0  # a drilled hole's rim to the bend of a dish's wall
 PLUG_ROOM_MM = 15.0  # between the connector's axis and the pole, for the plug's nut
 
 
 def inside_radius_mm(recipe: Recipe, metal: Metal, thickness_mm: float) -> float:
     """Inside radius of the folds: the recipe's, else the tool's, else what the metal stands (not below T)."""
+    if recipe.reflector.kind == "own":
+        return recipe.reflector.own.radius
     asked = recipe.reflector.inside_bend_radius
     if asked != "auto":
         return asked
@@ -55,6 +60,7 @@ def resolve_sheet(
     """The reflector's design. lobe_extent: half sizes of the radiator along x and y."""
     r = recipe.reflector
     conflicts: list[Conflict] = []
+    own = own_shape(recipe)
     folded = lips(recipe, lip_height_mm)
     radius = inside_radius_mm(recipe, metal, thickness_mm)
     k, deduction = 0.5, None
@@ -74,6 +80,8 @@ def resolve_sheet(
                     )
                 )
     setback = outside_setback_mm(r.lip_angle, radius, thickness_mm) if folded else 0.0
+    if own is not None:
+        setback = own.inset_mm
     holes = [*_feed_holes(feed)]
     holes += [
         Hole(x_mm=x, y_mm=y, diameter_mm=clearance_hole_mm(post_screw), purpose="spacer") for x, y in posts
@@ -84,24 +92,27 @@ def resolve_sheet(
     low = up[0] + "-"
     if recipe.mounting.drain == "auto" and any(lip.edge == low for lip in folded):
         holes += _drain_holes(up, base, setback, radius, thickness_mm)
+    if recipe.mounting.drain == "auto" and own is not None:
+        holes += _own_drains(own, up, base)
     holes += [Hole(x_mm=h.x, y_mm=h.y, diameter_mm=h.diameter, purpose=h.purpose) for h in r.holes]
     for hole in holes:
-        if (
-            abs(hole.x_mm) + hole.diameter_mm / 2 > base[0] / 2
-            or abs(hole.y_mm) + hole.diameter_mm / 2 > base[1] / 2
-        ):
+        if _edge_room_mm(hole, base, own) < 0.0:
+            across = f"{base[0]:g} mm round" if own and own.shape == "round" else f"{base[0]:g} x {base[1]:g} mm"
+            key = "reflector.own" if own else "reflector.base"
             conflicts.append(
                 Conflict(
                     topic="reflector",
-                    key="reflector.holes" if hole.purpose == "other" else "reflector.base",
+                    key="reflector.holes" if hole.purpose == "other" else key,
                     message=f"the {hole.purpose} hole of {hole.diameter_mm:g} mm at "
                     f"({hole.x_mm:.2f}, {hole.y_mm:.2f}) mm "
-                    f"lies across the edge of the {base[0]:g} x {base[1]:g} mm base",
-                    remedy="Move the hole inwards or make the base larger.",
+                    f"lies across the edge of the {across} base",
+                    remedy="Move the hole inwards or take a larger dish."
+                    if own
+                    else "Move the hole inwards or make the base larger.",
                 )
             )
     design = ReflectorDesign(
-        kind="tray" if folded else "flat",
+        kind="own" if own else "tray" if folded else "flat",
         metal=metal,
         thickness_mm=thickness_mm,
         base_x_mm=base[0],
@@ -113,8 +124,41 @@ def resolve_sheet(
         corner_style=r.corners,
         holes=tuple(holes),
         up=up,
+        own=own,
     )
     return design, tuple(conflicts)
+
+
+def own_shape(recipe: Recipe) -> OwnShape | None:
+    """The dish of kind "own"; None for sheet that is cut and folded."""
+    if recipe.reflector.kind != "own":
+        return None
+    own = recipe.reflector.own
+    assert own.depth is not None  # told as a contradiction before
+    return OwnShape(
+        shape=own.shape, depth_mm=own.depth, slope_deg=own.slope, radius_mm=own.radius, rim_mm=own.rim
+    )
+
+
+def _edge_room_mm(hole: Hole, base: Point2, own: OwnShape | None) -> float:
+    """From a hole's rim to the edge of the base (below 0: across it)."""
+    half = hole.diameter_mm / 2.0
+    if own is not None and own.shape == "round":
+        return base[0] / 2.0 - math.hypot(hole.x_mm, hole.y_mm) - half
+    return min(base[0] / 2.0 - abs(hole.x_mm), base[1] / 2.0 - abs(hole.y_mm)) - half
+
+
+def _own_drains(own: OwnShape, up: str, base: Point2) -> list[Hole]:
+    """A dish's drains: at the low end of its floor, where wall and floor make a gutter."""
+    along = 1 if up[0] == "y" else 0
+    low = -(base[along] / 2.0 - own.inset_mm - DRAIN_HOLE_MM / 2.0 - WALL_ROOM_MM)
+    sides = (0.0,) if own.shape == "round" else (-base[1 - along] / 4.0, base[1 - along] / 4.0)
+    out = []
+    for side in sides:
+        place = [0.0, 0.0]
+        place[along], place[1 - along] = low, side
+        out.append(Hole(x_mm=place[0], y_mm=place[1], diameter_mm=DRAIN_HOLE_MM, purpose="drain"))
+    return out
 
 
 def default_base(wavelength_mm: float, lobe_extent: Point2) -> Point2:

@@ -18,6 +18,7 @@ from numpy.typing import NDArray
 
 from wavejig.design.model import Design
 from wavejig.field.mesh_plan import MeshPlan
+from wavejig.field.mesh_own import own_triangles
 from wavejig.field.mesh_sheet import sheet_triangles
 from wavejig.field.mesh_wire import chords
 from wavejig.field.model import Insulation, Model, Port, Wire
@@ -52,7 +53,8 @@ def model_from_design(design: Design, refine: float = 1.0, plan: MeshPlan | None
     wires.build()
     wavelength = design.target.wavelength_mm
     tray = plan_tray(design.reflector, corner_practice(design.cutter))
-    triangles = sheet_triangles(
+    mesh = sheet_triangles if tray.own is None else own_triangles
+    triangles = mesh(
         tray,
         [(float(p[0]), float(p[1])) for p in wires.landings],
         SHEET_STEP * wavelength / refine,

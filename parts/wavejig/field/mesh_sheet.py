@@ -47,7 +47,7 @@ def sheet_triangles(
     kept = MeshPlan() if plan is None else plan
     # even counts, so that the axes of symmetry are grid lines
     counts = kept.choose("base", lambda: tuple(max(2, 2 * math.ceil(h / largest_mm - 1e-9)) for h in half))
-    grid = _Grid(half, (counts[0], counts[1]))
+    grid = Grid(half, (counts[0], counts[1]))
     cells = set(kept.choose("cells", lambda: frozenset(grid.refined(landings, smallest_mm))))
     pulled = kept.choose("landings", lambda: grid.nearest(cells, landings))
     parts = [grid.triangles(cells, dict(zip(pulled, landings, strict=True)))]
@@ -67,7 +67,7 @@ def _inner_half(tray: Tray, axis: str) -> float:
     return outer - tray.thickness_mm * math.tan(math.radians(lip.angle_deg) / 2.0)
 
 
-class _Grid:
+class Grid:
     """Cells over the rectangle |x| <= half[0], |y| <= half[1]; level n halves level 0 n times."""
 
     def __init__(self, half: Point2, counts: tuple[int, int]) -> None:
@@ -108,6 +108,11 @@ class _Grid:
                         leaves.update(self.children(coarse))
                         changed = True
         return leaves
+
+    @property
+    def last(self) -> tuple[int, int]:
+        """Indices of the upper right corner's node."""
+        return self.counts[0] * 2**_DEEPEST, self.counts[1] * 2**_DEEPEST
 
     @staticmethod
     def children(cell: Cell) -> list[Cell]:

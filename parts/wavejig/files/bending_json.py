@@ -65,6 +65,7 @@ def _step(s: BendStep) -> dict[str, Any]:
         "pins": list(s.pins),
         "pins_in": list(s.pins_in),
         "pins_out": ["stop" if n == STOP else n for n in s.pins_out],
+        "stop": s.stop,
         "clamp": s.clamp,
         "located": s.located,
         "mark": _n(s.mark_mm),

@@ -42,6 +42,7 @@ from wavejig.shop import Inspection
 from wavejig.shop.bending import order_findings
 from wavejig.shop.finding import Finding
 from wavejig.shop.predicted import prediction_findings
+from wavejig.shop.ways import way_findings
 from wavejig.spacer.effect import post_effect
 from wavejig.spacer.solid import printables as spacer_printables
 from wavejig.spacer.withdraw import withdrawals
@@ -224,6 +225,7 @@ class PackFiles:
             posts=post_effect(self.design, self.radiator, self.spacer.posts),
             prints=tuple(self.prints),
         )
+        self._found(way_findings(made.lift_outs, made.withdrawals))
         data = design_data(
             self.design,
             self.radiator,

@@ -77,6 +77,14 @@ def _pair(value: Any) -> Any:
     return value
 
 
+def _own_pair(value: Any) -> Any:
+    if isinstance(value, str):
+        return [value, value]
+    if not isinstance(value, list) or len(value) != 2:
+        raise refuse(value, "two sizes, along x and along y", 'Write size = ["200 mm", "150 mm"].')
+    return value
+
+
 def _triple(value: Any) -> Any:
     if not isinstance(value, list) or len(value) != 3:
         raise refuse(value, "three sizes, x, y and height", 'Write bed = ["220 mm", "220 mm", "250 mm"].')
@@ -270,9 +278,34 @@ class Hole(_Table):
     )
 
 
+class Own(_Table):
+    """A metal dish, box or lid somebody already has; measured inside, on the radiator's side."""
+
+    shape: Annotated[str, choice("round", "rectangular")] = Field("round", description="outline of the floor")
+    diameter: Size | None = Field(
+        None, description="round: across the floor, where floor and wall would meet sharply"
+    )
+    size: Annotated[tuple[Size, Size], BeforeValidator(_own_pair)] | None = Field(
+        None, description="rectangular: floor along x and y, where floor and walls would meet sharply"
+    )
+    depth: Size | None = Field(None, description="floor to rim, straight up")
+    slope: Annotated[float, quantity(ANGLE, 0.0, 60.0)] = Field(
+        0.0, description="how far the wall leans outwards; 0 stands up"
+    )
+    radius: Annotated[float, quantity(LENGTH, 0.0, 30.0)] = Field(
+        2.0, description="inside radius between floor and wall"
+    )
+    rim: Annotated[float, quantity(LENGTH, 0.0, 100.0)] = Field(
+        0.0, description="width of a flat rim turned outwards at the top"
+    )
+
+
 class Reflector(_Table):
     """The sheet behind the radiator."""
 
+    kind: Annotated[str, choice("auto", "own")] = Field(
+        "auto", description="auto: cut and folded from sheet; own: a dish, box or lid as in [reflector.own]"
+    )
     material: Annotated[str, word("sheet metal", "wavejig stock metals")] = Field(
         "brass", description="sheet metal, or laminate (copper-clad, stays flat)"
     )
@@ -307,6 +340,7 @@ class Reflector(_Table):
         AUTO, description="the shop's own figure for these folds; wins over k_factor"
     )
     holes: Annotated[tuple[Hole, ...], BeforeValidator(_holes)] = Field((), description="extra holes")
+    own: Own = Field(Own(), description="the dish, box or lid of kind own, measured")
 
 
 class Mounting(_Table):

@@ -16,7 +16,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from wavejig.design.model import Hole
+from wavejig.design.model import Hole, OwnShape
 from wavejig.geometry.plane import Circle, Contour
 
 EDGES = ("x+", "y+", "x-", "y-")
@@ -108,7 +108,8 @@ class Tray:
     holes: tuple[Hole, ...]
     up: str
     practice: CornerPractice
-    outline: Contour  # of the blank
+    outline: Contour  # of the blank; of the inside floor for kind "own"
+    own: OwnShape | None = None  # kind "own": a dish that is there already, no lips
 
     def lip(self, edge: str) -> TrayLip | None:
         """The lip at `edge`, or None where the sheet just ends."""

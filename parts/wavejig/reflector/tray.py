@@ -20,6 +20,7 @@ from wavejig.forming.sheet import (
 from wavejig.geometry.plane import Contour
 from wavejig.reflector.corners import blank_outline, lip_end
 from wavejig.reflector.model import EDGES, CornerPractice, LipEnd, Tray, TrayError, TrayLip, outward
+from wavejig.reflector.own import own_tray
 from wavejig.reflector.outline import crosses_itself, distances_mm, inside
 
 __all__ = [
@@ -44,9 +45,14 @@ def plan(reflector: ReflectorDesign, practice: CornerPractice | None = None) -> 
     least the sheet's thickness and 1 mm, and at least R + T from the mould lines, with a round inner
     corner. Mitred lips, above the bends, grow back towards each other until their inner corners meet, less
     the gap. Lips of up to 90 deg lean outward or stand, so once the corners clear, no height can collide.
+    A dish of the user's own comes back with its floor for an outline: nothing of it is cut or folded.
     Raises TrayError with the numbers.
     """
     practice = practice or CornerPractice()
+    if reflector.own is not None:
+        tray = own_tray(reflector, practice)
+        _check_holes(tray)
+        return tray
     _check_sheet(reflector)
     _check_lips(reflector)
     lips = {lip.edge: lip for lip in reflector.lips}

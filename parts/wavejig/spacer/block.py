@@ -154,16 +154,18 @@ def _lay_out(design: Design, s: Side, arm: np.ndarray) -> tuple[_Plan, list[Faul
     rim_at = np.where(armed, s.edge, s.edge + design.printer.clearance_mm)[span]
     rim_top = float(rim_at.max())
     travel = _travel_mm(s.edge[span], np.minimum(arm[span], rim_top))
-    rest, pulled, across = limits_mm(design, s.frame)
+    widest = max(-float(u[span][0]), float(u[span][-1]))
+    rest, pulled, across = limits_mm(design, s.frame, widest)
     spine = math.floor(min(SPINE_MM, rest - rim_top, pulled - travel - rim_top) / _HALF_MM) * _HALF_MM
     if spine < wall:
         lipped = pulled < math.inf
         need = rim_top + wall + (travel if lipped else 0.0)
+        fold = "the fold" if design.reflector.own is None else "the wall"
         faults.append(
             (
                 "travel" if lipped else "base",
                 f"needs {need:.1f} mm from the sheet's middle to "
-                f"{'the fold, to be pulled out,' if lipped else 'its edge'} and has {rest:.1f} mm",
+                f"{fold + ', to be pulled out,' if lipped else 'its edge'} and has {rest:.1f} mm",
             )
         )
         spine = wall
@@ -181,7 +183,6 @@ def _lay_out(design: Design, s: Side, arm: np.ndarray) -> tuple[_Plan, list[Faul
         faults.append(
             ("travel", f"needs {v_out + travel:.1f} mm from the sheet's middle and has {pulled:.1f} mm")
         )
-    widest = max(-float(u[span][0]), float(u[span][-1]))
     if widest > across:
         faults.append(("width", f"reaches {widest:.1f} mm across and the flat base {across:.1f} mm"))
     way = v_out + travel if pulled < math.inf else math.inf

@@ -145,6 +145,8 @@ def flat_half_mm(design: Design, axis: str, sign: int) -> float:
     """From the centre to the end of the flat base towards an edge: the fold's root, or the cut edge."""
     sheet = design.reflector
     half = (sheet.base_x_mm if axis == "x" else sheet.base_y_mm) / 2.0
+    if sheet.own is not None:
+        return half - sheet.own.inset_mm
     lip = lip_at(design, axis, sign)
     if lip is None:
         return half
@@ -158,11 +160,31 @@ def lip_at(design: Design, axis: str, sign: int) -> Lip | None:
     return next((lip for lip in design.reflector.lips if lip.edge == edge), None)
 
 
-def limits_mm(design: Design, frame: Frame) -> tuple[float, float, float]:
-    """Room of a piece: greatest v at rest, greatest v while pulled (infinite without a lip), greatest |u|."""
+def edge_room_mm(design: Design, at: Point2) -> float:
+    """From a point of the base to the end of its flat, the nearest way."""
+    own = design.reflector.own
+    if own is not None and own.shape == "round":
+        return flat_half_mm(design, "x", 1) - math.hypot(*at)
+    return min(
+        flat_half_mm(design, axis, 1 if value > 0 else -1) - abs(value)
+        for axis, value in zip("xy", at, strict=True)
+    )
+
+
+def limits_mm(design: Design, frame: Frame, widest_mm: float = 0.0) -> tuple[float, float, float]:
+    """Room of a piece: greatest v at rest, greatest v while pulled (infinite without a lip), greatest |u|.
+
+    widest_mm: the piece's own greatest |u|: in a round dish the room along v is less beside the middle.
+    """
     dx, dy = frame.direction
     along, across = ("y", "x") if dy else ("x", "y")
     sign = 1 if dx + dy > 0 else -1
+    own = design.reflector.own
+    if own is not None:
+        v, u = flat_half_mm(design, along, sign) - LIP_PLAY_MM, flat_half_mm(design, across, 1) - LIP_PLAY_MM
+        if own.shape == "round":
+            v = math.sqrt(max(v * v - widest_mm * widest_mm, 0.0))
+        return v, v, u
     rest = flat_half_mm(design, along, sign)
     lipped = lip_at(design, along, sign) is not None
     if lipped:

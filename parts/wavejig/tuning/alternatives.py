@@ -53,13 +53,14 @@ def _changes(recipe: Recipe) -> Iterator[tuple[str, Recipe]]:
         yield f'{word} wire (radiator.wire = "{wire:g} mm")', recipe.model_copy(
             update={"radiator": radiator}
         )
-    if recipe.reflector.lips == "none" and not recipe.reflector.material.startswith("laminate"):
+    cut_sheet = recipe.reflector.kind != "own"
+    if cut_sheet and recipe.reflector.lips == "none" and not recipe.reflector.material.startswith("laminate"):
         reflector = recipe.reflector.model_copy(update={"lips": "four"})
         yield (
             'lips round the sheet (reflector.lips = "four")',
             recipe.model_copy(update={"reflector": reflector}),
         )
-    if any(size != "auto" for size in recipe.reflector.base):
+    if cut_sheet and any(size != "auto" for size in recipe.reflector.base):
         base = tuple(size if size == "auto" else round(1.3 * size) for size in recipe.reflector.base)
         reflector = recipe.reflector.model_copy(update={"base": base})
         yield "a sheet larger by a third (reflector.base)", recipe.model_copy(update={"reflector": reflector})

@@ -6,6 +6,7 @@ An article is not a design: its board, tray and connector are there already, so 
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Mapping
 from dataclasses import dataclass, replace
@@ -92,7 +93,7 @@ def nominal(recipe: Recipe, design: Design) -> Nominal:
 
 def mean_side_mm(corners: tuple[Corner, ...]) -> float:
     """Mean distance of successive corners."""
-    steps = [math.dist(a.at, b.at) for a, b in zip(corners[:-1], corners[1:], strict=True)]
+    steps = [math.dist(a.at, b.at) for a, b in itertools.pairwise(corners)]
     return sum(steps) / len(steps)
 
 

@@ -22,6 +22,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from wavejig.tuning.explore import Explored
+from wavejig.tuning.noise import FLOOR, noise_parts, thinned, widening
 from wavejig.tuning.sweepfile import MeasuredSweep
 from wavejig.tuning.yields import FREQUENCY
 
@@ -42,7 +43,6 @@ _CALIBRATION = (
     ("directivity_turn", DIRECTIVITY),
 )
 _CALIBRATED = {name for name, _ in _CALIBRATION}
-FLOOR = 2e-3  # of the reflection's noise: no desk calibration is better; common practice, no source
 LITTLE = 0.7  # of its prior's width: a posterior wider than this was hardly told by the sweep
 ALIKE = 0.7  # correlation from which two are named as not told apart
 MAIN = ("side", "lobe_diameter", "standoff", "feed_gap", OFFSET)
@@ -138,8 +138,8 @@ class _Problem:
         # the surface covers its nodes' range for the smallest and the largest article alike
         share = 0.0 if axes.size is None else axes.half[axes.size] / axes.centre[axes.size] / 2.0
         low, high = axes.nodes_hz[0] * (1.0 + share) * factor, axes.nodes_hz[-1] * (1.0 - share) * factor
-        self.f, self.s = _thinned(*sweep.near(low, high))
-        self.noise_parts = _noise(self.s)
+        self.f, self.s = thinned(*sweep.near(low, high))
+        self.noise_parts = noise_parts(self.s)
         self.sigma = np.array([d.sigma for d in self.dimensions])
         self.centre = np.array([d.nominal for d in self.dimensions])
         self.reach = axes.half / self.sigma
@@ -198,7 +198,7 @@ class _Problem:
         widen = 1.0
         for _ in range(3):  # the noise from what the fit leaves over
             left = self.reflection(x) - self.s
-            widen = _widening(left / self._noise_at(np.abs(self.reflection(x)), 1.0))
+            widen = widening(left / self._noise_at(np.abs(self.reflection(x)), 1.0))
             noise = self._noise_at(np.abs(self.reflection(x)), widen)
             _, x = self._descend(x, prior, free, noise)
         jacobian = self._jacobian(x, noise)[:, free]
@@ -301,47 +301,6 @@ class _Problem:
 def axes_centre(explored: Explored) -> Array:
     """(d,) nominal values."""
     return explored.surface.axes.centre
-
-
-def _thinned(f: Array, s: Complex, most: int = 401) -> tuple[Array, Complex]:
-    """At most so many points: more tell nothing new about so smooth a curve. Neighbours are averaged."""
-    group = math.ceil(len(f) / most)
-    if group == 1:
-        return f, s
-    n = len(f) // group * group
-    return f[:n].reshape(-1, group).mean(axis=1), s[:n].reshape(-1, group).mean(axis=1)
-
-
-def _noise(s: Complex) -> tuple[float, float]:
-    """An even part and a share of the reflection, from second differences, in which the curve itself is small.
-
-    For white noise of standard deviation q in real and imaginary part each, the second difference's mean
-    square is 12 q^2. The two parts come from a least-squares line of that over |s|^2, neither negative.
-    """
-    from scipy.optimize import nnls
-
-    if len(s) < 5:
-        return FLOOR, 0.0
-    second = np.abs(s[:-2] - 2.0 * s[1:-1] + s[2:]) ** 2 / 12.0
-    size = np.abs(s[:-2] + s[1:-1] + s[2:]) / 3.0
-    design = np.column_stack([np.ones(len(size)), size**2])
-    # squares of noise scatter in measure of themselves: weighed by what they are about
-    weight = 1.0 / np.maximum(float(np.mean(second)) * (size**2 / np.mean(size**2) + 0.1), 1e-12)
-    parts, _ = nnls(design * weight[:, None], second * weight)
-    return math.sqrt(parts[0]), math.sqrt(parts[1])
-
-
-def _widening(left: Complex) -> float:
-    """How much wider than white noise the fit's leftovers ask the intervals to be; at least 1.
-
-    Their size, and their correlation from point to point (one independent point in (1 + r)/(1 - r)).
-    """
-    power = float(np.mean(np.abs(left) ** 2) / 2.0)
-    near = float(np.real(np.mean(left[1:] * np.conj(left[:-1])))) / max(
-        float(np.mean(np.abs(left) ** 2)), 1e-30
-    )
-    near = min(max(near, 0.0), 0.95)
-    return math.sqrt(max(power, 1.0) * (1.0 + near) / (1.0 - near))
 
 
 def _alike(names: list[str], covariance: Array, prior: Array) -> tuple[tuple[str, str, float], ...]:

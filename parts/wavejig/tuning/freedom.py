@@ -93,7 +93,9 @@ def freedoms(recipe: Recipe, design: Design, grid_mm: float = GRID_MM) -> tuple[
 def _tray(recipe: Recipe, design: Design, values: dict[str, float], grid_mm: float) -> list[Freedom]:
     wavelength = design.target.wavelength_mm
     ref = recipe.reflector
-    out = []
+    out: list[Freedom] = []
+    if ref.kind == "own":  # the dish is as it is
+        return out
     lips = {lip.edge[0] for lip in design.reflector.lips}
     height = values.get("lip_height", 0.0)
     for axis, name, stock in (

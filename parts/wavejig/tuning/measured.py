@@ -89,13 +89,14 @@ def measure(
     readings: Mapping[str, float],
     executor: Executor,
     *,
+    posts: float = 0.0,
     told: Callable[[str], None] = lambda what: None,
 ) -> Measured:
-    """Judge and explain every sweep. readings: of the one article that was swept, centreline mm.
+    """Judge and explain every sweep. readings: of the one article that was swept, centreline mm; posts: as spread.
 
     Raises ArticleError when the articles about the design cannot be drawn.
     """
-    known = spread(recipe, article)
+    known = spread(recipe, article, posts)
     explored = explore(
         article,
         known,

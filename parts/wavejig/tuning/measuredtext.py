@@ -8,7 +8,8 @@ import numpy as np
 
 from wavejig.tuning.found import MAIN, OFFSET, Deviation, Fit
 from wavejig.tuning.measured import Article, Measured
-from wavejig.tuning.yields import FREQUENCY, yield_data
+from wavejig.tuning.yielddata import yield_data
+from wavejig.tuning.yields import FREQUENCY
 
 _DIAGNOSED = 3  # of a batch: the worst so many
 _TITLES = {
@@ -69,8 +70,8 @@ def _strange(m: Measured, fit: Fit) -> str:
     ends = ", ".join(title(m, k) for k in fit.at_limit)
     why = f"; {ends} ran to the end of what is plausible" if ends else ""
     return (
-        f"  not explained by the dimensions (misfit {fit.misfit:.1f} times the noise{why}): look for a bad joint, a wrong "
-        "connector, something near the antenna, or a poor calibration; take the figures below with care"
+        f"  not explained by the dimensions (misfit {fit.misfit:.1f} times the noise{why}): look "
+        "for a bad joint, a wrong connector, something near the antenna, or a poor calibration; take the figures below with care"
     )
 
 
@@ -151,7 +152,8 @@ def _recipe(m: Measured) -> list[str]:
         lines.append(
             "recipe: nothing to change"
             if m.passing == len(m.articles)
-            else "recipe: no change of side, standoff or feed gap brings the next ones noticeably nearer; `wavejig tune` looks further"
+            else "recipe: no change of side, standoff or feed gap brings the next ones noticeably "
+            "nearer; `wavejig tune` looks further"
         )
         return lines
     moves = ", ".join(f"{title(m, c.key)} {c.now:.2f} to {c.new:.2f} mm" for c in m.changes)
@@ -179,8 +181,8 @@ def _batch(m: Measured) -> list[str]:
     if m.predicted is not None:
         p = m.predicted
         lines.append(
-            f"  predicted: {p.expected:.1f} of {len(m.articles)} pass, {p.batch_low} to {p.batch_high} in nine batches of "
-            f"ten; middle {p.percentiles_db[1]:.1f} dB, spread {p.worst_db.std():.1f} dB"
+            f"  predicted: {p.expected:.1f} of {len(m.articles)} pass, {p.batch_low} to {p.batch_high} in nine "
+            f"batches of ten; middle {p.percentiles_db[1]:.1f} dB, spread {p.worst_db.std():.1f} dB"
         )
         if not p.batch_low <= m.passing <= p.batch_high:
             side = "fewer" if m.passing < p.batch_low else "more"

@@ -58,8 +58,8 @@ def record_text(m: Measured) -> str:
         f"{'serial':<10} {'verdict':<8} {'worst':>8} {'at':>12}   sweep",
     ]
     lines += [
-        f"{a.sweep.serial:<10} {'passes' if a.passes else 'FAILS':<8} {a.worst_db:>5.1f} dB {a.worst_hz / 1e6:>8.2f} MHz   "
-        f"{a.sweep.path.name}"
+        f"{a.sweep.serial:<10} {'passes' if a.passes else 'FAILS':<8} {a.worst_db:>5.1f} dB "
+        f"{a.worst_hz / 1e6:>8.2f} MHz   {a.sweep.path.name}"
         for a in m.articles
     ]
     lines += ["", f"{m.passing} of {len(m.articles)} pass"]

@@ -70,8 +70,12 @@ class Spread:
         return tuple(d.key for d in self.dimensions)
 
 
-def spread(recipe: Recipe, article: Nominal) -> Spread:
-    """What the recipe, the stock tables and the fixture say about each dimension of an article."""
+def spread(recipe: Recipe, article: Nominal, posts: float = 0.0) -> Spread:
+    """What the recipe, the stock tables and the fixture say about each dimension of an article.
+
+    posts: share by which plastic posts that stay lower the frequency at most (spacer/effect.py); the field
+    model does not hold them, so between nothing and that is taken, evenly. A measured correction holds them.
+    """
     tolerances = recipe.tolerances
     found = []
     for key, value in article.values.items():
@@ -101,6 +105,10 @@ def spread(recipe: Recipe, article: Nominal) -> Spread:
         source = f"measured{': ' + measured.sweep if measured.sweep else ''}"
     else:
         sigma, factor, source = tolerances.model, 1.0, "the model's own error, nothing measured yet"
+    if posts > 0.0 and measured.frequency is None:
+        factor *= 1.0 - posts / 2.0
+        sigma = math.hypot(sigma, posts / math.sqrt(12.0))
+        source += f"; posts that stay lower it by up to {100 * posts:.2g} %"
     return Spread(dimensions=tuple(found), frequency=factor, frequency_sigma=sigma, frequency_source=source)
 
 

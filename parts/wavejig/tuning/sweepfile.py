@@ -210,7 +210,8 @@ def _judge_reflection(path: Path, s: Complex) -> None:
     if size.max() > GAIN:
         raise SweepError(
             path,
-            f"reflects up to {20 * np.log10(size.max()):.1f} dB more than is sent; calibrate the analyser and measure again",
+            f"reflects up to {20 * np.log10(size.max()):.1f} dB more than is sent; calibrate the analyser "
+            "and measure again",
         )
     if size.min() > TOTAL:
         raise SweepError(
