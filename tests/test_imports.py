@@ -15,7 +15,7 @@ ROOT = Path(wavejig.__file__).parent
 # The rooms in the order the data walks through them; a module may import from its own room and those above.
 ROOMS = [
     "recipe", "stock", "geometry", "forming", "design", "radiator", "reflector", "spacer", "fixture",
-    "field", "shop", "tuning", "files", "sheets", "progress", "pack", "commands", "cli", "__main__",
+    "field", "shop", "tuning", "batch", "files", "sheets", "progress", "pack", "commands", "cli", "__main__",
 ]  # fmt: skip
 # The four parts stand side by side: none imports another but for the radiator's, which the others sit round.
 PARTS = {"reflector", "spacer", "fixture"}

@@ -15,10 +15,10 @@ from typing import Any
 import wavejig
 from wavejig.commands.telling import MACHINE, OK, WRONG_INPUT
 
-COMMANDS = ("new", "check", "match", "tune", "build", "yield", "measured", "stock")
+COMMANDS = ("new", "check", "match", "tune", "build", "yield", "measured", "watch", "stock")
 _OPTIONS = (
     "--help", "--version", "--json", "--out", "--schema", "--plot", "--skip-field", "--as-is", "--aim", "--grid",
-    "--cluster", "--write", "--reading", "--record",
+    "--cluster", "--write", "--reading", "--record", "--port",
 )  # fmt: skip
 
 _ABOUT = """\
@@ -34,6 +34,7 @@ examples:
   wavejig build recipes/*.toml --out packs
   wavejig yield my-antenna.toml         how many of the batch will pass?
   wavejig measured my-antenna.toml first.s1p   what came out differently, and what to do
+  wavejig watch my-antenna.toml         rebuild at every save, look at it in a browser
   wavejig stock                         list the stock tables
   wavejig stock connectors              print one
 
@@ -190,6 +191,19 @@ def _parser() -> argparse.ArgumentParser:
     )
     measured.add_argument("--json", action="store_true", help="results as JSON on stdout")
     measured.set_defaults(module="measuring")
+
+    watch = command(
+        "watch",
+        "rebuild the pack whenever the recipe is saved, and show its report in a browser on this machine",
+        "  wavejig watch saltmarsh-2g4.toml\n  wavejig watch saltmarsh-2g4.toml --out packs --port 9000\n"
+        "  (ctrl-C ends it)\n",
+    )
+    watch.add_argument("recipe", type=Path, metavar="RECIPE", help="the recipe (TOML)")
+    watch.add_argument("--out", type=Path, default=Path("out"), metavar="DIR", help="where packs go (out)")
+    watch.add_argument(
+        "--port", type=int, metavar="N", help="port on 127.0.0.1 (8710, or a free one; 0: any free one)"
+    )
+    watch.set_defaults(module="watching")
 
     stock = command(
         "stock",

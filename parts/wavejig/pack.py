@@ -22,6 +22,7 @@ from wavejig.tuning.settle import Settled, kept, settle
 
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction
+    from wavejig.files.kept import Kept
 
 Progress = Callable[[str], None]
 _STAGE, _OLD = ".building-", ".replaced-"
@@ -83,11 +84,13 @@ def build(
     *,
     predict: bool = True,
     announce: Progress = lambda _: None,
+    memory: Kept | None = None,
 ) -> Built:
     """Build the pack of a recipe into `out`/<name>/.
 
     predict: work out what is left free, solve the field and write field/; without it free values are what is
-    kept from before, or starting values. announce: told once if the solver has to be compiled.
+    kept from before, or starting values. announce: told once if the solver has to be compiled. memory: of earlier
+    builds in this process, to run only the steps that a change touches.
     Raises RecipeError (exit 2), CannotBeMadeError (exit 1), OSError (exit 3); FileCheckError or a kernel
     error when a file does not come back as it was written, which is a fault of ours.
     """
@@ -102,17 +105,31 @@ def build(
     from wavejig.files.packfiles import PackFiles
 
     with staging(out, inspection.design.name) as stage:
-        files = PackFiles(inspection, stage, predict=predict, announce=announce)
+        files = PackFiles(inspection, stage, predict=predict, announce=announce, kept=memory)
         for step in files.steps():
             progress(step.title)
-            step.run()
+            files.do(step)
         progress("drawings and build sheet")
         from wavejig.sheets.sheetfiles import write_sheets
 
         files.entries += write_sheets(files.inspection, files.pattern, stage, prediction=files.prediction)
+        progress("report")
+        from wavejig.sheets.report.frompack import write_pack_report
+
+        files.entries += write_pack_report(
+            files.inspection,
+            files.pattern,
+            stage,
+            pictured=files.pictured,
+            prints=files.prints,
+            entries=files.entries,
+            prediction=files.prediction,
+        )
         progress("checking the pack")
         files.finish(_versions())
         count, size = files.totals()
+    if memory is not None:
+        memory.pack = out / inspection.design.name
     return Built(
         folder=out / inspection.design.name,
         files=count,
@@ -171,5 +188,15 @@ def _clear_leftovers(out: Path, name: str) -> None:
 def _versions() -> dict[str, str]:
     from importlib.metadata import version
 
-    libraries = ("cadquery", "cadquery-ocp", "ezdxf", "numpy", "reportlab", "scipy", "numba", "trimesh", "shapely")
+    libraries = (
+        "cadquery",
+        "cadquery-ocp",
+        "ezdxf",
+        "numpy",
+        "reportlab",
+        "scipy",
+        "numba",
+        "trimesh",
+        "shapely",
+    )
     return {"wavejig": wavejig.__version__, **{name: version(name) for name in libraries}}

@@ -58,6 +58,8 @@ BAD: list[Row] = [
     ("huge exponent", below("radiator", 'side = "1e400 mm"'), 2, 6, "radiator.side", ("finite",)),
     ("angle out of range", below("radiator", 'lobe_angle = "200 deg"'), 2, 6, "radiator.lobe_angle", ("30 to 150 deg",)),
     ("angle without unit", below("radiator", "lobe_angle = 90"), 2, 6, "radiator.lobe_angle", ('"90 deg"',)),
+    ("trial bend without unit", below("radiator", 'trial = [{former = "6 mm", bent_to = 100, relaxed_to = "97 deg"}]'), 2, 6, "radiator.trial[0].bent_to", ('"100 deg"',)),
+    ("trial length of no bends", below("radiator", 'trial_length = {cut = "200 mm", outside = "214 mm", bends = 0, former = "6 mm"}'), 2, 6, "radiator.trial_length.bends", ("1 to 50",)),
     ("tolerance without unit", below("tolerances", "feed_gap = 0.2"), 2, 11, "tolerances.feed_gap", ("mm",)),
     ("unknown distribution", below("tolerances", 'distribution = "gaussian"'), 2, 11, "tolerances.distribution", ("normal", "uniform")),
     ("model error in percent", below("tolerances", "model = 1"), 2, 11, "tolerances.model", ("0 to 0.1",)),

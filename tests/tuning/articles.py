@@ -30,11 +30,13 @@ RECIPES = Path(__file__).parents[2] / "recipes"
 NEAR = {
     "boatshed-5g8": {"side": 11.4, "standoff": 6.45, "feed_gap": 3.6},
     "ridge-868": {"side": 83.8, "standoff": 43.25, "feed_gap": 6.0},
-    "saltmarsh-2g4": {"side": 31.0, "standoff": 15.35, "feed_gap": 7.0},
+    "saltmarsh-2g4": {
+        "side": 26.15, "standoff": 19.65, "feed_gap": 4.4, "lobe_angle": 129.5, "leg_spacing": 7.8,
+    },
     "creek-915-round": {},
     "slipway-path": {},
     "causeway-2g4-double": {"side": 29.5, "standoff": 15.35, "feed_gap": 4.0},
-}
+}  # fmt: skip
 _PLANT_POINTS = 15
 
 

@@ -135,15 +135,15 @@ def test_a_batch_is_listed_by_serial_and_its_worst_explained(circuit: resonator.
 
 
 def test_a_model_off_in_frequency_shows_in_a_batch(circuit: resonator.Explored) -> None:
-    """Twelve sweeps of articles about right in size, all 1 % low: the model's error, known far better than before."""
+    """Six sweeps of articles about right in size, all 1 % low: the model's error, known far better than before."""
     rng = np.random.default_rng(6)
     sweeps = [
         named(swept(circuit, {"side": 0.1 * rng.standard_normal()}, share=-0.01, seed=i), str(i))
-        for i in range(12)
+        for i in range(6)
     ]
     _, m = measured(sweeps)
     assert m.frequency == pytest.approx(0.99, abs=2.0 * m.frequency_error + 0.001)
-    assert m.frequency_error < 0.005
+    assert m.frequency_error < 0.006
 
 
 def test_moves_are_no_larger_than_they_need_to_be(circuit: resonator.Explored) -> None:

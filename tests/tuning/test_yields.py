@@ -42,7 +42,7 @@ def brute_force(found: resonator.Explored, wanted_db: float, articles: int = 300
 @pytest.mark.parametrize("wanted_db", [10.0, 12.0, 14.0])
 def test_pass_fraction_agrees_with_brute_force(wanted_db: float) -> None:
     found, _, _ = resonator.explored()
-    got = find_yield(found, 12, wanted_db, articles=8000)
+    got = find_yield(found, 12, wanted_db, articles=8000, share_points=256)
     assert got.passing.low <= got.passing.value <= got.passing.high
     assert got.passing.value == pytest.approx(brute_force(found, wanted_db), abs=0.03)
     assert got.expected == pytest.approx(12 * got.passing.value)
@@ -52,7 +52,7 @@ def test_pass_fraction_agrees_with_brute_force(wanted_db: float) -> None:
 
 def test_the_models_error_outweighs_and_is_told_apart() -> None:
     found, _, _ = resonator.explored()
-    got = find_yield(found, 12, 12.0, articles=8000)
+    got = find_yield(found, 12, 12.0, articles=8000, share_points=1024)
     assert got.shop.value > got.passing.value
     assert set(got.shares) == {*found.spread.names, FREQUENCY}
     assert FREQUENCY not in got.shop_shares
@@ -65,7 +65,7 @@ def test_a_measured_correction_takes_the_models_error_away() -> None:
     recipe, _ = near("boatshed-5g8")
     told = Measured.model_validate({"frequency": 1.0, "frequency_error": 0.0})
     found, _, _ = resonator.explored(recipe=recipe.model_copy(update={"measured": told}))
-    got = find_yield(found, 12, 12.0, articles=4000)
+    got = find_yield(found, 12, 12.0, articles=4000, share_points=256)
     assert got.passing == got.shop
     assert got.shares[FREQUENCY].total == 0.0
 
@@ -76,7 +76,7 @@ def test_the_remedy_brings_what_it_says() -> None:
     changed = recipe.model_copy(update={"measured": told})
     found, _, _ = resonator.explored(recipe=changed)
     wanted = 13.0
-    got = find_yield(found, 12, wanted, articles=6000)
+    got = find_yield(found, 12, wanted, articles=6000, share_points=256)
     assert got.passing.value < 0.95
     side = next(r for r in got.remedies if r.key == "side")
     assert side.needed is not None and side.needed < side.now
@@ -84,12 +84,14 @@ def test_the_remedy_brings_what_it_says() -> None:
         update={"tolerances": Tolerances.model_validate({"side": f"{side.needed:.4f} mm"})}
     )
     again, _, _ = resonator.explored(recipe=tighter)
-    assert find_yield(again, 12, wanted, articles=6000).passing.value == pytest.approx(0.95, abs=0.01)
+    assert find_yield(again, 12, wanted, articles=6000, share_points=256).passing.value == pytest.approx(
+        0.95, abs=0.01
+    )
 
 
 def test_what_misses_as_drawn_is_told_first() -> None:
     found, _, _ = resonator.explored()
-    got = find_yield(found, 12, 35.0, articles=2000)
+    got = find_yield(found, 12, 35.0, articles=2000, share_points=256)
     assert not got.nominal_passes
     assert got.passing.value == 0.0
     assert all(r.needed is None for r in got.remedies)
@@ -100,8 +102,8 @@ def test_the_surfaces_error_widens_the_interval() -> None:
     from dataclasses import replace
 
     found, _, _ = resonator.explored()
-    sharp = find_yield(found, 12, 13.0, articles=4000).passing
-    blunt = find_yield(replace(found, error_db=0.5), 12, 13.0, articles=4000).passing
+    sharp = find_yield(found, 12, 13.0, articles=4000, share_points=256).passing
+    blunt = find_yield(replace(found, error_db=0.5), 12, 13.0, articles=4000, share_points=256).passing
     assert blunt.high - blunt.low > 2.0 * (sharp.high - sharp.low)
 
 
@@ -116,9 +118,9 @@ def test_wilson_interval(p: float, n: int, low: float, high: float) -> None:
 
 def test_the_same_every_time_and_whole_as_data() -> None:
     found, _, _ = resonator.explored()
-    one = json.dumps(yield_data(find_yield(found, 6, 10.0, articles=2000)))
+    one = json.dumps(yield_data(find_yield(found, 6, 10.0, articles=2000, share_points=256)))
     again, _, _ = resonator.explored()
-    assert one == json.dumps(yield_data(find_yield(again, 6, 10.0, articles=2000)))
+    assert one == json.dumps(yield_data(find_yield(again, 6, 10.0, articles=2000, share_points=256)))
     data = json.loads(one)
     assert sum(data["histogram"]["counts"]) == 2000
     assert len(data["histogram"]["edges_db"]) == len(data["histogram"]["counts"]) + 1
@@ -126,7 +128,7 @@ def test_the_same_every_time_and_whole_as_data() -> None:
 
 def test_text_names_every_dimension_and_its_source() -> None:
     found, known, _ = resonator.explored()
-    text = yield_text(find_yield(found, 6, 10.0, articles=2000))
+    text = yield_text(find_yield(found, 6, 10.0, articles=2000, share_points=256))
     for d in known.dimensions:
         assert d.title in text
         assert d.source in text

@@ -202,6 +202,7 @@ class SpacerDesign:
     plastic: str
     posts: tuple[Point2, ...]
     post_screw: str  # screw of a post, e.g. "M3"
+    sets: int | None = None  # of removable blocks; None: by the batch
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -234,6 +235,9 @@ class CutterDesign:
     smallest_hole_mm: float
     stock_x_mm: float
     stock_y_mm: float
+    spacing_mm: float = 3.0  # between blanks on the stock sheet
+    margin_mm: float = 5.0  # of the stock sheet, kept free
+    grain: str = "none"  # "x" or "y": all blanks keep one way to the sheet's rolling direction
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -274,6 +278,25 @@ class SheetDesign:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class WireStockDesign:
+    """Wire as bought. None: a length long enough for the whole batch."""
+
+    length_mm: float | None = None
+    leg_length_mm: float | None = None
+    tube_length_mm: float | None = None
+    cut_loss_mm: float = 0.0
+    end_waste_mm: float = 50.0
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class PricesDesign:
+    """What the recipe says things cost: (key, price), in `currency`, a label."""
+
+    currency: str = ""
+    each: tuple[tuple[str, float], ...] = ()
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Design:
     """One antenna, every number resolved. `values` tells where the main ones came from."""
 
@@ -295,3 +318,5 @@ class Design:
     conflicts: tuple[Conflict, ...]
     station: StationDesign = StationDesign()
     sheet: SheetDesign = SheetDesign()
+    wire_stock: WireStockDesign = WireStockDesign()
+    prices: PricesDesign = PricesDesign()

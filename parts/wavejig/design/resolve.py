@@ -18,6 +18,7 @@ from wavejig.design.model import (
     FeedDesign,
     FixtureDesign,
     FoldingDesign,
+    PricesDesign,
     PrinterDesign,
     RadiatorDesign,
     ReflectorDesign,
@@ -26,6 +27,7 @@ from wavejig.design.model import (
     StationDesign,
     TargetDesign,
     ToleranceDesign,
+    WireStockDesign,
 )
 from wavejig.design.sheet import default_base, inside_radius_mm, resolve_sheet
 from wavejig.design.wire import extent, ground_at, recess_mm, resolve_radiator
@@ -75,7 +77,11 @@ def resolve(recipe: Recipe) -> Design:
         feed=feed,
         reflector=reflector,
         spacer=SpacerDesign(
-            style=recipe.spacer.style, plastic=recipe.spacer.material, posts=posts, post_screw=POST_SCREW
+            style=recipe.spacer.style,
+            plastic=recipe.spacer.material,
+            posts=posts,
+            post_screw=POST_SCREW,
+            sets=None if recipe.spacer.sets == "auto" else recipe.spacer.sets,
         ),
         printer=_printer(recipe),
         fixture=FixtureDesign(style=recipe.fixture.style),
@@ -98,6 +104,15 @@ def resolve(recipe: Recipe) -> Design:
             wind_speed_m_per_s=recipe.station.wind_speed,
         ),
         sheet=SheetDesign(paper=recipe.sheet.paper, projection=recipe.sheet.projection),
+        wire_stock=_wire_stock(recipe),
+        prices=PricesDesign(
+            currency=recipe.prices.currency,
+            each=tuple(
+                (key, price)
+                for key, price in recipe.prices.model_dump(exclude={"currency"}).items()
+                if price is not None
+            ),
+        ),
     )
 
 
@@ -279,6 +294,28 @@ def _cutter(recipe: Recipe, stock: _Stock) -> CutterDesign:
         smallest_hole_mm=smallest if c.smallest_hole == "auto" else c.smallest_hole,
         stock_x_mm=c.stock_sheet[0],
         stock_y_mm=c.stock_sheet[1],
+        spacing_mm=stock.cutter.spacing_in_mm(stock.sheet_mm, c.kerf) if c.spacing == "auto" else c.spacing,
+        margin_mm=stock.cutter.edge_margin_mm if c.margin == "auto" else c.margin,
+        grain=_grain(recipe, stock) if c.grain == "auto" else c.grain,
+    )
+
+
+def _grain(recipe: Recipe, stock: _Stock) -> str:
+    """Sheet is rolled along its longer side (common practice, no source), and that matters where it is folded."""
+    if recipe.reflector.lips == "none" or not stock.sheet_metal.foldable:
+        return "none"
+    x, y = recipe.cutter.stock_sheet
+    return "x" if x >= y else "y"
+
+
+def _wire_stock(recipe: Recipe) -> WireStockDesign:
+    w = recipe.wire_stock
+    return WireStockDesign(
+        length_mm=None if w.length == "auto" else w.length,
+        leg_length_mm=None if w.leg_length == "auto" else w.leg_length,
+        tube_length_mm=None if w.tube_length == "auto" else w.tube_length,
+        cut_loss_mm=w.cut_loss,
+        end_waste_mm=w.end_waste,
     )
 
 

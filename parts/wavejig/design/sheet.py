@@ -97,7 +97,9 @@ def resolve_sheet(
     holes += [Hole(x_mm=h.x, y_mm=h.y, diameter_mm=h.diameter, purpose=h.purpose) for h in r.holes]
     for hole in holes:
         if _edge_room_mm(hole, base, own) < 0.0:
-            across = f"{base[0]:g} mm round" if own and own.shape == "round" else f"{base[0]:g} x {base[1]:g} mm"
+            across = (
+                f"{base[0]:g} mm round" if own and own.shape == "round" else f"{base[0]:g} x {base[1]:g} mm"
+            )
             key = "reflector.own" if own else "reflector.base"
             conflicts.append(
                 Conflict(

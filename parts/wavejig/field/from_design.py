@@ -17,8 +17,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from wavejig.design.model import Design
-from wavejig.field.mesh_plan import MeshPlan
 from wavejig.field.mesh_own import own_triangles
+from wavejig.field.mesh_plan import MeshPlan
 from wavejig.field.mesh_sheet import sheet_triangles
 from wavejig.field.mesh_wire import chords
 from wavejig.field.model import Insulation, Model, Port, Wire

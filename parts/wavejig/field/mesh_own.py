@@ -9,6 +9,7 @@ meet sharply. Lengths in mm.
 
 from __future__ import annotations
 
+import itertools
 import math
 from collections.abc import Sequence
 
@@ -90,9 +91,7 @@ def to_square(at: Point2, radius: float) -> Point2:
 def _edge(grid: Grid, cells: set[tuple[int, int, int]]) -> list[tuple[int, int]]:
     """The floor's edge nodes, once round counter-clockwise."""
     last = grid.last
-    found = {
-        p for ring in grid.rings(cells) for p in ring if p[0] in (0, last[0]) or p[1] in (0, last[1])
-    }
+    found = {p for ring in grid.rings(cells) for p in ring if p[0] in (0, last[0]) or p[1] in (0, last[1])}
     middle = (last[0] / 2.0, last[1] / 2.0)
     return sorted(found, key=lambda p: math.atan2(p[1] - middle[1], p[0] - middle[0]))
 
@@ -114,7 +113,7 @@ def _wall(
     half = np.array([tray.half_x_mm, tray.half_y_mm])
     stops = profile(own)
     levels = [stops[0]]
-    for n, (a, b) in enumerate(zip(stops, stops[1:], strict=False)):
+    for n, (a, b) in enumerate(itertools.pairwise(stops)):
         length = math.dist(a, b)
         rows = plan.choose(("wall", n), lambda length=length: max(1, math.ceil(length / largest_mm - 1e-9)))  # type: ignore[misc]
         levels += [
@@ -122,7 +121,7 @@ def _wall(
         ]
     rings = [np.column_stack([feet * (1.0 + d / half), np.full(len(feet), z)]) for d, z in levels]
     out = []
-    for low, high in zip(rings, rings[1:], strict=False):
+    for low, high in itertools.pairwise(rings):
         for k in range(len(feet)):
             m = (k + 1) % len(feet)
             p, q, r, s = low[k], low[m], high[m], high[k]

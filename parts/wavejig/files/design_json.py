@@ -7,7 +7,7 @@ import math
 from pathlib import Path
 from typing import Any
 
-from wavejig.design.model import Design
+from wavejig.design.model import Design, OwnShape
 from wavejig.files.errors import FileCheckError
 from wavejig.files.making_json import Made, fixture_data, prints_data, spacer_data
 from wavejig.fixture.model import Fixture
@@ -178,6 +178,7 @@ def _reflector(design: Design, pattern: FlatPattern) -> dict[str, Any]:
         "bend_deduction": None if r.bend_deduction_mm is None else _n(r.bend_deduction_mm),
         "lips": [{"edge": p.edge, "height": _n(p.height_mm), "angle": _n(p.angle_deg)} for p in r.lips],
         "corner_style": r.corner_style,
+        **({} if r.own is None else {"own": _own(r.own)}),
         "flat_size": [_n(v) for v in pattern.size_mm],
         "flat_area_mm2": _n(pattern.area_mm2),
         "holes": [
@@ -185,6 +186,17 @@ def _reflector(design: Design, pattern: FlatPattern) -> dict[str, Any]:
             for h in r.holes
         ],
         "up": r.up,
+    }
+
+
+def _own(own: OwnShape) -> dict[str, Any]:
+    """The dish; base is then its floor inside, and flat_size that floor's size."""
+    return {
+        "shape": own.shape,
+        "depth": _n(own.depth_mm),
+        "slope": _n(own.slope_deg),
+        "radius": _n(own.radius_mm),
+        "rim": _n(own.rim_mm),
     }
 
 

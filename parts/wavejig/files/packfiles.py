@@ -13,10 +13,12 @@ from typing import TYPE_CHECKING, Any
 
 from wavejig.files.bending_json import bending_data
 from wavejig.files.design_json import check_design_json, design_data, write_design_json
+from wavejig.files.drilldxf import drill_layers
 from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
 from wavejig.files.dxfcheck import check_dxf
 from wavejig.files.fieldfiles import write_field
 from wavejig.files.glb import ColouredMesh, check_glb, write_glb
+from wavejig.files.kept import Kept, inputs
 from wavejig.files.making_json import Made
 from wavejig.files.manifest import Entry, check_manifest, write_manifest
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
@@ -82,6 +84,7 @@ class PackFiles:
         *,
         predict: bool = True,
         announce: Callable[[str], None] = lambda _: None,
+        kept: Kept | None = None,
     ) -> None:
         assert inspection.radiator and inspection.tray and inspection.spacer and inspection.fixture
         self.inspection = inspection
@@ -93,10 +96,12 @@ class PackFiles:
         self.root = root
         self.predict = predict
         self.announce = announce
+        self.kept = kept
         self.prediction: Prediction | None = None
         self.bend_order = BendOrder(pieces=())
         self.entries: list[Entry] = []
         self.assembly: list[NamedSolid] = []
+        self.pictured: list[tuple[ColouredMesh, str]] = []  # and "antenna", or the part it is a tool for
         self.meshes: dict[str, tuple[Mesh, Measure]] = {}
         self.prints: list[tuple[str, int, Printability]] = []
         self.pattern: FlatPattern = flat_pattern(self.tray, self.design.name)
@@ -111,6 +116,31 @@ class PackFiles:
         if self.predict:
             yield Step(title="field", run=self.write_field)
         yield Step(title="design.json", run=self.write_design)
+
+    def do(self, step: Step) -> None:
+        """Run a step, or take over what it made in the last build where its inputs are the same."""
+        if self.kept is None:
+            step.run()
+            return
+        plans = (self.radiator, self.tray, self.spacer, self.fixture, self.pattern)
+        given = inputs(step.title, self.design, plans)
+        lists = {
+            "entries": self.entries, "assembly": self.assembly, "pictured": self.pictured, "prints": self.prints,
+        }  # fmt: skip
+        before = {name: len(of) for name, of in lists.items()}
+        left = self.kept.recall(step.title, given, self.root)
+        if left is None:
+            found = self.inspection.findings
+            step.run()
+            left = {name: of[before[name] :] for name, of in lists.items()}
+            left["findings"] = tuple(f for f in self.inspection.findings if f not in found)
+            left["bend_order"] = self.bend_order
+            self.kept.remember(step.title, given, self.root, left["entries"], left)
+            return
+        for name, of in lists.items():
+            of.extend(left[name])
+        self._found(left["findings"])
+        self.bend_order = left["bend_order"]
 
     def finish(self, versions: dict[str, str]) -> None:
         """The manifest, and the last look at the whole folder."""
@@ -152,11 +182,20 @@ class PackFiles:
         self._note("radiator/bend-table.csv", "csv", "radiator", "mm")
 
     def write_reflector(self) -> None:
-        """tray.step, the blank with bends and marks, and the cut-only blanks in both versions."""
+        """tray.step, the blank with bends and marks, and the cut-only blanks in both versions.
+
+        A dish of the user's own is only drilled: own.step, and its floor with what is drilled where.
+        """
         metal = _METAL_COLOURS.get(self.design.reflector.metal.name, _OTHER_METAL)
         solid = NamedSolid(name="reflector", shape=tray_solid(self.tray), colour=metal)
-        self._step([solid], "reflector/tray.step", "reflector")
+        own = self.tray.own is not None
+        self._step([solid], "reflector/own.step" if own else "reflector/tray.step", "reflector")
         self.assembly.append(solid)
+        if own:
+            self._dxf(
+                drill_layers(self.tray, self.pattern), "reflector/drill-template.dxf", "reflector", cut=False
+            )
+            return
         pattern = self.pattern
         if self.design.cutter.offset_in_file:
             pattern = with_kerf(pattern, self.design.cutter.kerf_mm)
@@ -201,6 +240,7 @@ class PackFiles:
         for solid in self.assembly:
             mesh = tessellate(solid.shape, name=solid.name)
             pieces.append((ColouredMesh(mesh=mesh, colour=solid.colour), measure(solid.shape)))
+        self.pictured += [(piece, "antenna") for piece, _ in pieces]
         path = self._path("assembly.glb")
         write_glb([piece for piece, _ in pieces], path)
         check_glb(path, [(piece.mesh.name, m, piece.colour) for piece, m in pieces])
@@ -212,7 +252,11 @@ class PackFiles:
         from wavejig.field.prediction import predict
 
         model = model_from_design(self.design)
-        self.prediction = predict(self.design, model=model, announce=self.announce)
+
+        def solve() -> Prediction:
+            return predict(self.design, model=model, announce=self.announce)
+
+        self.prediction = solve() if self.kept is None else self.kept.solve(self.design, model, solve)
         for name, kind, units in write_field(self.root / "field", model, self.prediction):
             self._note(f"field/{name}", kind, "field", units)
         self._found(prediction_findings(self.prediction))
@@ -261,6 +305,8 @@ class PackFiles:
         printer = self.design.printer
         bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
         self.prints.append((part, count, require_printable(mesh, bed, BED_MARGIN_MM)))
+        if part != "spacer":  # which is shown in its place in the assembly
+            self.pictured.append((ColouredMesh(mesh=mesh, colour=_PLASTIC), part))
         title = f"{self.design.name} {name}"
         stl, threemf = self._path(f"{part}/{name}.stl"), self._path(f"{part}/{name}.3mf")
         write_stl(mesh, stl, title)

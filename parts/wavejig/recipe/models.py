@@ -366,6 +366,22 @@ class Spacer(_Table):
     material: Annotated[str, word("printed plastic", "wavejig stock plastics")] = Field(
         "PETG", description="printed plastic"
     )
+    sets: Annotated[
+        int | Auto,
+        Reads(_sets, {"anyOf": [{"type": "integer", "minimum": 1, "maximum": 500}, {"const": "auto"}]}),
+    ] = Field(
+        AUTO,
+        description="removable blocks to print, in sets; auto: two, one to solder on while the other cools, or one "
+        "for a single antenna. Posts stay in: there is a set for each antenna",
+    )
+
+
+def _sets(value: Any) -> Any:
+    if isinstance(value, str) and value.strip().lower() == AUTO:
+        return AUTO
+    if isinstance(value, bool) or not isinstance(value, int) or not 1 <= value <= 500:
+        raise refuse(value, 'a whole number from 1 to 500, or "auto"', "Write the number without quotes.")
+    return value
 
 
 class Printer(_Table):
@@ -408,7 +424,37 @@ class Cutter(_Table):
     )
     smallest_hole: AutoSize = Field(AUTO, description="smallest hole the shop cuts; auto: the thickness")
     stock_sheet: Annotated[tuple[Size, Size], BeforeValidator(_pair)] = Field(
-        (600.0, 300.0), description="sheet the blanks are cut from"
+        (600.0, 300.0), description="sheet the blanks are cut from, along x and y"
+    )
+    spacing: Annotated[float | Auto, auto_quantity(LENGTH, 0.1, 100.0)] = Field(
+        AUTO, description="between blanks on a stock sheet; auto: by process, and no less than the thickness"
+    )
+    margin: Annotated[float | Auto, auto_quantity(LENGTH, 0.0, 200.0)] = Field(
+        AUTO, description="edge of the stock sheet kept free; auto: by process"
+    )
+    grain: Annotated[str, choice("auto", "x", "y", "none")] = Field(
+        "auto",
+        description="rolling direction of the stock sheet, along its x or y: all blanks keep theirs; none: it does "
+        "not matter, blanks may be turned; auto: along the longer side where the sheet is folded, else none",
+    )
+
+
+_Stock = Annotated[float | Auto, auto_quantity(LENGTH, 50.0, 2e6)]
+
+
+class WireStock(_Table):
+    """The wire as it is bought: the cut plan divides the batch over such lengths."""
+
+    length: _Stock = Field(
+        AUTO, description="of one spool or bar of the radiator's wire; auto: one spool is long enough for all"
+    )
+    leg_length: _Stock = Field(AUTO, description="the same for legs of another wire")
+    tube_length: _Stock = Field(AUTO, description="the same for semi-rigid tube")
+    cut_loss: Annotated[float, quantity(LENGTH, 0.0, 20.0)] = Field(
+        0.0, description="lost at each cut: 0 with side cutters, the blade's width with a saw"
+    )
+    end_waste: Annotated[float, quantity(LENGTH, 0.0, 1000.0)] = Field(
+        50.0, description="of each spool or bar: what cannot be held or straightened at its end"
     )
 
 
@@ -508,6 +554,37 @@ class Sheet(_Table):
     )
 
 
+def _currency(value: Any) -> Any:
+    if not isinstance(value, str) or len(value) > 12 or not value.isprintable():
+        raise refuse(value, "a label of up to 12 characters", 'Write it like currency = "EUR".')
+    return value
+
+
+_Price = Annotated[float, number(0.0, 1e6)]
+
+
+class Prices(_Table):
+    """What things cost, each optional; the bill of materials multiplies and adds up, nothing more."""
+
+    currency: Annotated[str, Reads(_currency, {"type": "string", "maxLength": 12})] = Field(
+        "", description="a label; nothing is converted"
+    )
+    wire: _Price | None = Field(None, description="radiator wire, a metre")
+    leg_wire: _Price | None = Field(None, description="wire of the legs if it is another, a metre")
+    tube: _Price | None = Field(None, description="semi-rigid tube, a metre")
+    sheet: _Price | None = Field(None, description="one stock sheet")
+    blank: _Price | None = Field(None, description="cutting and folding one blank")
+    connector: _Price | None = Field(None, description="one panel connector")
+    plug: _Price | None = Field(None, description="the mating plug to solder with")
+    screw: _Price | None = Field(None, description="one screw, of any size on the bill")
+    nut: _Price | None = Field(None, description="one nut")
+    washer: _Price | None = Field(None, description="one washer")
+    lug: _Price | None = Field(None, description="one solder lug")
+    pole_clamp: _Price | None = Field(None, description="one pole clamp")
+    dowel: _Price | None = Field(None, description="one dowel pin")
+    plastic: _Price | None = Field(None, description="printed plastic, a kilogram")
+
+
 class Recipe(_Table):
     """A whole recipe."""
 
@@ -527,3 +604,5 @@ class Recipe(_Table):
     measured: Measured = Field(Measured())
     station: Station = Field(Station())
     sheet: Sheet = Field(Sheet())
+    wire_stock: WireStock = Field(WireStock())
+    prices: Prices = Field(Prices())

@@ -36,9 +36,33 @@ class _Panel:
     wish: np.ndarray
 
 
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Mark:
+    """A text that found its place: the middle of its line, and the strokes that go with it (an arrow)."""
+
+    text: str
+    height_mm: float
+    at: tuple[float, float]
+    rotation_deg: float
+    beside: tuple[Stroke, ...] = ()
+
+    def strokes(self, text: str | None = None) -> tuple[Stroke, ...]:
+        """The mark drawn; with `text`, another text no wider in its place."""
+        drawn = strokes(
+            self.text if text is None else text, self.height_mm, *self.at, self.rotation_deg, "centre"
+        )
+        return (*drawn, *self.beside)
+
+
 def place_marks(tray: Tray, name: str) -> tuple[tuple[Stroke, ...], tuple[str, ...]]:
     """All marks of a blank as strokes, and the texts for which there was no room."""
-    out: list[Stroke] = []
+    placed, unplaced = find_marks(tray, (name,) if name else ())
+    return tuple(stroke for mark in placed for stroke in mark.strokes()), unplaced
+
+
+def find_marks(tray: Tray, names: tuple[str, ...]) -> tuple[tuple[Mark, ...], tuple[str, ...]]:
+    """Where each mark of a blank stands, `names` last, and the texts for which there was no room."""
+    out: list[Mark] = []
     unplaced: list[str] = []
     taken: list[tuple[np.ndarray, np.ndarray]] = []
     loop = tray.outline.points()
@@ -53,13 +77,12 @@ def place_marks(tray: Tray, name: str) -> tuple[tuple[Stroke, ...], tuple[str, .
         panels = (_flange(lip), _towards(base, outward(lip.edge) * 1e3))
         wanted.append((f"BEND UP {lip.angle_deg:g}\u00b0", along_edge, panels, False))
     wanted.append(("THIS FACE TO RADIATOR", upright, (_towards(base, bottom),), False))
-    if name:
-        wanted.append((name, upright, (_towards(base, bottom),), False))
+    wanted += [(name, upright, (_towards(base, bottom),), False) for name in names]
     for text, rotation, places, arrow in wanted:
         for height in _HEIGHTS_MM:
             mark = _try(tray, loop, taken, text, height, rotation, places, arrow)
-            if mark:
-                out.extend(mark)
+            if mark is not None:
+                out.append(mark)
                 break
         else:
             unplaced.append(text)
@@ -75,8 +98,8 @@ def _try(
     rotation: float,
     panels: tuple[_Panel, ...],
     arrow: bool,
-) -> tuple[Stroke, ...]:
-    """The mark's strokes at the free place nearest to where it is wished, or none; notes the box taken."""
+) -> Mark | None:
+    """The mark at the free place nearest to where it is wished, or none; notes the box taken."""
     lead = height if arrow else 0.0  # room for the arrow in front of the text
     size = np.array([text_width_mm(text, height) + lead, height])
     half = (size if rotation in (0.0, 180.0) else size[::-1]) / 2.0
@@ -88,11 +111,14 @@ def _try(
         turn = math.radians(rotation)
         right = np.array([math.cos(turn), math.sin(turn)])
         middle = spot + right * lead / 2.0
-        letters = strokes(text, height, float(middle[0]), float(middle[1]), rotation, "centre")
-        if not arrow:
-            return letters
-        return (*letters, *_arrow(spot + right * (0.3 * height - size[0] / 2.0), height, right))
-    return ()
+        return Mark(
+            text=text,
+            height_mm=height,
+            at=(float(middle[0]), float(middle[1])),
+            rotation_deg=rotation,
+            beside=_arrow(spot + right * (0.3 * height - size[0] / 2.0), height, right) if arrow else (),
+        )
+    return None
 
 
 def _free_spot(

@@ -8,7 +8,7 @@ from __future__ import annotations
 import math
 
 from wavejig.design.model import OwnShape, ReflectorDesign
-from wavejig.geometry.plane import Contour
+from wavejig.design.own import floor_outline
 from wavejig.reflector.model import CornerPractice, Tray, TrayError
 
 
@@ -42,14 +42,6 @@ def own_tray(reflector: ReflectorDesign, practice: CornerPractice) -> Tray:
         outline=floor_outline(own, half),
         own=own,
     )
-
-
-def floor_outline(own: OwnShape, half: tuple[float, float], further_mm: float = 0.0) -> Contour:
-    """The floor's edge, every point `further_mm` further out (below 0: in); round corners stay none."""
-    x, y = half[0] + further_mm, half[1] + further_mm
-    if own.shape == "round":
-        return Contour(vertices=((x, 0.0, 1.0), (-x, 0.0, 1.0)))  # two half circles, counter-clockwise
-    return Contour.rectangle(-x, -y, x, y)
 
 
 def profile(own: OwnShape) -> tuple[tuple[float, float], ...]:
@@ -87,3 +79,28 @@ def surface_mm2(tray: Tray) -> float:
     else:
         wall = (2.0 * math.pi * a if own.shape == "round" else 4.0 * (a + b)) * own.depth_mm
     return seen(0.0) + wall + seen(top + own.rim_mm) - seen(top)
+
+
+def outside_mm(tray: Tray) -> tuple[float, float]:
+    """How much further out the outside of the wall stands than its inside (at one height), and at z = -T."""
+    own = tray.own
+    assert own is not None
+    s = math.radians(own.slope_deg)
+    wall = tray.thickness_mm / math.cos(s)
+    return wall, wall - tray.thickness_mm * math.tan(s)
+
+
+def section(tray: Tray, axis: str) -> Contour:
+    """The dish cut through its middle: (across, height), sharp between floor and wall, counter-clockwise."""
+    own = tray.own
+    assert own is not None
+    half, t, depth = tray.half_mm(f"{axis}+"), tray.thickness_mm, own.depth_mm
+    wall, foot = outside_mm(tray)
+    top = half + own.reach_mm(depth)
+    if own.rim_mm > 0.0:
+        far = top + own.rim_mm
+        side = [(half + own.reach_mm(depth - t) + wall, depth - t), (far, depth - t), (far, depth)]
+    else:
+        side = [(top + wall, depth)]
+    right = [(half + foot, -t), *side, (top, depth), (half, 0.0)]
+    return Contour.polygon([*right, *((-x, z) for x, z in reversed(right))])

@@ -20,8 +20,8 @@ from wavejig.forming.sheet import (
 from wavejig.geometry.plane import Contour
 from wavejig.reflector.corners import blank_outline, lip_end
 from wavejig.reflector.model import EDGES, CornerPractice, LipEnd, Tray, TrayError, TrayLip, outward
-from wavejig.reflector.own import own_tray
 from wavejig.reflector.outline import crosses_itself, distances_mm, inside
+from wavejig.reflector.own import own_tray
 
 __all__ = [
     "CornerPractice",

@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from wavejig.design.model import Design
+from wavejig.design.model import Design, OwnShape
 from wavejig.radiator.model import Radiator
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import Tray
@@ -20,6 +20,8 @@ if TYPE_CHECKING:
 Rows = tuple[tuple[str, ...], ...]
 
 
+# A dish may be off by this before the recipe has to follow; common practice, no source.
+DISH_OFF_MM = 1.0
 # A calliper tells a wire's diameter to about this; common practice, no source.
 WIRE_LIMIT_MM = 0.03
 
@@ -64,8 +66,11 @@ def first_article(design: Design, radiator: Radiator, tray: Tray, pattern: FlatP
     d = r.wire_diameter_mm
     out = [_around("wire, bare", "calliper, three places", d, WIRE_LIMIT_MM)]
     w, h = pattern.size_mm
-    out.append(_around("blank along x", "over all, flat", w, general_mm(design, w)))
-    out.append(_around("blank along y", "over all, flat", h, general_mm(design, h)))
+    if tray.own is not None:
+        out += _dish(tray, tray.own)
+    else:
+        out.append(_around("blank along x", "over all, flat", w, general_mm(design, w)))
+        out.append(_around("blank along y", "over all, flat", h, general_mm(design, h)))
     holes = [x for x in tray.holes if x.purpose in ("connector", "tube", "foot")]
     out += [
         _around(
@@ -130,6 +135,23 @@ def first_article(design: Design, radiator: Radiator, tray: Tray, pattern: FlatP
         Check(what="continuity", how="centre to shell: a short", nominal="< 1 \u03a9", low=None, high=None)
     )
     return tuple(out)
+
+
+def _dish(tray: Tray, own: OwnShape) -> list[Check]:
+    """The user's own dish against the recipe's sizes, by what a calliper and a straightedge reach."""
+    reach = own.reach_mm(own.depth_mm)
+    out = []
+    for axis in "x" if own.shape == "round" else "xy":
+        mouth = 2.0 * (tray.half_mm(f"{axis}+") + reach)
+        along = "" if own.shape == "round" else f" along {axis}"
+        # its size at the mouth is what can be read; the floor follows from depth and lean
+        out.append(
+            _around(f"mouth of the dish{along}", "inside, at the rim, twice across", mouth, 2.0 * DISH_OFF_MM)
+        )
+    out.append(
+        _around("depth of the dish", "straightedge over the rim, four places", own.depth_mm, DISH_OFF_MM)
+    )
+    return out
 
 
 BENCH_HEAD = (

@@ -11,7 +11,7 @@ from wavejig.radiator.model import Radiator
 from wavejig.sheets.model import number
 from wavejig.shop.bench import joint_heat_w
 from wavejig.spacer.model import Spacer
-from wavejig.stock.hardware import screws
+from wavejig.stock.hardware import screw_through
 from wavejig.stock.processes import plastic
 
 NAMES = {
@@ -27,8 +27,7 @@ NAMES = {
 
 def screw_for(hole_mm: float) -> str:
     """The largest screw with 0.1 mm of play in a hole ("" if none is that thin)."""
-    fits = [s.name for s in screws() if s.diameter_mm <= hole_mm - 0.1 + 1e-9]
-    return fits[-1] if fits else ""
+    return screw_through(hole_mm)
 
 
 def _iron(design: Design) -> str:

@@ -14,6 +14,7 @@ from wavejig.sheets.checks import (
 from wavejig.sheets.common import sheet_text, wire_text
 from wavejig.sheets.feedsteps import NAMES, screw_for
 from wavejig.sheets.model import number
+from wavejig.sheets.own import size_text
 from wavejig.spacer.model import Spacer
 
 
@@ -31,9 +32,12 @@ def materials(design: Design, radiator: Radiator, pattern: FlatPattern, spacer: 
         size = f"\u00d8{number(p.diameter_mm, 3)} \u00d7 {number(p.cut_length_mm, 1)} mm"
         rows.append((NAMES[p.role], metal, size, "1", f"{n} = {number(n * p.cut_length_mm / 1000.0, 2)} m"))
     w, h = pattern.size_mm
-    rows.append(
-        ("reflector blank", sheet_text(design), f"{number(w)} \u00d7 {number(h)} mm flat", "1", f"{n}")
-    )
+    if design.reflector.own is not None:
+        rows.append(("your own dish", sheet_text(design), size_text(design), "1", f"{n}"))
+    else:
+        rows.append(
+            ("reflector blank", sheet_text(design), f"{number(w)} \u00d7 {number(h)} mm flat", "1", f"{n}")
+        )
     feed = design.feed
     if feed.connector is not None:
         rows.append(("panel connector", feed.connector.name, feed.connector.series, "1", f"{n}"))

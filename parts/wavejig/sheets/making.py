@@ -22,6 +22,7 @@ from wavejig.sheets.fit import best_scale
 from wavejig.sheets.flow import PLAIN, Picture, heading, lead, numbered, para, table, title
 from wavejig.sheets.layout import lay_out
 from wavejig.sheets.model import Item, Shape, View, number
+from wavejig.sheets.own import reflector_facts, reflector_words
 from wavejig.sheets.process import assembly_steps
 from wavejig.shop import Inspection
 
@@ -72,7 +73,7 @@ def _head(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     yield title(f"{design.name}: build sheet")
     yield para(
         f"{design.quantity} \u00d7 {FAMILY_WORDS[design.radiator.family]} before a "
-        f"{'folded tray' if design.reflector.lips else 'flat reflector'}, for "
+        f"{reflector_words(design)}, for "
         f"{number(t.band_low_hz / 1e6)} to {number(t.band_high_hz / 1e6)} MHz, {design.polarisation} "
         "polarisation. Wanted: "
         f"return loss of {number(t.return_loss_db)} dB or more in {number(t.reference_ohm)} \u03a9 over "
@@ -94,8 +95,7 @@ def _head(sheet: BuildSheet, wide: float) -> Iterator[Any]:
         ),
         ("feed gap", design.radiator.feed_gap_mm),
         ("standoff, wire's centre to sheet", design.radiator.standoff_mm),
-        ("reflector base along x", design.reflector.base_x_mm),
-        ("reflector base along y", design.reflector.base_y_mm),
+        *reflector_facts(design),
         ("wire diameter", design.radiator.wire_diameter_mm),
     ]
     rows = [(name, f"{number(v)} mm") for name, v in facts if v]
@@ -110,8 +110,8 @@ def _head(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     yield para(
         "Directions: +x to the right and +y up as seen from the radiator side; +z towards the radiator "
         "and the main "
-        "beam. Every picture says from which side it is seen. Drawings: folder drawings/; cutting "
-        "files: reflector/.",
+        "beam. Every picture says from which side it is seen. Drawings: folder drawings/; "
+        f"{'cutting files' if design.reflector.own is None else 'drill template'}: reflector/.",
         small=True,
     )
 

@@ -17,6 +17,7 @@ from wavejig.sheets.feedsteps import (
     tube_steps,
 )
 from wavejig.sheets.model import number
+from wavejig.sheets.own import own_steps
 from wavejig.spacer.model import Spacer
 
 
@@ -25,7 +26,7 @@ def assembly_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: 
     return tuple(
         (
             *_wire(design, radiator, fixture),
-            *_reflector(design),
+            *_reflector(design, fixture),
             *(
                 leg_steps(design, radiator, spacer, fixture)
                 if design.feed.style == "legs"
@@ -73,8 +74,10 @@ def _wire(design: Design, radiator: Radiator, fixture: Fixture) -> Iterator[str]
     )
 
 
-def _reflector(design: Design) -> Iterator[str]:
-    if design.reflector.lips:
+def _reflector(design: Design, fixture: Fixture) -> Iterator[str]:
+    if design.reflector.own is not None:
+        yield from own_steps(design, fixture)
+    elif design.reflector.lips:
         yield (
             "Fold the blank: the face marked THIS FACE TO RADIATOR is the inside, every lip folds "
             "towards it. Measure "

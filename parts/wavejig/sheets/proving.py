@@ -136,12 +136,13 @@ def _mounting(sheet: BuildSheet) -> Iterator[Any]:
     yield CondPageBreak(50 * mm)
     yield heading("Mounting")
     upright = design.polarisation == "vertical"
+    marked = "marked THIS EDGE UP" if tray.own is None else "UP on the drill template; mark it on the back"
     lobes = ""
     if design.radiator.family != "quad":
         lobes = f" and the lobes stand {'side by side' if upright else 'one above the other'}"
     yield lead(
         "Which way up:",
-        f"for {design.polarisation} polarisation edge {design.reflector.up} (marked THIS EDGE UP) hangs "
+        f"for {design.polarisation} polarisation edge {design.reflector.up} ({marked}) hangs "
         f"uppermost; the feed gap then lies {'upright' if upright else 'level'}{lobes}. Both ends of the link must "
         "match: turned a quarter, the link loses 20 dB and more.",
     )

@@ -10,10 +10,12 @@ from wavejig.fixture.bending.model import BendOrder
 from wavejig.reflector.flat import FlatPattern
 from wavejig.sheets.blank import blank_drawing
 from wavejig.sheets.buildsheet import BuildSheet, write_build_sheet
+from wavejig.sheets.drillpaper import write_drill_paper
 from wavejig.sheets.dxfsheet import check_sheet_dxf, write_sheet_dxf
 from wavejig.sheets.fixture import fixture_drawing
 from wavejig.sheets.frame import PAPERS_MM
 from wavejig.sheets.model import Sheet
+from wavejig.sheets.own import own_drawing
 from wavejig.sheets.pdf import check_pdf, write_sheet_pdf
 from wavejig.sheets.radiator import radiator_drawing
 from wavejig.sheets.tray import tray_drawing
@@ -31,7 +33,12 @@ def drawings(inspection: Inspection, pattern: FlatPattern) -> tuple[tuple[str, S
     assert i.radiator and i.tray and i.fixture
     out = [
         ("radiator", radiator_drawing(i.design, i.radiator)),
-        ("reflector", blank_drawing(i.design, i.tray, pattern)),
+        (
+            "reflector",
+            blank_drawing(i.design, i.tray, pattern)
+            if i.tray.own is None
+            else own_drawing(i.design, i.tray, pattern),
+        ),
         ("fixture", fixture_drawing(i.design, i.fixture, i.radiator)),
     ]
     if i.tray.lips:
@@ -62,6 +69,12 @@ def write_sheets(
         write_sheet_pdf(sheet, root / pdf, design.name)
         check_pdf(root / pdf, design.name, sheet.paper_mm)
         entries.append(Entry(path=pdf, kind="pdf", part=part, units="mm"))
+    if inspection.tray is not None and inspection.tray.own is not None:
+        name = "reflector/drill-template.pdf"
+        (root / "reflector").mkdir(exist_ok=True)
+        write_drill_paper(design, inspection.tray, pattern, root / name)
+        check_pdf(root / name, design.name, PAPERS_MM[design.sheet.paper])
+        entries.append(Entry(path=name, kind="pdf", part="reflector", units="mm"))
     path = root / "build-sheet.pdf"
     write_build_sheet(
         BuildSheet(inspection=inspection, pattern=pattern, prediction=prediction, order=order), path

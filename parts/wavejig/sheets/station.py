@@ -115,8 +115,14 @@ def wind(design: Design, tray: Tray) -> Wind:
     reach = {e: tray.half_mm(e) for e in ("x+", "x-", "y+", "y-")}
     for lip in tray.lips:
         reach[lip.edge] += max(lip.height_mm * math.cos(math.radians(lip.angle_deg)), 0.0)
+    own = tray.own
+    if own is not None:
+        for edge in reach:
+            reach[edge] += own.reach_mm(own.depth_mm) + max(own.rim_mm, tray.thickness_mm)
     area = (reach["x+"] + reach["x-"]) * (reach["y+"] + reach["y-"]) / 1e6
-    drag = DRAG_CUP if tray.lips else DRAG_PLATE
+    if own is not None and own.shape == "round":
+        area *= math.pi / 4.0
+    drag = DRAG_CUP if tray.lips or own is not None else DRAG_PLATE
     return Wind(
         speed_m_per_s=speed,
         assumed=given is None,

@@ -41,10 +41,22 @@ def templates(
         "RADIATOR, seen from the radiator side: lay it on face up, legs through a hole cut in the middle",
         tuple(_radiator(radiator)), box, frame_mm,
     )  # fmt: skip
+    if tray.own is not None:
+        yield from drill_templates(tray, pattern, frame_mm)
+        return
     x0, y0, x1, y1 = pattern.outline.bounds()
     yield from _tiled(
         "REFLECTOR BLANK before folding, seen from the radiator side",
         tuple(_blank(tray, pattern)), (x0 - 1.0, y0 - 1.0, x1 + 1.0, y1 + 1.0), frame_mm,
+    )  # fmt: skip
+
+
+def drill_templates(tray: Tray, pattern: FlatPattern, frame_mm: tuple[float, float]) -> Iterator[Tile]:
+    """The floor of a dish that is there already, to lie in it while its holes are punched."""
+    x0, y0, x1, y1 = pattern.outline.bounds()
+    yield from _tiled(
+        "FLOOR OF THE DISH, seen from the radiator side: cut out along its edge, tape in, punch through the crosses",
+        tuple(_blank(tray, pattern)), (x0 - 1.0, y0 - 1.0, x1 + 1.0, y1 + 1.0), frame_mm, "DRILL TEMPLATE 1:1",
     )  # fmt: skip
 
 
@@ -82,7 +94,11 @@ def _up(from_y: float, to_y: float, x: float) -> Iterator[Item]:
 
 
 def _tiled(
-    name: str, items: tuple[Item, ...], box: tuple[float, float, float, float], frame_mm: tuple[float, float]
+    name: str,
+    items: tuple[Item, ...],
+    box: tuple[float, float, float, float],
+    frame_mm: tuple[float, float],
+    title: str = "CHECK TEMPLATE 1:1",
 ) -> Iterator[Tile]:
     wide, high = frame_mm[0] - _SIDE_MM, frame_mm[1] - _HEAD_MM
     columns, rows = (_count(box[2] - box[0], wide), _count(box[3] - box[1], high))
@@ -116,7 +132,7 @@ def _tiled(
             caption = f"{name}{many}{', turned a quarter on the page' if turned else ''}"
             yield Tile(
                 caption=caption,
-                drawn=(*parts, *_furniture(caption, frame_mm, (row, column), (rows, columns), window)),
+                drawn=(*parts, *_furniture(title, caption, frame_mm, (row, column), (rows, columns), window)),
             )
 
 
@@ -208,6 +224,7 @@ def _clipped(
 
 
 def _furniture(
+    title: str,
     caption: str,
     frame_mm: tuple[float, float],
     at: tuple[int, int],
@@ -216,7 +233,7 @@ def _furniture(
 ) -> Iterator[Drawn]:
     """Words, scale bars, and where the neighbouring tiles are glued on."""
     top = frame_mm[1]
-    yield Word(at=(0.0, top - 4.5), text="CHECK TEMPLATE 1:1", height_mm=3.2, anchor="left", bold=True)
+    yield Word(at=(0.0, top - 4.5), text=title, height_mm=3.2, anchor="left", bold=True)
     yield Word(at=(0.0, top - 9.0), text=caption, height_mm=2.0, anchor="left")
     yield Word(
         at=(0.0, top - 13.0),

@@ -19,7 +19,7 @@ LEAST_MARGIN_WAVES = 0.125
 def electrical_findings(design: Design, radiator: Radiator | None) -> Iterator[Finding]:
     """Standoff and gap against the printer, base against the radiator."""
     yield from _prints(design)
-    if radiator is not None:
+    if radiator is not None and design.reflector.own is None:  # a dish's wall ends what a margin is for
         yield from _margins(design, radiator)
 
 

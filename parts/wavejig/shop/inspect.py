@@ -20,6 +20,7 @@ from wavejig.shop.electrical import electrical_findings
 from wavejig.shop.feed import conflict_findings, feed_findings, value_findings
 from wavejig.shop.finding import ERROR, Finding
 from wavejig.shop.outdoors import outdoor_findings
+from wavejig.shop.own import own_findings
 from wavejig.shop.prints import fixture_findings, spacer_findings
 from wavejig.shop.sheet import fold_material_findings, hole_findings, sheet_findings
 from wavejig.shop.wire import wire_findings
@@ -73,6 +74,7 @@ def inspect(design: Design) -> Inspection:
     found += electrical_findings(design, radiator)
     if tray is not None:
         found += sheet_findings(design, tray)
+        found += own_findings(design, tray, radiator)
     if radiator is not None:
         found += wire_findings(design, radiator)
         spacer = plan_spacer(design, radiator)

@@ -27,11 +27,14 @@ def outdoor_findings(design: Design) -> Iterator[Finding]:
     low = design.reflector.up[0] + "-"
     has_low_lip = any(lip.edge == low for lip in design.reflector.lips)
     drained = any(h.purpose == "drain" for h in design.reflector.holes)
+    if design.reflector.own is not None:
+        has_low_lip = True
     if has_low_lip and not drained:
         yield Finding(
             code="no-drain",
             severity=WARNING,
-            message=f"the lip at the low edge ({low}) holds rain: there is no drain hole",
+            message=f"the {'lip' if design.reflector.own is None else 'wall'} at the low edge ({low}) holds rain: "
+            "there is no drain hole",
             remedy='Write drain = "auto" in [mounting], or add a hole with purpose = "drain".',
             where="mounting.drain",
         )

@@ -17,7 +17,9 @@ from wavejig.stock.sheet import minimum_inside_radius_mm
 
 
 def sheet_findings(design: Design, tray: Tray) -> Iterator[Finding]:
-    """Everything about the blank and its folds."""
+    """Everything about the blank and its folds; nothing for a dish that is there already."""
+    if tray.own is not None:
+        return
     yield from _folds(design, tray)
     yield from _holes(design, tray)
     yield from _cutting(design)
@@ -209,7 +211,7 @@ def _cutting(design: Design) -> Iterator[Finding]:
 def _stock(design: Design, tray: Tray) -> Iterator[Finding]:
     x0, y0, x1, y1 = tray.outline.bounds()
     w, h = x1 - x0, y1 - y0
-    margin = 5.0  # edge margin most shops keep for clamps; common practice, no source
+    margin = design.cutter.margin_mm
     sx, sy = design.cutter.stock_x_mm - 2.0 * margin, design.cutter.stock_y_mm - 2.0 * margin
     if not ((w <= sx and h <= sy) or (h <= sx and w <= sy)):
         yield Finding(
@@ -219,6 +221,23 @@ def _stock(design: Design, tray: Tray) -> Iterator[Finding]:
             f"{design.cutter.stock_y_mm:g} mm with {margin:g} mm of margin all round",
             remedy="Use a larger stock_sheet, or a smaller base or lower lips.",
             where="cutter.stock_sheet",
+        )
+    elif design.quantity > 1:
+        yield from _bridge(design)
+
+
+def _bridge(design: Design) -> Iterator[Finding]:
+    """What stays between two blanks once both are cut."""
+    c, t = design.cutter, design.reflector.thickness_mm
+    left = c.spacing_mm - c.kerf_mm
+    if left < t - 1e-9 and c.process != "guillotine":
+        yield Finding(
+            code="blanks-crowded",
+            severity=WARNING,
+            message=f"blanks {c.spacing_mm:g} mm apart leave {max(left, 0.0):g} mm between two cuts of {c.kerf_mm:g} mm; "
+            f"a bridge narrower than the sheet's {t:g} mm tips, burns or tears",
+            remedy=f'Write spacing = "{t + c.kerf_mm:g} mm" or more, or leave it "auto".',
+            where="cutter.spacing",
         )
 
 

@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from wavejig.design.model import Design
 from wavejig.radiator.clearance import clearances
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import stock_of
 from wavejig.shop.finding import ERROR, NOTE, WARNING, Finding
 
 # Air below which two wires of an antenna are as good as joined once a bend is a degree off.
@@ -21,6 +22,7 @@ def wire_findings(design: Design, radiator: Radiator) -> Iterator[Finding]:
     yield from _pins(design)
     yield from _clearance(design, radiator)
     yield from _straights(design, radiator)
+    yield from _stock(design, radiator)
 
 
 def _radius(design: Design) -> Iterator[Finding]:
@@ -96,3 +98,22 @@ def _straights(design: Design, radiator: Radiator) -> Iterator[Finding]:
             remedy="Bend these in one grip, or use a smaller bend radius.",
             where=f"radiator, {piece.role}",
         )
+
+
+def _stock(design: Design, radiator: Radiator) -> Iterator[Finding]:
+    """A piece must come out of one spool or bar."""
+    for piece in radiator.pieces:
+        bought = stock_of(design, piece)
+        if bought is None or bought.length_mm is None:
+            continue
+        room = bought.length_mm - design.wire_stock.end_waste_mm - design.wire_stock.cut_loss_mm
+        if piece.cut_length_mm > room + 1e-9:
+            yield Finding(
+                code="wire-over-stock",
+                severity=ERROR,
+                message=f"{piece.role}: {piece.cut_length_mm:.1f} mm to cut; a length of {bought.length_mm:g} mm gives "
+                f"{max(room, 0.0):.1f} mm after {design.wire_stock.end_waste_mm:g} mm of end waste and "
+                f"{design.wire_stock.cut_loss_mm:g} mm lost in the cut",
+                remedy=f"Buy longer lengths (wire_stock.{bought.key}), or waste less at the end if you can.",
+                where=f"wire_stock.{bought.key}",
+            )

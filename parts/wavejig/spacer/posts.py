@@ -10,7 +10,7 @@ import numpy as np
 from wavejig.design.model import Conflict, Design, Point2
 from wavejig.geometry.plane import Circle, Contour
 from wavejig.radiator.model import Radiator
-from wavejig.spacer.keepout import Keepout, Wires, flat_half_mm, keepouts
+from wavejig.spacer.keepout import Keepout, Wires, edge_room_mm, flat_half_mm, keepouts
 from wavejig.spacer.model import Post
 from wavejig.stock.hardware import screw, tap_drill_mm
 
@@ -112,6 +112,13 @@ def _post(
                 f"needs {circle:.1f} mm",
                 "Make the base larger.",
             )
+    if edge_room_mm(design, at) < circle:  # a round dish: along neither axis, but between them
+        return _conflict(
+            "reflector.own",
+            f"{where} stands {max(edge_room_mm(design, at), 0.0):.1f} mm from the end of the dish's flat floor and "
+            f"needs {circle:.1f} mm",
+            "Take a larger dish.",
+        )
     return Post(
         name=f"spacer-post-{number}",
         outline=_hexagon(at, circle),

@@ -31,6 +31,12 @@ class Screw:
     washer_thickness_mm: float
 
 
+def screw_through(hole_mm: float) -> str:
+    """The largest screw with 0.1 mm of play in a hole of this diameter in mm; "" if none is that thin."""
+    fits = [s.name for s in screws() if s.diameter_mm <= hole_mm - 0.1 + 1e-9]
+    return fits[-1] if fits else ""
+
+
 @cache
 def screws() -> tuple[Screw, ...]:
     """All screws, thinnest first."""

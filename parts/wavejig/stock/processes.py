@@ -43,10 +43,16 @@ class Cutter:
     cuts_holes: bool
     takes_copper: bool
     takes_laminate: bool
+    spacing_mm: float
+    edge_margin_mm: float
 
     def smallest_hole_in_mm(self, thickness_mm: float) -> float:
         """Smallest hole diameter in mm in a sheet of this thickness."""
         return max(self.smallest_hole_mm, self.smallest_hole_factor * thickness_mm)
+
+    def spacing_in_mm(self, thickness_mm: float, kerf_mm: float) -> float:
+        """Usual distance in mm between two parts: what is left between two cuts is no narrower than thick."""
+        return max(self.spacing_mm, thickness_mm + kerf_mm)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -21,7 +21,7 @@ from pathlib import Path
 from wavejig.recipe.models import Recipe
 
 LIBRARIES = ("numpy", "scipy", "numba")
-_NOT_PHYSICS = {"name", "quantity"}
+_NOT_PHYSICS = {"name", "quantity", "wire_stock", "prices"}
 
 
 def cache_folder() -> Path:

@@ -9,7 +9,9 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from wavejig.tuning.asbuilt import Nominal
+from wavejig.radiator.feedlegs import PlanError
+from wavejig.radiator.plan import plan as plan_radiator
+from wavejig.tuning.asbuilt import ArticleError, Nominal
 from wavejig.tuning.points import designed_points, random_articles, within
 from wavejig.tuning.solving import Job, Told, solve_all
 from wavejig.tuning.spread import CUT_SIGMAS, Dimension, Spread
@@ -35,6 +37,7 @@ CORNERS = 16
 _WIDE_SHARE = {"side": 0.04, "lobe_diameter": 0.04, "standoff": 0.12, "feed_gap": 0.15}
 _WIDE_REACHES = 4.0
 _MARGIN = 0.004  # share of frequency beyond what the articles reach
+_PULLS = 8  # times that a point is pulled in
 _SEED = 715517  # any fixed number
 
 
@@ -80,6 +83,7 @@ def explore(
     for i, d in enumerate(spread.dimensions):
         points[:, i] = within(d, points[:, i])
     unseen = random_articles(spread.dimensions, _halton(HELD_OUT, len(axes.names)))
+    points, unseen = _drawable(article, axes, points), _drawable(article, axes, unseen)
     few = np.linspace(target.band_low_hz, target.band_high_hz, NODES) / spread.frequency
     dense = chebyshev_nodes(*_range(axes), DENSE * NODES)
     jobs = [
@@ -121,6 +125,32 @@ def _axes(article: Nominal, spread: Spread, wide: bool, least_margin: float) -> 
     return Axes(names=names, centre=centre, half=half, nodes_hz=_nodes(low, high), size=size)
 
 
+def _drawable(article: Nominal, axes: Axes, points: Array) -> Array:
+    """Points that break a rule of the drawing (a lap too near the sheet, say) pulled towards the middle.
+
+    The rule is the designer's; an article may come out beyond it all the same, and the surface goes on
+    smoothly there.
+    """
+    out = points.copy()
+    for row in out:
+        for _ in range(_PULLS):
+            if can_be_drawn(article, _values(axes, row)):
+                break
+            row[:] = axes.centre + 0.7 * (row - axes.centre)
+        else:
+            row[:] = axes.centre
+    return out
+
+
+def can_be_drawn(article: Nominal, values: dict[str, float]) -> bool:
+    """Whether an article with these dimensions can be laid out."""
+    try:
+        plan_radiator(article.moved(values))
+    except (ArticleError, PlanError):
+        return False
+    return True
+
+
 def _half(dimension: Dimension, wide: bool) -> float:
     """Half-width of the box. A first article's main sizes may be off by several times the tolerance."""
     share = _WIDE_SHARE.get(dimension.key, 0.0) if wide else 0.0
@@ -146,9 +176,13 @@ def _fit_points(dimensions: int, most_solves: int) -> int:
 def _job(article: Nominal, axes: Axes, values: Array, frequencies_hz: Array) -> Job:
     return Job(
         nominal=article,
-        values={n: float(v) for n, v in zip(axes.names, values, strict=True)},
+        values=_values(axes, values),
         frequencies_hz=tuple(float(f) for f in frequencies_hz),
     )
+
+
+def _values(axes: Axes, row: Array) -> dict[str, float]:
+    return {n: float(v) for n, v in zip(axes.names, row, strict=True)}
 
 
 def _halton(count: int, dimensions: int) -> Array:

@@ -71,7 +71,8 @@ def _strange(m: Measured, fit: Fit) -> str:
     why = f"; {ends} ran to the end of what is plausible" if ends else ""
     return (
         f"  not explained by the dimensions (misfit {fit.misfit:.1f} times the noise{why}): look "
-        "for a bad joint, a wrong connector, something near the antenna, or a poor calibration; take the figures below with care"
+        "for a bad joint, a wrong connector, something near the antenna, or a poor calibration; take the figures "
+        "below with care"
     )
 
 

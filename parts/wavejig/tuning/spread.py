@@ -3,7 +3,8 @@
 A tolerance t, plus or minus, stands for a normal spread with 95 % of the articles within it (t = 1.96
 standard deviations), cut off at 2.5 of them; or, if the recipe says so, for an even spread over it.
 One number stands for a dimension of the whole article: its sides move together, as they do when one
-board bends them all.
+board bends them all. Sides of the two lobes 0.3 mm apart, one each way, change a 5.8 GHz biquad's reflection
+by a ninth of what 0.3 mm on all of them does (solved), so lobes of their own would add next to nothing.
 """
 
 from __future__ import annotations

@@ -21,6 +21,7 @@ from wavejig.tuning.surface import worst_return_loss_db
 Array = NDArray[np.float64]
 
 ARTICLES = 20_000
+SHARE_POINTS = 2048
 WANTED = 0.95
 _CHUNK = 4096
 _Z95 = 1.959964  # two-sided 95 % of a normal distribution
@@ -113,8 +114,17 @@ class _Batch:
         return out
 
 
-def find_yield(explored: Explored, quantity: int, wanted_db: float, articles: int = ARTICLES) -> Yield:
-    """Virtual articles, their pass fraction, what decides it, and what would mend it."""
+def find_yield(
+    explored: Explored,
+    quantity: int,
+    wanted_db: float,
+    articles: int = ARTICLES,
+    share_points: int = SHARE_POINTS,
+) -> Yield:
+    """Virtual articles, their pass fraction, what decides it, and what would mend it.
+
+    share_points: of each of the two matrices of the sensitivity, a power of two.
+    """
     batch = _Batch(explored)
     uniform = np.random.default_rng(_SEED).random((articles, batch.inputs))
     worst, shop = batch.worst_db(uniform), batch.worst_db(uniform, model=False)
@@ -128,8 +138,8 @@ def find_yield(explored: Explored, quantity: int, wanted_db: float, articles: in
     def output(model: bool) -> Callable[[Array], Array]:
         return lambda u: batch.worst_db(u, model=model)
 
-    both = shares(output(True), batch.inputs)
-    alone = shares(output(False), batch.inputs)[:-1]
+    both = shares(output(True), batch.inputs, share_points)
+    alone = shares(output(False), batch.inputs, share_points)[:-1]
     some = uniform[: min(articles, 4000)]
     return Yield(
         explored=explored,
@@ -222,11 +232,8 @@ def _remedies(
 
 
 def _edges(worst: Array) -> Array:
-    """Histogram edges on whole, half or tenth decibels, about a dozen of them."""
-    low, high = float(np.percentile(worst, 0.1)), float(np.percentile(worst, 99.9))
+    """Histogram edges on whole, half or tenth decibels, about a dozen of them and the few that tails need."""
+    low, high = float(np.percentile(worst, 0.5)), float(np.percentile(worst, 99.5))
     step = next((s for s in (0.1, 0.2, 0.5, 1.0, 2.0) if (high - low) / s <= 14), 5.0)
-    first, last = math.floor(low / step), math.ceil(high / step)
-    edges = np.arange(first, max(last, first + 1) + 1) * step
-    edges[0] = min(edges[0], worst.min())
-    edges[-1] = max(edges[-1], worst.max())
-    return np.asarray(edges)
+    first, last = math.floor(worst.min() / step), math.ceil(worst.max() / step)
+    return np.asarray(np.arange(first, max(last, first + 1) + 1) * step)

@@ -73,7 +73,7 @@ def key(rows: Iterable[tuple[str, str]], name: str) -> Element:
         [
             el(
                 "li",
-                el("svg", line((0.0, 6.0), (34.0, 6.0), class_), viewBox="0 0 34 12", aria_hidden="true"),
+                el("svg", _sample(class_), viewBox="0 0 34 12", aria_hidden="true"),
                 el("span", text),
             )
             for class_, text in rows
@@ -81,3 +81,10 @@ def key(rows: Iterable[tuple[str, str]], name: str) -> Element:
         class_="key",
         aria_label=f"lines of the picture: {name}",
     )
+
+
+def _sample(class_: str) -> Element:
+    """A short stretch of a line, or the marker itself."""
+    if class_ == "cross":
+        return mark((17.0, 6.0), "worst")
+    return line((0.0, 6.0), (34.0, 6.0), class_)

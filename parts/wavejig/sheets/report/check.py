@@ -65,7 +65,9 @@ def _link(path: Path, element: Any, value: str, ids: set[str]) -> None:
             raise FileCheckError(path, f"a link to {value!r}", "an id that is there")
         return
     target = unquote(value)
-    inside = re.fullmatch(r"[^:?#\\]+", target) and not target.startswith("/") and ".." not in target.split("/")
+    inside = (
+        re.fullmatch(r"[^:?#\\]+", target) and not target.startswith("/") and ".." not in target.split("/")
+    )
     if not inside or not ((path.parent / target).is_file() or target == _WRITTEN_LAST):
         raise FileCheckError(path, f"a link to {value!r}", "a file of this pack")
 
@@ -95,9 +97,16 @@ def _pictures(path: Path, tree: Any) -> None:
             continue
         title, told = svg.findtext("title"), svg.findtext("desc")
         if not (title and told) or svg.get("role") != "img":
-            raise FileCheckError(path, f"the picture {svg.get('id')!r} without words", "title and description")
-        if "nan" in " ".join(str(v) for e in svg.iter() for k, v in e.attrib.items() if k in _NUMBERS).lower():
-            raise FileCheckError(path, f"the picture {svg.get('id')!r} with a place that is no number", "numbers")
+            raise FileCheckError(
+                path, f"the picture {svg.get('id')!r} without words", "title and description"
+            )
+        if (
+            "nan"
+            in " ".join(str(v) for e in svg.iter() for k, v in e.attrib.items() if k in _NUMBERS).lower()
+        ):
+            raise FileCheckError(
+                path, f"the picture {svg.get('id')!r} with a place that is no number", "numbers"
+            )
 
 
 _NUMBERS = ("d", "x", "y", "x1", "y1", "x2", "y2", "cx", "cy", "r", "width", "height", "viewbox", "transform")

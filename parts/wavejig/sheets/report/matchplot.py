@@ -31,9 +31,7 @@ class SweepShown:
 
 def loss_db(reflection: NDArray[np.complex128]) -> NDArray[np.float64]:
     """(n,) return loss in positive dB, at most what is drawn."""
-    out: NDArray[np.float64] = np.minimum(
-        -20.0 * np.log10(np.maximum(np.abs(reflection), 1e-6)), _DEEPEST_DB
-    )
+    out: NDArray[np.float64] = np.minimum(-20.0 * np.log10(np.maximum(np.abs(reflection), 1e-6)), _DEEPEST_DB)
     return out
 
 
@@ -45,7 +43,7 @@ def match_plot(p: Prediction, sweeps: Sequence[SweepShown] = ()) -> tuple[Elemen
     inside = [(s, (s.frequencies_hz >= low) & (s.frequencies_hz <= high)) for s in sweeps]
     inside = [(s, part) for s, part in inside if int(part.sum()) > 1]
     deepest = max([float(loss.max()), *(float(loss_db(s.reflection[part]).max()) for s, part in inside)])
-    bottom = max(20.0, p.wanted_db + 3.0, 1.1 * deepest)
+    bottom = min(max(20.0, p.wanted_db + 3.0, 1.1 * deepest), _DEEPEST_DB)
 
     def x(hz: float) -> float:
         return _LEFT + (_WIDE - _LEFT - _RIGHT) * (hz - low) / (high - low)
@@ -94,7 +92,9 @@ def match_plot(p: Prediction, sweeps: Sequence[SweepShown] = ()) -> tuple[Elemen
     parts.append(el("path", d=curve, class_="curve predicted"))
     w = p.worst
     parts.append(mark((x(w.frequency_hz), y(min(w.return_loss_db, bottom))), "worst"))
-    parts.append(el("rect", x=_LEFT, y=_TOP, width=_WIDE - _LEFT - _RIGHT, height=floor - _TOP, class_="frame"))
+    parts.append(
+        el("rect", x=_LEFT, y=_TOP, width=_WIDE - _LEFT - _RIGHT, height=floor - _TOP, class_="frame")
+    )
     described = (
         f"Predicted return loss from {megahertz(low)} to {megahertz(high)}. In the band, {megahertz(p.low_hz)} to "
         f"{megahertz(p.high_hz)}, the worst is {w.return_loss_db:.1f} dB at {megahertz(w.frequency_hz)}; "
@@ -102,6 +102,7 @@ def match_plot(p: Prediction, sweeps: Sequence[SweepShown] = ()) -> tuple[Elemen
     )
     rows = [
         ("curve predicted", "predicted"),
+        ("cross", f"\u00d7 worst in the band: {w.return_loss_db:.1f} dB at {megahertz(w.frequency_hz)}"),
         ("wanted", f"wanted, {p.wanted_db:g} dB or deeper over the band (hatched)"),
         *((f"curve {STYLES[i % 3]}", f"measured, {s.name}") for i, (s, _) in enumerate(inside)),
     ]

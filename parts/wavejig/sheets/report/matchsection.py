@@ -53,7 +53,8 @@ def match_section(r: Report) -> Iterator[Element]:
     yield el("p", match_answer(r))
     yield el(
         "p",
-        f"Predicted, not measured; seen {p.reference_plane}, in {number(p.reference_ohm)} \u03a9, in free space. A sweep "
+        f"Predicted, not measured; seen {p.reference_plane}, in {number(p.reference_ohm)} \u03a9, in free space. "
+        "A sweep "
         "taken elsewhere along the cable turns the impedance chart, not the return loss.",
         class_="soft",
     )  # fmt: skip
@@ -62,7 +63,9 @@ def match_section(r: Report) -> Iterator[Element]:
     sweeps = sweeps_shown(r)
     if r.measured is not None and len(r.measured.articles) > len(sweeps):
         yield el(
-            "p", f"Of {len(r.measured.articles)} measured sweeps the {len(sweeps)} worst are drawn.", class_="soft"
+            "p",
+            f"Of {len(r.measured.articles)} measured sweeps the {len(sweeps)} worst are drawn.",
+            class_="soft",
         )
     yield el(
         "div",

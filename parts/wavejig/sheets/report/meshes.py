@@ -90,7 +90,9 @@ def line_drawing(pieces: Iterable[Shown]) -> Element:
     parts = []
     for mesh, points in zip(meshes, flat, strict=True):
         at = (points - low) * scale + 10.0
-        steps = [chain(((float(a[0]), float(a[1])), (float(b[0]), float(b[1])))) for a, b in at[_edges(mesh, away)]]
+        steps = [
+            chain(((float(a[0]), float(a[1])), (float(b[0]), float(b[1])))) for a, b in at[_edges(mesh, away)]
+        ]
         parts.append(el("path", d="".join(steps), class_="edge"))
     names = ", ".join(m.name for m in meshes)
     return picture(

@@ -2,24 +2,22 @@
 
 from __future__ import annotations
 
-import base64
-import hashlib
 from collections.abc import Callable, Iterable
 from importlib.resources import files
 from pathlib import Path
 from urllib.parse import quote
 
 from wavejig.files.manifest import Entry
+from wavejig.sheets.making import FAMILY_WORDS
 from wavejig.sheets.model import number
 from wavejig.sheets.report.check import check_report
 from wavejig.sheets.report.madesection import made_answer, made_section
-from wavejig.sheets.report.markup import Child, Element, Own, el, write
+from wavejig.sheets.report.markup import Child, Element, Own, el, policy_hash, write
 from wavejig.sheets.report.matchsection import match_answer, match_section
 from wavejig.sheets.report.model import Report
 from wavejig.sheets.report.proofsection import change_answer, change_section, measure_answer, measure_section
 from wavejig.sheets.report.tables import size_text, table
 from wavejig.sheets.report.yieldsection import yield_answer, yield_section
-from wavejig.sheets.words import FAMILY_WORDS
 
 NAME = "report.html"
 
@@ -56,7 +54,7 @@ def page(r: Report) -> str:
     style, script = _own("report.css"), _own("viewer.js")
     # nothing is fetched and no other script runs, wherever the page is opened
     policy = (
-        f"default-src 'none'; img-src data:; style-src {_hash(style)}; script-src {_hash(script)}; "
+        f"default-src 'none'; img-src data:; style-src {policy_hash(style)}; script-src {policy_hash(script)}; "
         "base-uri 'none'; form-action 'none'"
     )
     head = el(
@@ -109,7 +107,9 @@ def _body(r: Report) -> Iterable[Element]:
             el("section", el("h2", title, id=f"{key}-head"), inside(r), id=key, aria_labelledby=f"{key}-head")
             for key, title, _, inside in _SECTIONS
         ],
-        el("section", el("h2", "Files", id="files-head"), _files(r), id="files", aria_labelledby="files-head"),
+        el(
+            "section", el("h2", "Files", id="files-head"), _files(r), id="files", aria_labelledby="files-head"
+        ),
         id="main",
     )
     yield el(
@@ -152,14 +152,12 @@ def _files(r: Report) -> Iterable[Element]:
     ]
     total = size_text(sum(size for _, size in r.files))
     yield table(
-        f"{len(rows)} files, {total}, and this page", ("file", "of", "what", "unit", "size"), rows, numbers=(4,)
+        f"{len(rows)} files, {total}, and this page",
+        ("file", "of", "what", "unit", "size"),
+        rows,
+        numbers=(4,),
     )
 
 
 def _own(name: str) -> Own:
     return Own((files("wavejig.sheets.report") / name).read_text(encoding="utf-8"))
-
-
-def _hash(own: Own) -> str:
-    """A source of the Content Security Policy. Source: W3C CSP Level 3, section 2.3.1, from memory."""
-    return f"'sha256-{base64.b64encode(hashlib.sha256(own.text.encode()).digest()).decode('ascii')}'"

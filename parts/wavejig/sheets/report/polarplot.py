@@ -13,7 +13,7 @@ from wavejig.field.prediction import Prediction
 from wavejig.sheets.report.axes import Pt, chain, key, line, picture, word
 from wavejig.sheets.report.markup import Element, el, short
 
-_WIDE, _HIGH, _RADIUS = 420.0, 400.0, 150.0
+_WIDE, _HIGH, _RADIUS = 420.0, 364.0, 150.0
 _DEPTH_DB = 30.0  # drawn below the outer ring
 # In the antenna's own axes: the electric field lies along y, the main beam along z. The cuts' positive
 # angles lean towards these (see `read_pattern`: the field's direction, and z cross it).
@@ -62,11 +62,13 @@ def hung(p: Prediction, up: str) -> tuple[HungCut, HungCut]:
     return seen(-right), seen(upwards)
 
 
-def polar_plots(p: Prediction, up: str, polarisation: str) -> tuple[tuple[Element, Element], tuple[Element, Element]]:
+def polar_plots(
+    p: Prediction, up: str, polarisation: str
+) -> tuple[tuple[Element, Element], tuple[Element, Element]]:
     """Pictures and keys: round the compass, up and down."""
     compass, height = hung(p, up)
     top = max(float(c.gain_dbi.max()) for c in (compass, height))
-    outer = 5.0 * math.ceil((top + 0.3) / 5.0)
+    outer = 5.0 * math.ceil(top / 5.0)
     return (
         _plot(compass, "compass-plot", "Gain round the compass", outer, polarisation, compass_words=True),
         _plot(height, "height-plot", "Gain up and down", outer, polarisation, compass_words=False),
@@ -76,7 +78,7 @@ def polar_plots(p: Prediction, up: str, polarisation: str) -> tuple[tuple[Elemen
 def _plot(
     cut: HungCut, name: str, title: str, outer: float, polarisation: str, *, compass_words: bool
 ) -> tuple[Element, Element]:
-    cx, cy = _WIDE / 2.0, _HIGH / 2.0 + 4.0
+    cx, cy = _WIDE / 2.0, _HIGH / 2.0
 
     def at(angle_deg: float, dbi: float) -> Pt:
         """Compass: straight ahead is up the page, right is right. Height: ahead is to the right, up is up."""
@@ -91,7 +93,7 @@ def _plot(
         r = _RADIUS * (1.0 - below / _DEPTH_DB)
         parts.append(el("circle", cx=cx, cy=cy, r=r, class_="frame" if below == 0.0 else "grid"))
     named = (
-        ((0, "ahead", "middle"), (90, "90\u00b0 right", "start"), (180, "behind", "middle"), (-90, "90\u00b0 left", "end"))
+        ((0, "ahead", "middle"), (90, "right", "start"), (180, "behind", "middle"), (-90, "left", "end"))
         if compass_words
         else ((0, "ahead", "start"), (90, "up", "middle"), (180, "behind", "end"), (-90, "down", "middle"))
     )  # fmt: skip
@@ -104,7 +106,9 @@ def _plot(
             x, y = at(sign * angle, outer)
             dx, dy = (x - cx) / _RADIUS, (y - cy) / _RADIUS
             parts.append(
-                word((x + 15.0 * dx, y + 4.0 + 12.0 * dy), f"{angle}\u00b0", class_="t small", anchor="middle")
+                word(
+                    (x + 15.0 * dx, y + 4.0 + 12.0 * dy), f"{angle}\u00b0", class_="t small", anchor="middle"
+                )
             )
     rows = [("curve predicted", f"gain, {polarisation} polarisation")]
     if float(cut.cross_dbi.max()) > outer - _DEPTH_DB:
@@ -114,8 +118,14 @@ def _plot(
     gain = chain(at(float(a), float(g)) for a, g in zip(cut.angles_deg, cut.gain_dbi, strict=True))
     parts.append(el("path", d=gain, class_="curve predicted"))
     for below in (0.0, 10.0, 20.0):
-        x, y = at(45.0, outer - below)
-        parts.append(word((x + 3.0, y + 4.0), f"{short(outer - below)} dBi", class_="t small halo"))
+        x, y = at(135.0, outer - below)  # behind, where little goes
+        parts.append(
+            word(
+                (x + 3.0, y + 4.0),
+                f"{short(outer - below)} dBi".replace("-", "\u2212"),
+                class_="t small halo",
+            )
+        )
     peak = int(np.argmax(cut.gain_dbi))
     width = cut.source.beamwidth_deg
     half = "" if width is None else f" Half power over {width:.0f} degrees."
@@ -123,7 +133,8 @@ def _plot(
     ahead = float(np.interp(0.0, cut.angles_deg, cut.gain_dbi))
     described = (
         f"{title}, {polarisation} polarisation: {ahead:.1f} dBi straight ahead, most {cut.gain_dbi[peak]:.1f} dBi "
-        f"{where}.{half} Outer ring {short(outer)} dBi, 10 dB from ring to ring, centre {short(outer - _DEPTH_DB)} dBi or less."
+        f"{where}.{half} Outer ring {short(outer)} dBi, 10 dB from ring to ring, centre "
+        f"{short(outer - _DEPTH_DB)} dBi or less."
     )
     return picture(_WIDE, _HIGH, name, title, described, parts), key(rows, title.lower())
 

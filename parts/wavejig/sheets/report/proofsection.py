@@ -48,7 +48,8 @@ def measure_section(r: Report) -> Iterator[Element]:
         "p",
         f"Reflection from {checks.mhz(t.band_low_hz)} to {checks.mhz(t.band_high_hz)} and some way beyond on both "
         f"sides{plane}; antenna towards free space, nothing metal within a few wavelengths "
-        f"({number(t.wavelength_mm, 0)} mm each) before it. It passes with {number(t.return_loss_db)} dB or more over the "
+        f"({number(t.wavelength_mm, 0)} mm each) before it. It passes with {number(t.return_loss_db)} dB or "
+        "more over the "
         "whole band. Save the sweep as a Touchstone file (.s1p).",
     )  # fmt: skip
 
@@ -71,18 +72,25 @@ def change_section(r: Report) -> Iterator[Element]:
         yield from _measured(r.measured)
     else:
         yield el(
-            "p", el("code", f"wavejig measured {r.design.name}.toml first.s1p"), " finds what came out differently, says "
-            "what to do to this article and what to change in the recipe; with ", el("code", "--write"), " it puts that in.",
+            "p", el("code", f"wavejig measured {r.design.name}.toml first.s1p"), " finds what came out differently, "
+            "says what to do to this article and what to change in the recipe; with ", el("code", "--write"),
+            " it puts that in.",
         )  # fmt: skip
     yield table("What the sweep looks like, and where to look", ("on the bench", "look at"), _SYMPTOMS)
     yield el("h3", "Numbers that were not given in the recipe")
     rows = [
-        (_name(k), f"{number(v.value, 3)} {_unit(v.unit)}".strip(), v.origin + (f": {v.source}" if v.source else ""))
+        (
+            _name(k),
+            f"{number(v.value, 3)} {_unit(v.unit)}".strip(),
+            v.origin + (f": {v.source}" if v.source else ""),
+        )
         for k, v in r.design.values
         if v.origin != "recipe"
     ]
     if rows:
-        yield table("Each can be fixed by writing it into the recipe", ("number", "value", "from"), rows, numbers=(1,))
+        yield table(
+            "Each can be fixed by writing it into the recipe", ("number", "value", "from"), rows, numbers=(1,)
+        )
     else:
         yield el("p", "None: the recipe gives them all.")
 
@@ -95,11 +103,16 @@ def _measured(m: Measured) -> Iterator[Element]:
         if a.strange:
             levers = "not explained by its dimensions: look for a bad joint, or something near it"
         rows.append((f"serial {a.sweep.serial}", f"{a.worst_db:.1f} dB", verdict, levers or "nothing"))
-    yield table("Measured articles", ("article", "in-band worst", "verdict", "do to this one"), rows, numbers=(1,))
+    yield table(
+        "Measured articles", ("article", "in-band worst", "verdict", "do to this one"), rows, numbers=(1,)
+    )
     if m.changes:
-        rows = [(_name(c.key), f"{c.now:.2f} mm", f"{c.new:.2f} mm") for c in m.changes]
+        moves = [(_name(c.key), f"{c.now:.2f} mm", f"{c.new:.2f} mm") for c in m.changes]
         yield table(
-            f"Recipe, centreline sizes: then about {m.after_db:.1f} dB", ("number", "now", "new"), rows, numbers=(1, 2)
+            f"Recipe, centreline sizes: then about {m.after_db:.1f} dB",
+            ("number", "now", "new"),
+            moves,
+            numbers=(1, 2),
         )
 
 

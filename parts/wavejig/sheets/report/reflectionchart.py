@@ -14,6 +14,7 @@ from wavejig.sheets.report.matchplot import STYLES, SweepShown
 
 _SIZE = 420.0
 _RADIUS = 178.0
+_SIGNS = {1.0: "+", -1.0: "\u2212"}
 _ROUND = (0.2, 0.5, 1.0, 2.0, 5.0)  # resistances and reactances drawn, over the reference
 
 
@@ -38,7 +39,7 @@ def reflection_chart(p: Prediction, sweeps: Sequence[SweepShown] = ()) -> tuple[
             parts.append(el("path", d=chain(at(complex(g)) for g in (z - 1.0) / (z + 1.0)), class_="grid"))
             edge = (1j * sign * value - 1.0) / (1j * sign * value + 1.0)
             x, y = at(complex(edge) * 1.085)
-            text = f"{'+' if sign > 0 else '\u2212'}j{value * z0:g}"
+            text = f"{_SIGNS[sign]}j{value * z0:g}"
             parts.append(word((x, y + 4.0), text, class_="t small", anchor="middle"))
         left = at((value - 1.0) / (value + 1.0))
         parts.append(word((left[0] + 2.0, left[1] - 3.0), f"{value * z0:g}", class_="t small"))
@@ -57,14 +58,16 @@ def reflection_chart(p: Prediction, sweeps: Sequence[SweepShown] = ()) -> tuple[
     inside = np.concatenate([[ends[0]], inside, [ends[2]]])
     parts.append(el("path", d=chain(at(complex(g)) for g in inside), class_="curve predicted"))
     parts += [mark(at(g), kind) for g, kind in zip(ends, ("low", "middle", "high"), strict=True)]
-    low, middle, high = p.points
+    first, centred, last = p.points
     described = (
-        f"Impedance on the reflection chart for {z0:g} ohm: {_ohms(low)} at the band's low end, {_ohms(middle)} in its "
-        f"middle, {_ohms(high)} at its high end. Inside the dashed circle the return loss is {p.wanted_db:g} dB or more."
+        f"Impedance on the reflection chart for {z0:g} ohm: {_ohms(first)} at the band's low end, {_ohms(centred)} in "
+        f"its middle, {_ohms(last)} at its high end. Inside the dashed circle the return loss is "
+        f"{p.wanted_db:g} dB or more."
     )
     rows = [
-        ("curve predicted", f"predicted in the band: \u25bc {megahertz(low.frequency_hz)}, \u25cf {megahertz(middle.frequency_hz)}, "
-         f"\u25b2 {megahertz(high.frequency_hz)}"),
+        ("curve predicted", f"predicted in the band: \u25bc\u00a0{megahertz(first.frequency_hz)}, "
+         f"\u25cf\u00a0{megahertz(centred.frequency_hz)}, "
+         f"\u25b2\u00a0{megahertz(last.frequency_hz)}"),
         ("curve outside", "predicted outside the band"),
         ("wanted", f"return loss {p.wanted_db:g} dB: stay inside"),
         *used,

@@ -8,10 +8,14 @@ from wavejig.sheets.report.markup import Element, el
 
 
 def table(
-    caption: str, head: Sequence[str], rows: Iterable[Sequence[str | Element]], *, numbers: Sequence[int] = (),
+    caption: str,
+    head: Sequence[str],
+    rows: Iterable[Sequence[str | Element]],
+    *,
+    numbers: Sequence[int] = (),
     write_in: Sequence[int] = (),
 ) -> Element:
-    """A table whose rows become blocks on a phone. numbers: columns set to the right; write_in: left empty."""  # fmt: skip
+    """A table whose rows become blocks on a phone. numbers: columns set to the right; write_in: left empty."""
 
     def kind(column: int) -> str | None:
         return "write" if column in write_in else "n" if column in numbers else None
@@ -20,13 +24,17 @@ def table(
     for row in rows:
         first, *others = row
         cells = [
-            el("td", cell, class_=kind(i), data_head=head[i] or None) for i, cell in enumerate(others, start=1)
+            el("td", cell, class_=kind(i), data_head=head[i] or None)
+            for i, cell in enumerate(others, start=1)
         ]
         body.append(el("tr", el("th", first, scope="row"), cells))
     titles = [el("th", text, scope="col", class_=kind(i)) for i, text in enumerate(head)]
     return el(
         "div",
-        el("table", el("caption", caption, class_="soft"), el("thead", el("tr", titles)), el("tbody", body), class_="stack"),
+        el(
+            "table", el("caption", caption, class_="soft"), el("thead", el("tr", titles)), el("tbody", body),
+            class_="stack",
+        ),
         class_="wide", role="region", aria_label=caption, tabindex="0",
     )  # fmt: skip
 

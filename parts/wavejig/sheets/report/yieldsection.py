@@ -54,7 +54,9 @@ def yield_section(r: Report) -> Iterator[Element]:
         "Which dimension decides it: share of the spread, with all it acts together with",
         ("dimension", "nominal", "tolerance", "share", "shop only", "tolerance from"), rows, numbers=(1, 2, 3, 4),
     )  # fmt: skip
-    yield table("Tolerance that would bring 95 %", ("dimension", "now", "needed"), _remedies(y), numbers=(1, 2))
+    yield table(
+        "Tolerance that would bring 95 %", ("dimension", "now", "needed"), _remedies(y), numbers=(1, 2)
+    )
 
 
 def _remedies(y: Yield) -> Iterator[tuple[str, str, str]]:
@@ -65,7 +67,9 @@ def _remedies(y: Yield) -> Iterator[tuple[str, str, str]]:
             yield "all together", "as they are", needed
             continue
         d = dimensions[remedy.key]
-        needed = "not by this alone" if remedy.needed is None else f"\u00b1{remedy.needed:.2g} {d.unit}".strip()
+        needed = (
+            "not by this alone" if remedy.needed is None else f"\u00b1{remedy.needed:.2g} {d.unit}".strip()
+        )
         yield d.title, f"\u00b1{remedy.now:.3g} {d.unit}".strip(), needed
 
 
@@ -106,7 +110,8 @@ def _histogram(y: Yield) -> Element:
         word(((_LEFT + _WIDE) / 2.0, _HIGH - 8.0), "in-band worst return loss, dB", anchor="middle"),
     ]
     described = (
-        f"Of {len(y.worst_db)} virtual articles {100 * y.passing.value:.1f} % reach {number(y.wanted_db)} dB; nine of ten lie "
+        f"Of {len(y.worst_db)} virtual articles {100 * y.passing.value:.1f} % reach {number(y.wanted_db)} dB; "
+        "nine of ten lie "
         f"between {y.percentiles_db[0]:.1f} and {y.percentiles_db[2]:.1f} dB."
     )
     return picture(_WIDE, _HIGH, "yield-plot", "Virtual articles by return loss", described, parts)

@@ -1,0 +1,1 @@
+"""The whole batch: blanks nested on sheets, wire cut from stock, plates to print, the bill of materials."""
