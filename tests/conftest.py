@@ -5,6 +5,7 @@ from __future__ import annotations
 import itertools
 import os
 from pathlib import Path
+from typing import Any
 
 import pytest
 from hypothesis import HealthCheck, settings
@@ -62,3 +63,16 @@ def saltmarsh(tmp_path_factory: pytest.TempPathFactory) -> Path:
     with pytest.MonkeyPatch.context() as patch:
         patch.setenv("WAVEJIG_CACHE", str(tmp_path_factory.mktemp("cache")))
         return build(recipe, tmp_path_factory.mktemp("packs")).folder
+
+
+@pytest.fixture(scope="session")
+def yard(tmp_path_factory: pytest.TempPathFactory) -> tuple[Path, Any]:
+    """A small pack that took seconds, and what its build kept for the next; tests leave the pack as it is."""
+    from tests.yard import YARD
+    from wavejig.files.kept import Kept
+    from wavejig.pack import build
+
+    recipe = tmp_path_factory.mktemp("recipes") / "yard.toml"
+    recipe.write_text(YARD, encoding="utf-8")
+    memory = Kept()
+    return build(recipe, tmp_path_factory.mktemp("packs"), memory=memory).folder, memory

@@ -106,3 +106,22 @@ def test_fifty_unseen_articles_solved(name: str) -> None:
     assert found.solves <= MOST_SOLVES
     miss = worst_return_loss_db(found.surface.reflection(values, f)) - worst_return_loss_db(truth)
     assert float(np.sqrt(np.mean(miss**2))) < 0.1
+
+
+def test_points_that_cannot_be_drawn_are_pulled_in_and_no_others() -> None:
+    """A saltmarsh article with a low standoff breaks the rule of the lap's height, which is no law of nature."""
+    from wavejig.tuning.explore import _axes, _drawable, can_be_drawn
+    from wavejig.tuning.spread import spread
+
+    recipe, article = near("saltmarsh-2g4")
+    axes = _axes(article, spread(recipe, article), wide=True, least_margin=0.0)
+    points = axes.centre + axes.half * designed_points(len(axes.names), 40, 16)
+    points[:, axes.names.index("lip_angle")] = 89.5
+    points[1, axes.names.index("standoff")] = 12.0
+    drawn = _drawable(article, axes, points)
+    for before, after in zip(points, drawn, strict=True):
+        values = dict(zip(axes.names, map(float, after), strict=True))
+        assert can_be_drawn(article, values)
+        if can_be_drawn(article, dict(zip(axes.names, map(float, before), strict=True))):
+            assert np.array_equal(before, after)
+    assert not np.array_equal(points[1], drawn[1])

@@ -184,6 +184,4 @@ def _plastic(prints: PrintPlan | None) -> Iterator[BillLine]:
 
 
 def _pieces(key: str, item: str, material: str, size: str, each: int, count: int) -> BillLine:
-    return BillLine(
-        key=key, item=item, material=material, size=size, each=each, count=count, unit="pcs"
-    )
+    return BillLine(key=key, item=item, material=material, size=size, each=each, count=count, unit="pcs")

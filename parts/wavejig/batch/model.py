@@ -39,7 +39,7 @@ class Nest:
 
     per_sheet: blanks on a full sheet; fewest_sheets: what no layout can beat, by area alone. grain: of the
     stock, "x", "y" or "none"; blank_grain: which way it then runs in every blank, "x", "y" or "any".
-    bends_along_grain: edges whose folds run along it.
+    bends_along_grain, bends_across_grain: edges whose folds run along it, and across.
     """
 
     stock_mm: tuple[float, float]
@@ -48,6 +48,7 @@ class Nest:
     grain: str
     blank_grain: str
     bends_along_grain: tuple[str, ...]
+    bends_across_grain: tuple[str, ...]
     per_sheet: int
     sheets: tuple[NestSheet, ...]
     fewest_sheets: int

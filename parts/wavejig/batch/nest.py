@@ -39,8 +39,8 @@ def nest(design: Design, tray: Tray, pattern: FlatPattern) -> Nest:
             break
     if not laid:
         raise NestError(
-            f"a blank of {size[0]:.1f} x {size[1]:.1f} mm fits no stock sheet of {c.stock_x_mm:g} x {c.stock_y_mm:g} mm "
-            f"with {c.margin_mm:g} mm of margin"
+            f"a blank of {size[0]:.1f} x {size[1]:.1f} mm fits no stock sheet of {c.stock_x_mm:g} x "
+            f"{c.stock_y_mm:g} mm with {c.margin_mm:g} mm of margin"
         )
     area = abs(pattern.outline.area_mm2)
     stock_area = c.stock_x_mm * c.stock_y_mm
@@ -61,7 +61,9 @@ def nest(design: Design, tray: Tray, pattern: FlatPattern) -> Nest:
     grown = (size[0] + c.spacing_mm) * (size[1] + c.spacing_mm)
     most = math.floor((room[0] + c.spacing_mm) * (room[1] + c.spacing_mm) / grown + 1e-9)
     turned = laid[0].turned
-    along = "any" if c.grain == "none" else ("y" if turned else "x") if c.grain == "x" else "x" if turned else "y"
+    along = (
+        "any" if c.grain == "none" else ("y" if turned else "x") if c.grain == "x" else "x" if turned else "y"
+    )
     return Nest(
         stock_mm=(c.stock_x_mm, c.stock_y_mm),
         margin_mm=c.margin_mm,
@@ -69,9 +71,8 @@ def nest(design: Design, tray: Tray, pattern: FlatPattern) -> Nest:
         grain=c.grain,
         blank_grain=along,
         # a fold at an x edge runs along y
-        bends_along_grain=tuple(
-            lip.edge for lip in tray.lips if along != "any" and lip.edge[0] != along
-        ),
+        bends_along_grain=tuple(lip.edge for lip in tray.lips if along != "any" and lip.edge[0] != along),
+        bends_across_grain=tuple(lip.edge for lip in tray.lips if lip.edge[0] == along),
         per_sheet=len(laid),
         sheets=tuple(sheets),
         fewest_sheets=math.ceil(n / most),

@@ -57,7 +57,10 @@ def most_equal(
             if len(laid) > len(best):
                 best = [
                     Laid(
-                        number=i, x_mm=x / _UM, y_mm=y / _UM, turned=turn == "all" or (turn == "any" and turned)
+                        number=i,
+                        x_mm=x / _UM,
+                        y_mm=y / _UM,
+                        turned=turn == "all" or (turn == "any" and turned),
                     )
                     for i, x, y, turned in laid
                 ]
@@ -77,9 +80,7 @@ def bins_of(
     grown = [tuple(_up(v + spacing_mm) for v in size) for size in sizes_mm]
     for size, (w, h) in zip(sizes_mm, grown, strict=True):
         if not ((w <= room[0] and h <= room[1]) or (h <= room[0] and w <= room[1])):
-            raise ValueError(
-                f"{size[0]:g} x {size[1]:g} mm: fits no bin of {bin_mm[0]:g} x {bin_mm[1]:g} mm"
-            )
+            raise ValueError(f"{size[0]:g} x {size[1]:g} mm: fits no bin of {bin_mm[0]:g} x {bin_mm[1]:g} mm")
     best: list[list[tuple[int, int, int, bool]]] | None = None
     for method in _FREE:
         found = _pack(grown, room, method, rotate=True, bins=len(grown))
@@ -88,9 +89,7 @@ def bins_of(
     if best is None:  # each fits by itself, so one to a bin always does
         raise AssertionError("the packing library lost a rectangle")
     return tuple(
-        tuple(
-            Laid(number=i, x_mm=x / _UM, y_mm=y / _UM, turned=turned) for i, x, y, turned in sorted(one)
-        )
+        tuple(Laid(number=i, x_mm=x / _UM, y_mm=y / _UM, turned=turned) for i, x, y, turned in sorted(one))
         for one in best
     )
 

@@ -16,6 +16,7 @@ from wavejig.radiator.model import Piece, Radiator
 from wavejig.radiator.stock import Stock, stock_of
 
 _DUST_MM = 1e-9
+_ROUND_MM = 10.0  # a total is told to the centimetre, upwards
 
 
 class StockTooShortError(ValueError):
@@ -35,7 +36,8 @@ def wire_plans(design: Design, radiator: Radiator) -> tuple[WirePlan, ...]:
 def _plan(design: Design, stock: Stock, pieces: list[Piece]) -> WirePlan:
     w = design.wire_stock
     wanted = [(p.role, p.cut_length_mm, design.quantity) for p in pieces]
-    needed = sum((length + w.cut_loss_mm) * count for _, length, count in wanted) + w.end_waste_mm
+    total = sum((length + w.cut_loss_mm) * count for _, length, count in wanted) + w.end_waste_mm
+    needed = math.ceil(total / _ROUND_MM - 1e-9) * _ROUND_MM
     tube = design.feed.tube
     material = tube.name if stock.kind == "tube" and tube else design.radiator.metal.name
     room = (needed if stock.length_mm is None else stock.length_mm) - w.end_waste_mm

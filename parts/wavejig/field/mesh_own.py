@@ -56,7 +56,8 @@ def own_triangles(
             raise ValueError(f"a wire lands at ({x:.2f}, {y:.2f}) mm, off the dish's floor")
     kept = MeshPlan() if plan is None else plan
     half = (tray.half_x_mm, tray.half_y_mm)
-    counts = kept.choose("base", lambda: tuple(max(2, 2 * math.ceil(h / largest_mm - 1e-9)) for h in half))
+    out = profile(own)[-1][0]  # cells widen on the way out
+    counts = kept.choose("base", lambda: tuple(_cells(h, h + out, largest_mm) for h in half))
     grid: Grid
     if own.shape == "round":
         grid = _DiscGrid(half[0], counts[0])
@@ -70,6 +71,11 @@ def own_triangles(
     pulled = kept.choose("landings", lambda: grid.nearest(cells, landings))
     floor = grid.triangles(cells, dict(zip(pulled, landings, strict=True)))
     return np.concatenate([floor, *_wall(tray, grid, _edge(grid, cells), largest_mm, kept)])
+
+
+def _cells(foot_mm: float, rim_mm: float, largest_mm: float) -> int:
+    """Cells along one axis for half sizes at the floor and at the very rim, where they may be a tenth larger."""
+    return 2 * max(1, math.ceil(max(foot_mm, rim_mm / 1.1) / largest_mm - 1e-9))
 
 
 def to_disc(at: Point2, radius: float) -> Point2:

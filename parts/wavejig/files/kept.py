@@ -15,7 +15,7 @@ from dataclasses import dataclass, field, fields, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
-from wavejig.design.model import Design
+from wavejig.design.model import Design, TargetDesign
 from wavejig.files.manifest import Entry
 
 if TYPE_CHECKING:
@@ -40,7 +40,13 @@ def inputs(step: str, design: Design, plans: tuple[object, ...]) -> tuple[object
     if step not in _ASIDE:
         return None
     left_out = _NEVER | _ASIDE[step]
-    return (*((f.name, getattr(design, f.name)) for f in fields(design) if f.name not in left_out), *plans)
+    asked = replace(design, target=_shape(design.target))
+    return (*((f.name, getattr(asked, f.name)) for f in fields(design) if f.name not in left_out), *plans)
+
+
+def _shape(target: TargetDesign) -> TargetDesign:
+    """The target without the wanted return loss, which no shape and no solve follows from."""
+    return replace(target, return_loss_db=0.0)
 
 
 @dataclass(slots=True)
@@ -92,13 +98,15 @@ class Kept:
         """The prediction of a model; solved once for all designs that come to the same model and target."""
         from wavejig.field.from_design import reference_plane
 
-        told = json.dumps([model.to_dict(), repr(design.target), reference_plane(design)], sort_keys=True)
+        told = json.dumps(
+            [model.to_dict(), repr(_shape(design.target)), reference_plane(design)], sort_keys=True
+        )
         key = hashlib.sha256(told.encode()).hexdigest()
         if key in self._solved:
             self.reused.append("field solve")
         else:
             self._solved = {key: predict()}  # the last one only: memory stays small over a day of saving
-        return replace(self._solved[key], design_name=design.name)
+        return replace(self._solved[key], design_name=design.name, wanted_db=design.target.return_loss_db)
 
 
 def _sha256(path: Path) -> str:

@@ -11,6 +11,12 @@ from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
+from wavejig.batch.findings import batch_findings
+from wavejig.batch.model import Batch, PrintPiece
+from wavejig.batch.plan import plan as plan_batch
+from wavejig.batch.plates import spacer_sets
+from wavejig.files.batch_json import batch_data
+from wavejig.files.batchfiles import write_batch
 from wavejig.files.bending_json import bending_data
 from wavejig.files.design_json import check_design_json, design_data, write_design_json
 from wavejig.files.drilldxf import drill_layers
@@ -104,6 +110,8 @@ class PackFiles:
         self.pictured: list[tuple[ColouredMesh, str]] = []  # and "antenna", or the part it is a tool for
         self.meshes: dict[str, tuple[Mesh, Measure]] = {}
         self.prints: list[tuple[str, int, Printability]] = []
+        self.print_pieces: list[PrintPiece] = []
+        self.batch: Batch | None = None
         self.pattern: FlatPattern = flat_pattern(self.tray, self.design.name)
 
     def steps(self) -> Iterator[Step]:
@@ -112,6 +120,7 @@ class PackFiles:
         yield Step(title="reflector", run=self.write_reflector)
         yield Step(title="spacer", run=self.write_spacer)
         yield Step(title="fixture", run=self.write_fixture)
+        yield Step(title="batch", run=self.write_batch)
         yield Step(title="assembly", run=self.write_assembly)
         if self.predict:
             yield Step(title="field", run=self.write_field)
@@ -233,6 +242,20 @@ class PackFiles:
         check_steps(path, self.bend_order)
         self._note("fixture/steps.svg", "svg", "fixture", "mm")
 
+    def write_batch(self) -> None:
+        """Nests, plates, cut plan and bill of materials for the whole quantity."""
+        self.batch = plan_batch(
+            self.design,
+            self.radiator,
+            self.tray,
+            self.pattern,
+            self.spacer,
+            self.fixture,
+            self.print_pieces,
+        )
+        self._found(batch_findings(self.batch))
+        self.entries += write_batch(self.batch, self.design, self.tray, self.pattern, self.meshes, self.root)
+
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
         self._step(self.assembly, "assembly.step", "assembly")
@@ -286,6 +309,8 @@ class PackFiles:
             self.bend_order,
             tolerance(self.design, self.radiator, self.fixture),
         )
+        if self.batch is not None:
+            data["batch"] = batch_data(self.batch)
         path = self._path("design.json")
         write_design_json(data, path)
         check_design_json(path, data)
@@ -307,6 +332,7 @@ class PackFiles:
         self.prints.append((part, count, require_printable(mesh, bed, BED_MARGIN_MM)))
         if part != "spacer":  # which is shown in its place in the assembly
             self.pictured.append((ColouredMesh(mesh=mesh, colour=_PLASTIC), part))
+        self._for_batch(name, part, count, mesh, figures)
         title = f"{self.design.name} {name}"
         stl, threemf = self._path(f"{part}/{name}.stl"), self._path(f"{part}/{name}.3mf")
         write_stl(mesh, stl, title)
@@ -315,6 +341,23 @@ class PackFiles:
         write_3mf([mesh], threemf, title)
         check_3mf(threemf, {name: figures})
         self._note(f"{part}/{name}.3mf", "3mf", part, "mm")
+
+    def _for_batch(self, name: str, part: str, count: int, mesh: Mesh, figures: Measure) -> None:
+        """Note a printed piece for the plates: one set of spacers an antenna or a bench, the fixture once."""
+        x0, y0, z0, x1, y1, z1 = figures.bounds_mm
+        spacer = part == "spacer"
+        self.meshes[name] = (mesh, figures)
+        self.print_pieces.append(
+            PrintPiece(
+                part=part,
+                name=name,
+                plastic=self.design.spacer.plastic if spacer else self.design.printer.plastic,
+                size_mm=(x1 - x0, y1 - y0),
+                height_mm=z1 - z0,
+                volume_mm3=figures.volume_mm3,
+                count=count * spacer_sets(self.design) if spacer else count,
+            )
+        )
 
     def _step(self, solids: list[NamedSolid], name: str, part: str) -> None:
         path = self._path(name)

@@ -9,6 +9,7 @@ from __future__ import annotations
 import io
 import zipfile
 from collections.abc import Mapping, Sequence
+from dataclasses import dataclass
 from pathlib import Path
 from xml.sax.saxutils import escape, quoteattr
 
@@ -36,8 +37,18 @@ _RELATIONS = (
 _PARTS = ("[Content_Types].xml", "_rels/.rels", _MODEL)
 
 
-def write_3mf(meshes: Sequence[Mesh], path: Path, title: str) -> None:
-    """Write meshes, each an object under its own name, placed as it stands.
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Item:
+    """One object on the bed: which mesh, turned by 0 or 90 deg about its own z axis, then moved."""
+
+    mesh: int
+    x_mm: float = 0.0
+    y_mm: float = 0.0
+    turn_deg: float = 0.0
+
+
+def write_3mf(meshes: Sequence[Mesh], path: Path, title: str, items: Sequence[Item] = ()) -> None:
+    """Write meshes, each an object under its own name, placed as it stands or as the `items` say.
 
     Raises ValueError for no mesh or two of one name, OSError when the file cannot be written.
     """
@@ -46,12 +57,13 @@ def write_3mf(meshes: Sequence[Mesh], path: Path, title: str) -> None:
         _object_xml(number, name, mesh)
         for number, (name, mesh) in enumerate(zip(names, meshes, strict=True), start=1)
     )
-    items = "".join(f'<item objectid="{number}"/>' for number in range(1, len(names) + 1))
+    placed = items or [Item(mesh=number) for number in range(len(names))]
+    build = "".join(_item_xml(item) for item in placed)
     model = (
         f'{_XML}<model unit="millimeter" xml:lang="en" xmlns="{_CORE}">\n'
         f'<metadata name="Title">{escape(clean_name(title))}</metadata>\n'
         '<metadata name="Application">wavejig</metadata>\n'
-        f"<resources>\n{objects}</resources>\n<build>{items}</build>\n</model>\n"
+        f"<resources>\n{objects}</resources>\n<build>{build}</build>\n</model>\n"
     )
     buffer = io.BytesIO()
     with zipfile.ZipFile(buffer, "w") as archive:
@@ -84,6 +96,15 @@ def check_3mf(path: Path, expected: Mapping[str, Measure], *, chord_error_mm: fl
     check_names(path, set(pieces), {clean_name(name) for name in expected})
     for name, figures in expected.items():
         check_piece(path, name, pieces[clean_name(name)], figures, chord_error_mm)
+
+
+def _item_xml(item: Item) -> str:
+    """Rows of the matrix that a row vector (x, y, z, 1) is multiplied by, last column left out."""
+    if item == Item(mesh=item.mesh):
+        return f'<item objectid="{item.mesh + 1}"/>'
+    turn = "0 1 0 -1 0 0" if item.turn_deg else "1 0 0 0 1 0"
+    at = f"{item.x_mm:.6f} {item.y_mm:.6f} 0"
+    return f'<item objectid="{item.mesh + 1}" transform="{turn} 0 0 1 {at}"/>'
 
 
 def _object_xml(number: int, name: str, mesh: Mesh) -> str:

@@ -9,6 +9,7 @@ import math
 
 from wavejig.design.model import OwnShape, ReflectorDesign
 from wavejig.design.own import floor_outline
+from wavejig.geometry.plane import Contour
 from wavejig.reflector.model import CornerPractice, Tray, TrayError
 
 

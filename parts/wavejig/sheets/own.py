@@ -41,8 +41,8 @@ from wavejig.sheets.model import (
     scale_text,
 )
 
-_AROUND_MM = 22.0  # paper round the plan for its dimension lines
-_SECTION_HIGH_MM = 46.0  # paper for the section, sizes included
+_AROUND_MM = 14.0  # paper round the plan for its dimension lines
+_SECTION_HIGH_MM = 48.0  # paper for the section, sizes included
 SEEN = "seen from the radiator side"
 
 
@@ -110,12 +110,12 @@ def own_drawing(design: Design, tray: Tray, pattern: FlatPattern) -> Sheet:
         )
     ]
     reach = 2.0 * max(abs(x) for x, _, _ in section(tray, "x").vertices)
-    zoom = best_scale(reach, own.depth_mm, left - x0 - 60.0, _SECTION_HIGH_MM - 26.0, most=1.0)
+    zoom = best_scale(reach, own.depth_mm, left - x0 - 60.0, _SECTION_HIGH_MM - 22.0, most=1.0)
     views.append(
         View(
             title=f"SECTION along x ({scale_text(zoom)}): seen from y-, radiator side up",
             items=tuple(_section(tray)),
-            at=(middle[0], y0 + 18.0),
+            at=(middle[0], y0 + 12.0),
             scale=zoom,
             title_at=(middle[0], y0 + 1.0),
         )
@@ -188,11 +188,10 @@ def _section(tray: Tray) -> Iterator[Item]:
     half, t, depth = tray.half_x_mm, tray.thickness_mm, own.depth_mm
     top = half + own.reach_mm(depth)
     yield Line(a=(0.0, -t - 3.0), b=(0.0, depth + 3.0), pen="centre")
-    yield LinearDim(a=(-half, 0.0), b=(half, 0.0), offset_mm=-9.0, before="\u00d8" if _round(tray) else "")
     yield LinearDim(a=(top, 0.0), b=(top, depth), offset_mm=-12.0 - own.rim_mm, angle_deg=90.0)
     if own.slope_deg > 0.0:
         yield Line(a=(-half, 0.0), b=(-half, depth), pen="thin")
-        yield AngleDim(vertex=(-half, 0.0), from_deg=90.0, to_deg=90.0 + own.slope_deg, radius_mm=16.0)
+        yield AngleDim(vertex=(-half, 0.0), from_deg=90.0, to_deg=90.0 + own.slope_deg, radius_mm=16.0, outside=True)
     if own.rim_mm > 0.0:
         yield LinearDim(a=(top, depth), b=(top + own.rim_mm, depth), offset_mm=6.0)
     said = f"R{number(own.radius_mm)} between floor and wall; {number(t)} mm thick"

@@ -234,8 +234,8 @@ def _bridge(design: Design) -> Iterator[Finding]:
         yield Finding(
             code="blanks-crowded",
             severity=WARNING,
-            message=f"blanks {c.spacing_mm:g} mm apart leave {max(left, 0.0):g} mm between two cuts of {c.kerf_mm:g} mm; "
-            f"a bridge narrower than the sheet's {t:g} mm tips, burns or tears",
+            message=f"blanks {c.spacing_mm:g} mm apart leave {max(left, 0.0):g} mm between two cuts of "
+            f"{c.kerf_mm:g} mm; a bridge narrower than the sheet's {t:g} mm tips, burns or tears",
             remedy=f'Write spacing = "{t + c.kerf_mm:g} mm" or more, or leave it "auto".',
             where="cutter.spacing",
         )

@@ -81,7 +81,7 @@ def _body(r: Report) -> Iterable[Element]:
         el(
             "p",
             f"{d.quantity} \u00d7 {FAMILY_WORDS[d.radiator.family]} before a "
-            f"{'folded tray' if d.reflector.lips else 'flat reflector'}, {number(t.band_low_hz / 1e6)} to "
+            f"{_behind(r)}, {number(t.band_low_hz / 1e6)} to "
             f"{number(t.band_high_hz / 1e6)} MHz, {d.polarisation} polarisation; return loss of "
             f"{number(t.return_loss_db)} dB or more in {number(t.reference_ohm)} \u03a9 wanted over the whole band.",
         ),
@@ -122,6 +122,12 @@ def _body(r: Report) -> Iterable[Element]:
         ),
         class_="soft",
     )  # fmt: skip
+
+
+def _behind(r: Report) -> str:
+    if r.design.reflector.kind == "own":
+        return "metal reflector that is there already"
+    return "folded tray" if r.design.reflector.lips else "flat reflector"
 
 
 def _tone(key: str, r: Report) -> str | None:

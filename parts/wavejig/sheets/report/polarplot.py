@@ -59,7 +59,7 @@ def hung(p: Prediction, up: str) -> tuple[HungCut, HungCut]:
             source=cut,
         )
 
-    return seen(-right), seen(upwards)
+    return seen(right), seen(upwards)
 
 
 def polar_plots(

@@ -56,3 +56,8 @@ def size_text(count: int) -> str:
     if count < 999_950:
         return f"{count / 1e3:.1f} kB"
     return f"{count / 1e6:.2f} MB"
+
+
+def count_of(number_of: int, word: str) -> str:
+    """ "1 hole", "2 holes"."""
+    return f"{number_of} {word}{'' if number_of == 1 else 's'}"
