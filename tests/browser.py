@@ -43,6 +43,7 @@ class Browser:
         size = {"width": wide, "height": high, "deviceScaleFactor": 1, "mobile": touch}
         self.tools("Emulation.setDeviceMetricsOverride", **size)
         self.tools("Emulation.setTouchEmulationEnabled", enabled=touch)
+        self.tools("Emulation.setScrollbarsHidden", hidden=True)  # a picture must not change its size
         scheme = [{"name": "prefers-color-scheme", "value": "dark" if dark else "light"}]
         self.tools("Emulation.setEmulatedMedia", features=scheme)
         self.ask("/url", {"url": url})

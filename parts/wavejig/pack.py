@@ -193,6 +193,7 @@ def _versions() -> dict[str, str]:
         "cadquery-ocp",
         "ezdxf",
         "numpy",
+        "rectpack",
         "reportlab",
         "scipy",
         "numba",

@@ -14,7 +14,9 @@ from wavejig.batch.plates import print_plan, spacer_sets
 
 BED = ["120 mm", "110 mm", "120 mm"]
 piece_lists = st.lists(
-    st.tuples(st.floats(4.0, 110.0), st.floats(4.0, 100.0), st.integers(1, 40), st.sampled_from(["PETG", "ASA"])),
+    st.tuples(
+        st.floats(4.0, 110.0), st.floats(4.0, 100.0), st.integers(1, 40), st.sampled_from(["PETG", "ASA"])
+    ),
     min_size=1,
     max_size=8,
 )

@@ -17,9 +17,7 @@ wanted_lists = st.lists(st.tuples(st.floats(5.0, 400.0), st.integers(1, 60)), mi
 
 
 @given(wanted_lists, st.floats(400.0, 5000.0), st.floats(0.0, 5.0))
-def test_every_piece_comes_out_of_a_length(
-    pieces: list[tuple[float, int]], room: float, loss: float
-) -> None:
+def test_every_piece_comes_out_of_a_length(pieces: list[tuple[float, int]], room: float, loss: float) -> None:
     wanted = [(f"p{i}", length, count) for i, (length, count) in enumerate(pieces)]
     if max(length for _, length, _ in wanted) + loss > room:
         with pytest.raises(StockTooShortError, match=r"a length gives"):
@@ -75,11 +73,11 @@ def test_the_second_bound_sees_pieces_that_cannot_share() -> None:
 
 
 @pytest.mark.parametrize("quantity", [1, 7, 200])
-@pytest.mark.parametrize(("length", "loss", "waste"), [("600 mm", "0 mm", "50 mm"), ("5 m", "1.2 mm", "80 mm")])
+@pytest.mark.parametrize(
+    ("length", "loss", "waste"), [("600 mm", "0 mm", "50 mm"), ("5 m", "1.2 mm", "80 mm")]
+)
 def test_a_design_s_plan(quantity: int, length: str, loss: str, waste: str) -> None:
-    made = design(
-        quantity=quantity, wire_stock={"length": length, "cut_loss": loss, "end_waste": waste}
-    )
+    made = design(quantity=quantity, wire_stock={"length": length, "cut_loss": loss, "end_waste": waste})
     radiator = plan_radiator(made)
     (plan,) = wire_plans(made, radiator)
     assert plan.kind == "wire"

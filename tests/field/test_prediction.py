@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import json
+from dataclasses import replace
 from pathlib import Path
 
 import numpy as np
@@ -48,6 +49,18 @@ def test_few_solves_say_what_many_would(design: Design, prediction: Prediction) 
     at = solve(model_from_design(design), [prediction.resonance_hz])
     assert abs(at.impedance_ohm[0].imag) < 0.2
     assert prediction.gain_dbi == pytest.approx(response.gain_dbi([[0, 0, 1.0]])[10, 0], abs=0.01)
+
+
+def test_a_measured_frequency_moves_the_prediction(design: Design, prediction: Prediction) -> None:
+    """True frequencies 2 % above the solver's: the same curve, 2 % further up."""
+    target = replace(design.target, frequency_factor=1.02)
+    moved = predict(replace(design, target=target))
+    assert moved.resonance_hz is not None and prediction.resonance_hz is not None
+    assert moved.resonance_hz / prediction.resonance_hz == pytest.approx(1.02, abs=1e-4)
+    assert moved.low_hz == prediction.low_hz
+    assert moved.points[1].frequency_hz == prediction.points[1].frequency_hz
+    direct = solve(model_from_design(design), [moved.low_hz / 1.02]).impedance_ohm[0]
+    assert abs(moved.points[0].impedance_ohm - direct) < 0.05
 
 
 def test_match_figures_by_hand() -> None:

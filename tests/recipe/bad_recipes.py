@@ -39,6 +39,8 @@ PATH_CORNERS = (
     '[["0 mm", "2 mm"], ["20 mm", "22 mm"], ["40 mm", "0 mm"], ["20 mm", "-22 mm"], ["0 mm", "-2 mm"]]'
 )
 
+OWN = '[reflector.own]\ndiameter = "160 mm"\ndepth = "15 mm"\n'
+
 BAD: list[Row] = [
     # -- units and numbers
     ("bare number for a wire", changed('"1.8 mm"', "1.8"), 2, 7, "radiator.wire", ("1.8 mm", "no unit")),
@@ -155,4 +157,22 @@ BAD: list[Row] = [
     ("tube on aluminium", below("feed", 'style = "tube"') .replace('thickness = "0.8 mm"', 'thickness = "0.8 mm"\nmaterial = "aluminium"'), 1, 0, "sheet-not-solderable", ("solder",)),
     ("legs shorted by the connector", below("feed", 'leg_spacing = "4 mm"'), 1, 0, "feed-conflict", ("cut-out",)),
     ("tube in too narrow a gap", below("feed", 'style = "tube"').replace('wire = "1.8 mm"', 'wire = "1.8 mm"\nfeed_gap = "2 mm"'), 1, 0, "feed-conflict", ("tube",)),
+    # -- a dish of the user's own
+    ("unknown kind of reflector", below("reflector", 'kind = "owned"'), 2, 9, "reflector.kind", ("own",)),
+    ("own without sizes", below("reflector", 'kind = "own"'), 2, 9, "reflector.own.diameter", ("160 mm",)),
+    ("own without depth", below("reflector", 'kind = "own"') + '[reflector.own]\ndiameter = "160 mm"\n', 2, 11, "reflector.own.depth", ("45 mm",)),
+    ("round one with a size", below("reflector", 'kind = "own"') + OWN + 'size = "160 mm"\n', 2, 14, "reflector.own.size", ("round",)),
+    ("rectangular one with a diameter", below("reflector", 'kind = "own"') + OWN + 'shape = "rectangular"\n', 2, 12, "reflector.own.diameter", ("rectangular",)),
+    ("dish without its kind", GOOD + OWN, 2, 10, "reflector.kind", ('kind = "own"',)),
+    ("lips on an own dish", below("reflector", 'kind = "own"', 'lips = "four"') + OWN, 2, 10, "reflector.lips", ("folded",)),
+    ("base of an own dish", below("reflector", 'kind = "own"', 'base = "123 mm"') + OWN, 2, 10, "reflector.base", ("[reflector.own]",)),
+    ("bend deduction of an own dish", below("reflector", 'kind = "own"', 'bend_deduction = "1 mm"') + OWN, 2, 10, "reflector.bend_deduction", ("folded",)),
+    ("wall that leans inwards", below("reflector", 'kind = "own"') + OWN + 'slope = "-5 deg"\n', 2, 14, "reflector.own.slope", ("0 to 60",)),
+    ("slope without unit", below("reflector", 'kind = "own"') + OWN + "slope = 5\n", 2, 14, "reflector.own.slope", ('"5 deg"',)),
+    ("depth of nothing", below("reflector", 'kind = "own"') + '[reflector.own]\ndiameter = "160 mm"\ndepth = "0 mm"\n', 2, 13, "reflector.own.depth", ("0.01",)),
+    ("radius larger than the floor", below("reflector", 'kind = "own"') + OWN.replace("160", "60") + 'radius = "20 mm"\n', 2, 14, "reflector.own.radius", ("15.0 mm",)),
+    ("radius deeper than the dish", below("reflector", 'kind = "own"') + OWN + 'radius = "30 mm"\n', 2, 14, "reflector.own.radius", ("15 mm",)),
+    ("one size of a box", below("reflector", 'kind = "own"') + '[reflector.own]\nshape = "rectangular"\nsize = ["160 mm"]\ndepth = "45 mm"\n', 2, 13, "reflector.own.size", ("200 mm",)),
+    ("shape nobody knows", below("reflector", 'kind = "own"') + OWN + 'shape = "oval"\n', 2, 14, "reflector.own.shape", ("rectangular",)),
+    ("depth misspelt", below("reflector", 'kind = "own"') + OWN.replace("depth", "depht"), 2, 13, "reflector.own.depht", ("depth",)),
 ]  # fmt: skip

@@ -41,8 +41,9 @@ def most_equal(
     turns: what may be done with them, of "none" (all as given), "all" (all turned by 90 deg), "any" (each as
     it fits). Empty when not one fits. Ties go to the first found, so the answer never varies.
     """
-    w, h = (_up(v + spacing_mm) for v in size_mm)
-    room = tuple(_down(v + spacing_mm) for v in bin_mm)
+    gap = _up(spacing_mm)
+    w, h = (_up(v) + gap for v in size_mm)
+    room = tuple(_down(v) + gap for v in bin_mm)
     bound = (room[0] * room[1]) // (w * h)
     best: list[Laid] = []
     for turn in turns:
@@ -76,8 +77,9 @@ def bins_of(
     """
     if not sizes_mm:
         return ()
-    room = tuple(_down(v + spacing_mm) for v in bin_mm)
-    grown = [tuple(_up(v + spacing_mm) for v in size) for size in sizes_mm]
+    gap = _up(spacing_mm)
+    room = tuple(_down(v) + gap for v in bin_mm)
+    grown = [tuple(_up(v) + gap for v in size) for size in sizes_mm]
     for size, (w, h) in zip(sizes_mm, grown, strict=True):
         if not ((w <= room[0] and h <= room[1]) or (h <= room[0] and w <= room[1])):
             raise ValueError(f"{size[0]:g} x {size[1]:g} mm: fits no bin of {bin_mm[0]:g} x {bin_mm[1]:g} mm")

@@ -36,6 +36,7 @@ class TargetDesign:
     reference_ohm: float
     return_loss_db: float
     wavelength_mm: float  # free space, at the band's middle
+    frequency_factor: float = 1.0  # true over predicted frequency, from a measured article
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -72,6 +72,7 @@ def resolve(recipe: Recipe) -> Design:
             reference_ohm=recipe.target.reference_impedance,
             return_loss_db=recipe.target.return_loss,
             wavelength_mm=wavelength,
+            frequency_factor=recipe.measured.frequency or 1.0,
         ),
         radiator=radiator,
         feed=feed,

@@ -125,15 +125,15 @@ def _wall(
         levels += [
             (a[0] + (b[0] - a[0]) * k / rows, a[1] + (b[1] - a[1]) * k / rows) for k in range(1, rows + 1)
         ]
+    near = np.min(np.abs(feet) / half, axis=1)  # 1 at a box's corner, 0 on an axis
     rings = [np.column_stack([feet * (1.0 + d / half), np.full(len(feet), z)]) for d, z in levels]
     out = []
     for low, high in itertools.pairwise(rings):
         for k in range(len(feet)):
             m = (k + 1) % len(feet)
             p, q, r, s = low[k], low[m], high[m], high[k]
-            side = (feet[k] + feet[m]) / 2.0
-            # mirror images get mirrored diagonals
-            if side[0] * side[1] >= 0.0:
+            # the shorter diagonal, from the foot nearer to a corner; mirror images get mirrored ones
+            if near[m] >= near[k]:
                 out += [[p, s, q], [q, s, r]]
             else:
                 out += [[p, r, q], [p, s, r]]

@@ -94,24 +94,30 @@ def predict(
     half = max(target.band_high_hz - target.band_low_hz, ROOM * middle)
     with warnings.catch_warnings():
         warnings.simplefilter("ignore", ModelWarning)  # told as the prediction's remarks
-        swept = sweep(model, middle - half, middle + half, SWEEP_TOLERANCE, announce=announce)
+        factor = target.frequency_factor
+        low, high = (middle - half) / factor, (middle + half) / factor
+        swept = sweep(model, low, high, SWEEP_TOLERANCE, announce=announce)
     return from_sweep(design, swept)
 
 
 def from_sweep(design: Design, swept: Sweep) -> Prediction:
-    """The figures of a solved span that holds the design's band, its middle among the solves."""
+    """The figures of a solved span that holds the design's band, its middle among the solves.
+
+    Frequencies are true ones: where an article has been measured, the solver's times its correction.
+    """
     target = design.target
     middle = (target.band_low_hz + target.band_high_hz) / 2.0
-    solved = min(swept.responses, key=lambda r: abs(float(r.frequencies_hz[0]) - middle))
-    frequencies = np.linspace(swept.low_hz, swept.high_hz, SPAN_POINTS)
-    s11 = swept.s11(frequencies, target.reference_ohm)
+    factor = target.frequency_factor
+    solved = min(swept.responses, key=lambda r: abs(float(r.frequencies_hz[0]) * factor - middle))
+    frequencies = np.linspace(swept.low_hz, swept.high_hz, SPAN_POINTS) * factor
+    s11 = swept.s11(frequencies / factor, target.reference_ohm)
     band = np.linspace(target.band_low_hz, target.band_high_hz, BAND_POINTS)
-    in_band = np.abs(swept.s11(band, target.reference_ohm))
+    in_band = np.abs(swept.s11(band / factor, target.reference_ohm))
     pattern = read_pattern(solved)
     gain = float(solved.gain_dbi([[0.0, 0.0, 1.0]])[0, 0])
 
     def point(frequency: float) -> MatchPoint:
-        return match_point(frequency, complex(swept.impedance_ohm([frequency])[0]), target.reference_ohm)
+        return match_point(frequency, complex(swept.impedance_ohm([frequency / factor])[0]), target.reference_ohm)
 
     return Prediction(
         design_name=design.name,
@@ -123,7 +129,7 @@ def from_sweep(design: Design, swept: Sweep) -> Prediction:
         points=(point(target.band_low_hz), point(middle), point(target.band_high_hz)),
         worst=point(float(band[int(np.argmax(in_band))])),
         best=point(float(frequencies[int(np.argmin(np.abs(s11)))])),
-        resonance_hz=_resonance(swept, frequencies, middle),
+        resonance_hz=_resonance(swept, frequencies, middle, factor),
         frequencies_hz=frequencies,
         s11=s11,
         pattern=pattern,
@@ -152,8 +158,8 @@ def return_loss_db(reflected: float) -> float:
     return float(min(-20.0 * np.log10(max(reflected, 1e-30)), _MOST_DB)) + 0.0
 
 
-def _resonance(swept: Sweep, frequencies: Array, middle: float) -> float | None:
-    reactance = swept.impedance_ohm(frequencies).imag
+def _resonance(swept: Sweep, frequencies: Array, middle: float, factor: float) -> float | None:
+    reactance = swept.impedance_ohm(frequencies / factor).imag
     crossings = np.flatnonzero(np.signbit(reactance[:-1]) != np.signbit(reactance[1:]))
     if not crossings.size:
         return None

@@ -40,7 +40,8 @@ def cache_folder() -> Path:
 
 def key(recipe: Recipe, aim: str, grid_mm: float) -> str:
     """Hash of all that a tuned answer depends on."""
-    asked = recipe.model_dump(mode="json", exclude=_NOT_PHYSICS)
+    asked = recipe.model_dump(mode="json", exclude=_NOT_PHYSICS | {"measured"})
+    asked["measured.frequency"] = recipe.measured.frequency
     told = json.dumps([asked, aim, grid_mm, _program()], sort_keys=True)
     return hashlib.sha256(told.encode()).hexdigest()[:32]
 

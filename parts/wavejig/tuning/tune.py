@@ -177,7 +177,7 @@ class _Search:
         with warnings.catch_warnings():
             warnings.simplefilter("ignore", ModelWarning)  # the prediction of the answer tells them
             at = self.frequencies if frequencies is None else frequencies
-            response = solve(model, at, announce=self.announce)
+            response = solve(model, at / self.start.target.frequency_factor, announce=self.announce)
         self.solves += 1
         z = np.asarray(response.impedance_ohm)
         gain = float(response.gain_dbi([[0.0, 0.0, 1.0]])[len(z) // 2, 0])
