@@ -50,12 +50,13 @@ def test_the_contract_s_files_are_there(saltmarsh: Path) -> None:
     for name in (
         "manifest.json", "design.json", "radiator/radiator.step", "radiator/radiator.dxf", "radiator/bend-table.csv",
         "reflector/tray.step", "reflector/blank.dxf", "reflector/blank-cut.dxf", "reflector/blank-cut-r12-mm.dxf",
+        "reflector/nest-1.dxf", "radiator/cut-plan.csv", "print/plate-1.3mf", "bill-of-materials.csv",
         "assembly.step", "assembly.glb",
         "field/model.json", "field/match.s1p", "field/pattern.csv", "field/field.json",
     ):  # fmt: skip
         assert name in files
     for part in ("fixture", "spacer"):
-        stems = {Path(f).stem for f in files if f.startswith(f"{part}/")}
+        stems = {Path(f).stem for f in files if f.startswith(f"{part}/") and f.endswith(".stl")}
         assert stems
         for stem in stems:
             assert {f"{part}/{stem}.{kind}" for kind in ("step", "stl", "3mf")} <= files

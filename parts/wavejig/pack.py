@@ -112,7 +112,9 @@ def build(
         progress("drawings and build sheet")
         from wavejig.sheets.sheetfiles import write_sheets
 
-        files.entries += write_sheets(files.inspection, files.pattern, stage, prediction=files.prediction)
+        files.entries += write_sheets(
+            files.inspection, files.pattern, stage, prediction=files.prediction, batch=files.batch
+        )
         progress("report")
         from wavejig.sheets.report.frompack import write_pack_report
 
@@ -123,6 +125,7 @@ def build(
             pictured=files.pictured,
             prints=files.prints,
             entries=files.entries,
+            batch=files.batch,
             prediction=files.prediction,
         )
         progress("checking the pack")

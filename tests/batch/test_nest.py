@@ -125,6 +125,9 @@ def test_any_batch(
         assert len(turns) == 1  # 0 and 180 deg keep the grain; a quarter turn is for all or none
         assert laid.blank_grain == (grain if turns == {0.0} else {"x": "y", "y": "x"}[grain])
     assert laid.fewest_sheets <= len(laid.sheets)
+    offcut = laid.offcut_mm
+    last = laid.sheets[-1].box
+    assert offcut[0] <= stock[0] - last[2] or offcut[1] <= stock[1] - last[3]
 
 
 @pytest.mark.parametrize("grain", ["x", "y"])
@@ -213,3 +216,31 @@ def test_crowded_blanks_are_told() -> None:
     assert "blanks-crowded" in {f.code for f in made.findings}
     alone = inspect(design(cutter={"spacing": "0.5 mm"}, quantity=1))
     assert "blanks-crowded" not in {f.code for f in alone.findings}
+
+
+def test_a_blank_too_small_for_a_number_is_told() -> None:
+    """A small sheet that holes all but fill."""
+    found = inspect(
+        design(
+            band=["5.725 GHz", "5.875 GHz"],
+            wire="1.0 mm",
+            feed={"style": "tube", "tube": "tube-2.2"},
+            reflector={
+                "base": ["33 mm", "33 mm"],
+                "holes": [
+                    {"x": f"{x} mm", "y": f"{y} mm", "diameter": "9 mm"}
+                    for x, y in (
+                        (0, 7.5),
+                        (0, -7.5),
+                        *((s * 10.5, q) for s in (-1, 1) for q in (-10.5, 0, 10.5)),
+                    )
+                ],
+            },
+            quantity=3,
+        )
+    )
+    assert found.tray and found.radiator and found.spacer and found.fixture
+    pattern = flat_pattern(found.tray, found.design.name)
+    batch = plan_batch(found.design, found.radiator, found.tray, pattern, found.spacer, found.fixture)
+    assert batch.unmarked == (1, 2, 3)
+    assert [f.code for f in batch_findings(batch)] == ["blanks-unnumbered"]

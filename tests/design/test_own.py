@@ -21,9 +21,7 @@ def test_the_floor_is_the_base_and_nothing_is_folded() -> None:
     assert design().reflector.own is None
 
 
-@pytest.mark.parametrize(
-    ("polarisation", "at"), [("vertical", (0.0, -1.0)), ("horizontal", (-1.0, 0.0))]
-)
+@pytest.mark.parametrize(("polarisation", "at"), [("vertical", (0.0, -1.0)), ("horizontal", (-1.0, 0.0))])
 def test_a_round_dish_drains_at_its_low_end(polarisation: str, at: tuple[float, float]) -> None:
     made = dish_design(mounting={"polarisation": polarisation}).reflector
     (drain,) = [h for h in made.holes if h.purpose == "drain"]

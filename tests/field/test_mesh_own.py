@@ -23,6 +23,7 @@ from wavejig.reflector.model import Tray
 from wavejig.reflector.own import surface_mm2
 from wavejig.reflector.tray import plan
 
+Point = tuple[float, float, float]
 FEET = [(0.0, 5.0), (6.5, -3.0)]
 MIDDLE_HZ = 2.44e9
 
@@ -60,7 +61,9 @@ def test_every_triangle_looks_inwards(name: str) -> None:
     triangles = own_triangles(tray(DISHES[name]), FEET, 13.6, 2.0)
     normal = np.cross(triangles[:, 1] - triangles[:, 0], triangles[:, 2] - triangles[:, 0])
     middle = triangles.mean(axis=1)
-    inwards = np.array([0.0, 0.0, 200.0]) - middle  # a point above the dish sees every face of it, but the rim's back
+    inwards = (
+        np.array([0.0, 0.0, 200.0]) - middle
+    )  # a point above the dish sees every face of it, but the rim's back
     assert np.all(np.einsum("ij,ij->i", normal, inwards) > 0.0)
 
 
@@ -75,9 +78,7 @@ def test_no_triangle_is_a_sliver(name: str) -> None:
     assert float((double / sides.max(axis=1) ** 2).min()) > 0.12
 
 
-@given(
-    st.floats(-0.65, 0.65), st.floats(-0.65, 0.65), st.floats(0.8, 6.0), st.sampled_from(sorted(DISHES))
-)
+@given(st.floats(-0.65, 0.65), st.floats(-0.65, 0.65), st.floats(0.8, 6.0), st.sampled_from(sorted(DISHES)))
 def test_wires_land_on_vertices_anywhere(u: float, v: float, fine: float, name: str) -> None:
     made = tray(DISHES[name])
     landing = (u * made.half_x_mm, v * made.half_y_mm)
@@ -149,22 +150,23 @@ def test_a_round_dish_does_not_care_which_way_the_radiator_lies() -> None:
     made = dish_design(UPRIGHT)
     straight = model_from_design(made)
     reference = solve(straight, [MIDDLE_HZ]).impedance_ohm[0]
-    feet = sorted({(w.start[0], w.start[1]) for w in straight.wires if w.start[2] == 0.0} | {
-        (w.end[0], w.end[1]) for w in straight.wires if w.end[2] == 0.0
-    })
+    feet = sorted(
+        {w.start for w in straight.wires if w.start[2] == 0.0}
+        | {w.end for w in straight.wires if w.end[2] == 0.0}
+    )
     step = made.target.wavelength_mm / 9.0
     radius = 2.2 * made.feed.leg_diameter_mm / 2.0
     for degrees in (30.0, 45.0):
         c, s = math.cos(math.radians(degrees)), math.sin(math.radians(degrees))
 
-        def turned(p: tuple[float, ...], c: float = c, s: float = s) -> tuple[float, ...]:
-            return (c * p[0] - s * p[1], s * p[0] + c * p[1], *p[2:])
+        def turned(p: Point, c: float = c, s: float = s) -> Point:
+            return (c * p[0] - s * p[1], s * p[0] + c * p[1], p[2])
 
-        landings = [tuple(1e3 * v for v in turned(foot)) for foot in feet]
+        landings = [(1e3 * x, 1e3 * y) for x, y, _ in map(turned, feet)]
         model = replace(
             straight,
             wires=tuple(replace(w, start=turned(w.start), end=turned(w.end)) for w in straight.wires),
-            triangles=1e-3 * own_triangles(plan(made.reflector), landings, step, radius),  # type: ignore[arg-type]
+            triangles=1e-3 * own_triangles(plan(made.reflector), landings, step, radius),
         )
         other = solve(model, [MIDDLE_HZ]).impedance_ohm[0]
         assert abs(reflection(other) - reflection(reference)) < 0.02
@@ -172,8 +174,8 @@ def test_a_round_dish_does_not_care_which_way_the_radiator_lies() -> None:
 
 def test_an_upright_box_with_slit_corners_is_the_mitred_tray() -> None:
     """Against the tray's own mesh, whose lips leave 0.5 mm between them; closed corners carry current and differ."""
-    tray_one = design(reflector={"base": ["140 mm", "140 mm"], "lips": "four", "lip_height": "30 mm", "corners": "mitre",
-                                 "thickness": "0.5 mm", "material": "tinplate"})  # fmt: skip
+    mitred = {"base": ["140 mm", "140 mm"], "lips": "four", "lip_height": "30 mm", "corners": "mitre"}
+    tray_one = design(reflector={**mitred, "thickness": "0.5 mm", "material": "tinplate"})
     box = dish_design(
         {"shape": "rectangular", "size": ["139 mm", "139 mm"], "depth": "29.5 mm", "radius": "0 mm"}
     )

@@ -214,7 +214,7 @@ def test_a_plate_with_pieces_elsewhere_is_refused(
         replace(plate, spots=(replace(plate.spots[0], y_mm=2.0), *plate.spots[1:])),
     ):
         write_plate(wrong, only, path, "x")
-        with pytest.raises(FileCheckError, match="all within|between any two"):
+        with pytest.raises(FileCheckError, match=r"all within|between any two"):
             check_plate(path, wrong, plan, figures)
 
 

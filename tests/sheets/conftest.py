@@ -15,6 +15,8 @@ from wavejig.shop import Inspection
 
 RECIPES = Path(__file__).parents[2] / "recipes"
 DEMOS = tuple(sorted(p.stem for p in RECIPES.glob("*.toml")))
+# Those with a blank: a dish that is there already is only drilled.
+CUT = tuple(n for n in DEMOS if 'kind = "own"' not in (RECIPES / f"{n}.toml").read_text(encoding="utf-8"))
 # A tray with open corners, a mitred one, a flat sheet that takes tiles: the default run's sample.
 _SAMPLE = ("saltmarsh-2g4", "causeway-2g4-double", "creek-915-round")
 SAMPLED = tuple(

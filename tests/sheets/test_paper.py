@@ -84,7 +84,7 @@ def test_scale_bars_are_100_mm(name: str, written: Callable[[str], Path]) -> Non
     found = 0
     with pdfplumber.open(written(name) / "build-sheet.pdf") as pdf:
         for page in pdf.pages:
-            if "CHECK TEMPLATE" not in page.extract_text():
+            if "TEMPLATE 1:1" not in page.extract_text():
                 continue
             found += 1
             level = [

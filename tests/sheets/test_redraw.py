@@ -11,7 +11,7 @@ import pytest
 from shapely import Polygon
 
 from tests.designs import design
-from tests.sheets.conftest import DEMOS, inspected, pattern_of
+from tests.sheets.conftest import CUT, inspected, pattern_of
 from tests.sheets.paper import Printed, printed_dimensions, printed_table, rounded_outline
 from wavejig.sheets.sheetfiles import write_sheets
 from wavejig.shop import Inspection, inspect
@@ -124,7 +124,7 @@ def test_leaning_mitred_lips_come_out_too(tmp_path: Path) -> None:
     check_redrawn(tmp_path / "drawings" / "blank.dxf", made)
 
 
-@pytest.mark.parametrize("name", DEMOS)
+@pytest.mark.parametrize("name", CUT)
 def test_the_paper_alone_gives_the_blank_again(name: str, written: Callable[[str], Path]) -> None:
     check_redrawn(written(name) / "drawings" / "blank.dxf", inspected(name))
 

@@ -43,7 +43,7 @@ from wavejig.shop.finding import Finding
 from wavejig.tuning.measured import measure
 
 NASTY = '</script><img src=x onerror="window.hacked=1"><!-- &amp; ]]> \'\u202e\x00\ud800\n'
-WIDTHS = (360, 390, 1280)
+LOOKS = ((360, False), (390, True), (1280, False), (1280, True))  # width of the window, dark scheme
 ENTRIES = (("build-sheet.pdf", "pdf"), ("radiator/radiator.step", "step"))
 
 
@@ -171,6 +171,16 @@ def test_every_file_is_listed_with_its_size_and_linked(yard: tuple[Path, Any]) -
             size = float(number) * {"B": 1.0, "kB": 1e3, "MB": 1e6}[unit]
             assert size == pytest.approx(f["bytes"], rel=0.02)
             assert (yard[0] / tree.xpath(f"//*[@id='files']//a[text()='{f['path']}']/@href")[0]).is_file()
+
+
+def test_the_batch_is_laid_out(yard: tuple[Path, Any]) -> None:
+    tree = parsed((yard[0] / "report.html").read_text(encoding="utf-8"))
+    numbers = tree.xpath("//*[@id='sheet-plot']//text[@class='t small']/text()")
+    assert numbers == ["1", "2", "3", "4", "5", "6"]
+    assert tree.xpath("//*[@id='made']//a/@href")[:1] == ["reflector/nest-1.dxf"]
+    plan = json.loads((yard[0] / "design.json").read_text())["batch"]["prints"]["plates"][0]
+    boxes = tree.xpath("//*[@id='bed-plot']//rect[@class='part']")
+    assert len(boxes) == plan["pieces"]
 
 
 def test_a_page_without_prediction_or_batch_says_so(tmp_path: Path) -> None:
@@ -387,8 +397,7 @@ def drawn(pixels: np.ndarray) -> float:
 
 
 @needs_browser
-@pytest.mark.parametrize("dark", [False, True], ids=["light", "dark"])
-@pytest.mark.parametrize("wide", WIDTHS)
+@pytest.mark.parametrize(("wide", "dark"), LOOKS)
 def test_the_page_is_drawn(chromium: Browser, yard: tuple[Path, Any], wide: int, dark: bool) -> None:
     chromium.log()
     chromium.open((yard[0] / "report.html").as_uri(), wide=wide, high=800, dark=dark, touch=wide < 500)

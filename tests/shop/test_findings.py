@@ -38,6 +38,8 @@ CASES: list[tuple[str, str, dict[str, Any], dict[str, Any]]] = [
      {"reflector": {"material": "copper"}, "cutter": {"process": "waterjet"}}),
     ("metal-needs-fibre", "note", {"reflector": {"material": "brass"}}, {"reflector": {"material": "tinplate"}}),
     ("holes-by-drill", "note", {"cutter": {"process": "guillotine"}}, {}),
+    ("wire-over-stock", "error", {"wire_stock": {"length": "250 mm"}}, {"wire_stock": {"length": "1 m"}}),
+    ("blanks-crowded", "warning", {"cutter": {"spacing": "0.5 mm"}, "quantity": 4}, {"quantity": 4}),
     ("blank-over-stock", "error", {"reflector": {"base": ["400 mm", "400 mm"]}}, {}),
     ("unlike-metals", "warning", {"reflector": {"material": "aluminium"}}, {}),
     ("no-drain", "warning", {"reflector": FOUR, "mounting": {"drain": "none"}}, {"reflector": FOUR}),

@@ -62,6 +62,8 @@ def _metal(design: Design, nest: Nest | None, wires: tuple[WirePlan, ...]) -> It
         )
     r = design.reflector
     if nest is None:
+        size = f"{r.base_x_mm:g} x {r.base_y_mm:g} mm floor"
+        yield _pieces("own", "dish, box or lid of your own", r.metal.name, size, 1, n)
         return
     w, h = nest.stock_mm
     yield BillLine(

@@ -55,9 +55,12 @@ class Nest:
     utilisation: float
 
     @property
-    def offcut_mm(self) -> float:
-        """What stays of the last sheet, beyond its last blank and one spacing, along x."""
-        return max(0.0, self.stock_mm[0] - self.sheets[-1].box[2] - self.spacing_mm)
+    def offcut_mm(self) -> tuple[float, float]:
+        """The larger whole strip of the last sheet, beside or above its blanks and one spacing, along x and y."""
+        (w, h), box = self.stock_mm, self.sheets[-1].box
+        beside = (max(0.0, w - box[2] - self.spacing_mm), h)
+        above = (w, max(0.0, h - box[3] - self.spacing_mm))
+        return max(beside, above, key=lambda strip: strip[0] * strip[1])
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -47,7 +47,7 @@ def nest(design: Design, tray: Tray, pattern: FlatPattern) -> Nest:
     n = design.quantity
     sheets = []
     for first in range(0, n, len(laid)):
-        used = laid[: min(len(laid), n - first)]
+        used = _kept_together(laid, n - first, size, (c.stock_x_mm, c.stock_y_mm))
         places = tuple(
             _placement(first + i, spot, box, size, c.margin_mm) for i, spot in enumerate(used, start=1)
         )
@@ -78,6 +78,23 @@ def nest(design: Design, tray: Tray, pattern: FlatPattern) -> Nest:
         fewest_sheets=math.ceil(n / most),
         utilisation=n * area / (stock_area * len(sheets)),
     )
+
+
+def _kept_together(
+    laid: tuple[Laid, ...], count: int, size: tuple[float, float], stock: tuple[float, float]
+) -> tuple[Laid, ...]:
+    """The first `count` places of a full sheet, column by column or row by row: whichever leaves more whole."""
+    if count >= len(laid):
+        return laid
+    columns = laid[:count]
+    rows = tuple(sorted(laid, key=lambda p: (p.y_mm, p.x_mm))[:count])
+
+    def left(used: tuple[Laid, ...]) -> float:
+        wide = max(p.x_mm + (size[1] if p.turned else size[0]) for p in used)
+        high = max(p.y_mm + (size[0] if p.turned else size[1]) for p in used)
+        return max((stock[0] - wide) * stock[1], (stock[1] - high) * stock[0])
+
+    return rows if left(rows) > left(columns) else columns
 
 
 def _ways(grain: str, tray: Tray) -> tuple[tuple[str, ...], ...]:

@@ -6,10 +6,11 @@ Printed figures are coarser than the solver's noise: 0.1 ohm, 0.01 dB, 10 kHz be
 from __future__ import annotations
 
 import math
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
-from wavejig.field.pattern import Cut
-from wavejig.field.prediction import MatchPoint, Prediction
+if TYPE_CHECKING:  # telling figures loads no solver
+    from wavejig.field.pattern import Cut
+    from wavejig.field.prediction import MatchPoint, Prediction
 
 
 def prediction_data(p: Prediction) -> dict[str, Any]:

@@ -35,7 +35,7 @@ def _nest(nest: Nest, unmarked: tuple[int, ...]) -> dict[str, Any]:
         "fewest_sheets_by_area": nest.fewest_sheets,
         "utilisation": _n(nest.utilisation),
         "sheet_utilisation": [_n(sheet.utilisation) for sheet in nest.sheets],
-        "last_offcut": _n(nest.offcut_mm),
+        "last_offcut": [_n(v) for v in nest.offcut_mm],
     }
 
 

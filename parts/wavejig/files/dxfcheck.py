@@ -106,7 +106,7 @@ def _check_layer(path: Path, layer: Layer, found: list[Any]) -> None:
         if isinstance(drawn, Contour) and not entity.is_closed:
             raise FileCheckError(path, f"an open contour, {layer.name} {number}", "a closed one")
         got, want = _numbers(entity), entity_numbers(drawn)
-        if len(got) != len(want) or not np.allclose(got, want, rtol=0.0, atol=1e-9):
+        if len(got) != len(want) or not all(abs(a - b) <= 1e-9 for a, b in zip(got, want, strict=True)):
             raise FileCheckError(
                 path,
                 f"{entity.dxftype()} {number} on layer {layer.name} with {_short(got)}",

@@ -10,7 +10,7 @@ from __future__ import annotations
 import hashlib
 import json
 import shutil
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, fields, replace
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
@@ -35,13 +35,26 @@ _ASIDE = {
 }
 
 
-def inputs(step: str, design: Design, plans: tuple[object, ...]) -> tuple[object, ...] | None:
+# The plans that a step draws from.
+_PLANS = {
+    "radiator": ("radiator",),
+    "reflector": ("tray", "pattern"),
+    "spacer": ("radiator", "spacer"),
+    "fixture": ("radiator", "tray", "fixture"),
+    "assembly": ("radiator", "tray", "spacer"),
+}
+
+
+def inputs(step: str, design: Design, plans: Mapping[str, object]) -> tuple[object, ...] | None:
     """What that step's files follow from, to be compared; None for a step that is always run."""
     if step not in _ASIDE:
         return None
     left_out = _NEVER | _ASIDE[step]
     asked = replace(design, target=_shape(design.target))
-    return (*((f.name, getattr(asked, f.name)) for f in fields(design) if f.name not in left_out), *plans)
+    return (
+        *((f.name, getattr(asked, f.name)) for f in fields(design) if f.name not in left_out),
+        *(plans[p] for p in _PLANS[step]),
+    )
 
 
 def _shape(target: TargetDesign) -> TargetDesign:

@@ -22,7 +22,6 @@ from wavejig.files.design_json import check_design_json, design_data, write_desi
 from wavejig.files.drilldxf import drill_layers
 from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
 from wavejig.files.dxfcheck import check_dxf
-from wavejig.files.fieldfiles import write_field
 from wavejig.files.glb import ColouredMesh, check_glb, write_glb
 from wavejig.files.kept import Kept, inputs
 from wavejig.files.making_json import Made
@@ -49,7 +48,6 @@ from wavejig.reflector.solid import tray_solid
 from wavejig.shop import Inspection
 from wavejig.shop.bending import order_findings
 from wavejig.shop.finding import Finding
-from wavejig.shop.predicted import prediction_findings
 from wavejig.shop.ways import way_findings
 from wavejig.spacer.effect import post_effect
 from wavejig.spacer.solid import printables as spacer_printables
@@ -108,9 +106,8 @@ class PackFiles:
         self.entries: list[Entry] = []
         self.assembly: list[NamedSolid] = []
         self.pictured: list[tuple[ColouredMesh, str]] = []  # and "antenna", or the part it is a tool for
-        self.meshes: dict[str, tuple[Mesh, Measure]] = {}
         self.prints: list[tuple[str, int, Printability]] = []
-        self.print_pieces: list[PrintPiece] = []
+        self.printed: list[tuple[PrintPiece, Mesh, Measure]] = []  # counts for one set of spacers
         self.batch: Batch | None = None
         self.pattern: FlatPattern = flat_pattern(self.tray, self.design.name)
 
@@ -131,10 +128,14 @@ class PackFiles:
         if self.kept is None:
             step.run()
             return
-        plans = (self.radiator, self.tray, self.spacer, self.fixture, self.pattern)
+        plans = {
+            "radiator": self.radiator, "tray": self.tray, "spacer": self.spacer, "fixture": self.fixture,
+            "pattern": self.pattern,
+        }  # fmt: skip
         given = inputs(step.title, self.design, plans)
-        lists = {
+        lists: dict[str, list[Any]] = {
             "entries": self.entries, "assembly": self.assembly, "pictured": self.pictured, "prints": self.prints,
+            "printed": self.printed,
         }  # fmt: skip
         before = {name: len(of) for name, of in lists.items()}
         left = self.kept.recall(step.title, given, self.root)
@@ -244,17 +245,14 @@ class PackFiles:
 
     def write_batch(self) -> None:
         """Nests, plates, cut plan and bill of materials for the whole quantity."""
+        sets = spacer_sets(self.design)
+        pieces = [replace(p, count=p.count * sets) if p.part == "spacer" else p for p, _, _ in self.printed]
         self.batch = plan_batch(
-            self.design,
-            self.radiator,
-            self.tray,
-            self.pattern,
-            self.spacer,
-            self.fixture,
-            self.print_pieces,
+            self.design, self.radiator, self.tray, self.pattern, self.spacer, self.fixture, pieces
         )
         self._found(batch_findings(self.batch))
-        self.entries += write_batch(self.batch, self.design, self.tray, self.pattern, self.meshes, self.root)
+        meshes = {piece.name: (mesh, figures) for piece, mesh, figures in self.printed}
+        self.entries += write_batch(self.batch, self.design, self.tray, self.pattern, meshes, self.root)
 
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
@@ -273,6 +271,8 @@ class PackFiles:
         """The electromagnetic model, the predicted match and pattern; findings on what they miss."""
         from wavejig.field.from_design import model_from_design
         from wavejig.field.prediction import predict
+        from wavejig.files.fieldfiles import write_field
+        from wavejig.shop.predicted import prediction_findings
 
         model = model_from_design(self.design)
 
@@ -343,21 +343,19 @@ class PackFiles:
         self._note(f"{part}/{name}.3mf", "3mf", part, "mm")
 
     def _for_batch(self, name: str, part: str, count: int, mesh: Mesh, figures: Measure) -> None:
-        """Note a printed piece for the plates: one set of spacers an antenna or a bench, the fixture once."""
+        """Note a printed piece for the plates."""
         x0, y0, z0, x1, y1, z1 = figures.bounds_mm
-        spacer = part == "spacer"
-        self.meshes[name] = (mesh, figures)
-        self.print_pieces.append(
-            PrintPiece(
-                part=part,
-                name=name,
-                plastic=self.design.spacer.plastic if spacer else self.design.printer.plastic,
-                size_mm=(x1 - x0, y1 - y0),
-                height_mm=z1 - z0,
-                volume_mm3=figures.volume_mm3,
-                count=count * spacer_sets(self.design) if spacer else count,
-            )
+        plastic = self.design.spacer.plastic if part == "spacer" else self.design.printer.plastic
+        piece = PrintPiece(
+            part=part,
+            name=name,
+            plastic=plastic,
+            size_mm=(x1 - x0, y1 - y0),
+            height_mm=z1 - z0,
+            volume_mm3=figures.volume_mm3,
+            count=count,
         )
+        self.printed.append((piece, mesh, figures))
 
     def _step(self, solids: list[NamedSolid], name: str, part: str) -> None:
         path = self._path(name)

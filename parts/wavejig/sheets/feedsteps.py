@@ -35,8 +35,11 @@ def _iron(design: Design) -> str:
     r = design.reflector
     watts = joint_heat_w(design)
     drawn = f", some {watts:.0f} W" if watts is not None else ""
+    floor = f"{number(r.base_x_mm, 0)} \u00d7 {number(r.base_y_mm, 0)} mm"
+    if r.own is not None and r.own.shape == "round":
+        floor = f"\u00d8{number(r.base_x_mm, 0)} mm"
     return (
-        f"the sheet ({number(r.base_x_mm, 0)} \u00d7 {number(r.base_y_mm, 0)} mm of {number(r.thickness_mm)} mm "
+        f"the sheet ({floor} of {number(r.thickness_mm)} mm "
         f"{r.metal.name}) draws the heat{drawn}: a strong iron with a broad bit, or warm the sheet from below first"
     )
 

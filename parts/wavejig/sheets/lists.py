@@ -4,6 +4,9 @@ from __future__ import annotations
 
 from collections import Counter
 
+from wavejig.batch.bill import fixture_pins
+from wavejig.batch.model import Batch
+from wavejig.batch.plates import spacer_sets
 from wavejig.design.model import Design
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
@@ -92,15 +95,57 @@ def tools(design: Design, fixture: Fixture, spacer: Spacer) -> Rows:
     plastic = f"printed, {spacer.plastic}"
     if spacer.style == "block":
         names = ", ".join(p.name for p in spacer.pieces)
-        rows.append((f"spacer: {names}", plastic, f"{len(spacer.pieces)}"))
+        sets = spacer_sets(design)
+        many = f", {sets} sets" if sets > 1 else ""
+        rows.append((f"spacer: {names}{many}", plastic, f"{sets * len(spacer.pieces)}"))
     else:
         rows.append(("spacer posts (they stay)", plastic, f"{design.quantity * len(spacer.posts)}"))
-    pins = Counter(round(s.tool_diameter_mm, 3) for s in fixture.stations if s.tool == "dowel")
-    for b in fixture.blocks:
-        pins[round(b.dowel_mm, 3)] += 0
-    for diameter, count in sorted(pins.items()):
-        length = f" \u00d7 {number(fixture.pins.dowel_length_mm)} mm" if count else ""
-        rows.append((f"dowel pin \u00d8{number(diameter, 3)}{length}", "steel", f"{max(count, 1)}"))
+    for (diameter, turned), count in sorted(fixture_pins(design, fixture).items()):
+        what = "pin, turned to" if turned else "dowel pin"
+        length = f"\u00d8{number(diameter, 3)} \u00d7 {number(fixture.pins.dowel_length_mm)} mm"
+        rows.append((f"{what} {length}", "steel", f"{count}"))
+    return tuple(rows)
+
+
+BATCH_HEAD = ("to make them all", "how much", "how", "file")
+
+
+def batch(made: Batch) -> Rows:
+    """Rows of `BATCH_HEAD`: sheets, lengths of wire, prints, and what it costs where prices are given."""
+    rows: list[tuple[str, ...]] = []
+    nest = made.nest
+    if nest is not None:
+        n = len(nest.sheets)
+        grain = {"any": ""}.get(nest.blank_grain, f"; grain along {nest.blank_grain} of every blank")
+        w, h = (number(v) for v in nest.stock_mm)
+        how = f"{nest.per_sheet} on a full one, {100.0 * nest.utilisation:.0f} % of the metal used{grain}"
+        files = "reflector/nest-1.dxf" + (f" to {n}" if n > 1 else "")
+        rows.append((f"stock sheet {w} \u00d7 {h} mm", f"{n}", how, files))
+    for plan in made.wires:
+        what = {"wire": "wire", "leg-wire": "wire of the legs", "tube": "tube"}[plan.kind]
+        much = f"one length of {plan.needed_mm / 1000.0:.2f} m or more"
+        if plan.stock_mm is not None:
+            much = f"{plan.lengths} of {number(plan.stock_mm / 1000.0, 3)} m"
+        ways = []
+        for pattern in plan.patterns[:3]:
+            cut = " + ".join(f"{count} {NAMES[role]}" for role, count in pattern.pieces)
+            ways.append(f"{pattern.times} cut to {cut}" if plan.stock_mm is not None else f"cut to {cut}")
+        if len(plan.patterns) > 3:
+            ways.append("more in the file")
+        how = "; ".join(ways)
+        if plan.stock_mm is not None:
+            how += f"; {100.0 * plan.waste:.0f} % left over"
+        rows.append((f"{what} \u00d8{number(plan.diameter_mm, 3)} mm", much, how, "radiator/cut-plan.csv"))
+    prints = made.prints
+    for number_, plate in enumerate(prints.plates if prints else (), start=1):
+        inside = Counter(spot.name for spot in plate.spots)
+        how = ", ".join(name if n == 1 else f"{n} {name}" for name, n in inside.items())
+        rows.append((f"print in {plate.plastic}", f"{plate.times}", how, f"print/plate-{number_}.3mf"))
+    bill = made.bill
+    if bill.total is not None:
+        rest = f"; {bill.unpriced} lines of the bill have no price" if bill.unpriced else ""
+        much, how = f"{bill.total:.2f} {bill.currency}".strip(), f"at the recipe's prices{rest}"
+        rows.append(("cost", much, how, "bill-of-materials.csv"))
     return tuple(rows)
 
 

@@ -13,6 +13,7 @@ from reportlab.platypus import (
     Table,
 )
 
+from wavejig.batch.model import Batch
 from wavejig.design.model import Design
 from wavejig.fixture.bending.model import BendOrder
 from wavejig.reflector.flat import FlatPattern
@@ -43,12 +44,13 @@ _FRAME_COLUMNS = 2
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class BuildSheet:
-    """Everything the sheet is made from. prediction, order: None where there is none."""
+    """Everything the sheet is made from. prediction, order, batch: None where there is none."""
 
     inspection: Inspection
     pattern: FlatPattern
     prediction: Prediction | None = None
     order: BendOrder | None = None
+    batch: Batch | None = None
 
     @property
     def design(self) -> Design:
@@ -163,6 +165,10 @@ def _materials(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     yield Spacer(1, 2.0 * mm)
     tools = lists.tools(sheet.design, i.fixture, i.spacer)
     yield table(("once for the batch", "", "pieces"), tools, (0.55 * wide, 0.35 * wide, 0.1 * wide))
+    if sheet.batch is not None:
+        yield Spacer(1, 2.0 * mm)
+        four = (0.2 * wide, 0.18 * wide, 0.39 * wide, 0.23 * wide)
+        yield table(lists.BATCH_HEAD, lists.batch(sheet.batch), four)
     yield Spacer(1, 1.0 * mm)
     yield para(
         "And: solder, flux, alcohol, a calliper, eye protection, gloves, the heat clip, a mating plug.",

@@ -191,7 +191,9 @@ def _section(tray: Tray) -> Iterator[Item]:
     yield LinearDim(a=(top, 0.0), b=(top, depth), offset_mm=-12.0 - own.rim_mm, angle_deg=90.0)
     if own.slope_deg > 0.0:
         yield Line(a=(-half, 0.0), b=(-half, depth), pen="thin")
-        yield AngleDim(vertex=(-half, 0.0), from_deg=90.0, to_deg=90.0 + own.slope_deg, radius_mm=16.0, outside=True)
+        yield AngleDim(
+            vertex=(-half, 0.0), from_deg=90.0, to_deg=90.0 + own.slope_deg, radius_mm=16.0, outside=True
+        )
     if own.rim_mm > 0.0:
         yield LinearDim(a=(top, depth), b=(top + own.rim_mm, depth), offset_mm=6.0)
     said = f"R{number(own.radius_mm)} between floor and wall; {number(t)} mm thick"
@@ -206,8 +208,8 @@ def _pt(v: np.ndarray) -> tuple[float, float]:
     return (float(v[0]), float(v[1]))
 
 
-def own_steps(design: Design, fixture: Fixture) -> Iterator[str]:
-    """Measuring and drilling the dish, in order, with this design's numbers."""
+def own_measuring(design: Design) -> Iterator[str]:
+    """Before anything else: is it the dish that all of this was worked out for?"""
     r = design.reflector
     own = r.own
     assert own is not None
@@ -219,11 +221,16 @@ def own_steps(design: Design, fixture: Fixture) -> Iterator[str]:
     across = r.base_x_mm + 2.0 * own.reach_mm(own.depth_mm)
     what = "" if own.shape == "round" else " along x"
     yield (
-        f"Measure the dish inside before anything is drilled: floor {floor}; depth {number(own.depth_mm)} mm from a "
-        f"straightedge over the rim, at four places. The floor's edge is rounded: measure across the mouth{what} "
-        f"(expected {number(across)} mm) and take off 2 \u00d7 depth \u00d7 tan(lean). Off by more than "
+        f"Measure the dish inside before anything is bent or drilled: floor {floor}; depth {number(own.depth_mm)} mm "
+        f"from a straightedge over the rim, at four places. The floor's edge is rounded: measure across the "
+        f"mouth{what} (expected {number(across)} mm) and take off 2 \u00d7 depth \u00d7 tan(lean). Off by more than "
         f"{number(DISH_OFF_MM)} mm: write your figures into [reflector.own] and build the pack again."
     )
+
+
+def own_drilling(design: Design, fixture: Fixture) -> Iterator[str]:
+    """Punching and drilling the dish, in order, with this design's numbers."""
+    r = design.reflector
     if fixture.template is not None:
         tiles = len(fixture.template.plate.tiles)
         key = ", its tiles keyed together," if tiles > 1 else ""

@@ -17,7 +17,7 @@ from wavejig.sheets.feedsteps import (
     tube_steps,
 )
 from wavejig.sheets.model import number
-from wavejig.sheets.own import own_steps
+from wavejig.sheets.own import own_drilling, own_measuring
 from wavejig.spacer.model import Spacer
 
 
@@ -25,6 +25,7 @@ def assembly_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: 
     """Every step from the cut wire to the sealed antenna, in order."""
     return tuple(
         (
+            *(() if design.reflector.own is None else own_measuring(design)),
             *_wire(design, radiator, fixture),
             *_reflector(design, fixture),
             *(
@@ -76,7 +77,7 @@ def _wire(design: Design, radiator: Radiator, fixture: Fixture) -> Iterator[str]
 
 def _reflector(design: Design, fixture: Fixture) -> Iterator[str]:
     if design.reflector.own is not None:
-        yield from own_steps(design, fixture)
+        yield from own_drilling(design, fixture)
     elif design.reflector.lips:
         yield (
             "Fold the blank: the face marked THIS FACE TO RADIATOR is the inside, every lip folds "

@@ -161,10 +161,9 @@ def _mounting(sheet: BuildSheet) -> Iterator[Any]:
     drains = [h for h in tray.holes if h.purpose == "drain"]
     low = design.reflector.up[0] + ("-" if design.reflector.up[1] == "+" else "+")
     if drains:
+        hole = "drain hole" if len(drains) == 1 else f"the {len(drains)} drain holes"
         at = "; ".join(f"({number(h.x_mm)}, {number(h.y_mm)})" for h in drains)
-        yield lead(
-            "Drain:", f"the {len(drains)} drain holes at {at} mm are at the low edge ({low}): keep them open."
-        )
+        yield lead("Drain:", f"{hole} at {at} mm, at the low edge ({low}): keep open.")
     else:
         yield lead("Drain:", f"no drain holes; water must be free to run off at the low edge ({low}).")
     yield lead(

@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from wavejig.batch.model import Batch
 from wavejig.files.manifest import Entry
 from wavejig.fixture.bending.model import BendOrder
 from wavejig.reflector.flat import FlatPattern
@@ -53,6 +54,7 @@ def write_sheets(
     *,
     prediction: Prediction | None = None,
     order: BendOrder | None = None,
+    batch: Batch | None = None,
 ) -> tuple[Entry, ...]:
     """Write drawings and build sheet into a pack's folder and read them back.
 
@@ -77,7 +79,8 @@ def write_sheets(
         entries.append(Entry(path=name, kind="pdf", part="reflector", units="mm"))
     path = root / "build-sheet.pdf"
     write_build_sheet(
-        BuildSheet(inspection=inspection, pattern=pattern, prediction=prediction, order=order), path
+        BuildSheet(inspection=inspection, pattern=pattern, prediction=prediction, order=order, batch=batch),
+        path,
     )
     check_pdf(path, design.name, PAPERS_MM[design.sheet.paper])
     entries.append(Entry(path="build-sheet.pdf", kind="pdf", part="design", units="mm"))

@@ -3,10 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
+from typing import TYPE_CHECKING
 
 from wavejig.field.figures import megahertz
-from wavejig.field.prediction import Prediction
 from wavejig.shop.finding import NOTE, WARNING, Finding
+
+if TYPE_CHECKING:
+    from wavejig.field.prediction import Prediction
 
 PREDICTED = "the field solver's prediction; without a measured article good to about 1 % in frequency"
 LEAST_BALANCE = 0.01  # power in against power out: a sound mesh is well within

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 from types import MappingProxyType
 
 from wavejig.design.model import Conflict, Design, Point2
@@ -55,6 +56,13 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
             if not still:
                 pieces, conflicts = other, still
         notes = (*_late_bolts(design, pieces), *_loose(pieces))
+    if design.reflector.own is not None:  # it is there: nobody makes its base wider
+        conflicts = tuple(
+            replace(c, key="reflector.own", remedy="Take a larger dish, or use posts.")
+            if c.key == "reflector.base"
+            else c
+            for c in conflicts
+        )
     return Spacer(
         style=design.spacer.style,
         plastic=design.spacer.plastic,

@@ -18,7 +18,11 @@ def compiled(fastmath: frozenset[str] = CAREFUL) -> Callable[[Loop], Loop]:
     """A decorator: compile at the first call; a later process reads the result from disk."""
 
     def decorate(function: Loop) -> Loop:
-        made: Loop = njit(nogil=True, cache=True, error_model="numpy", fastmath=set(fastmath))(function)
+        options = {"nogil": True, "error_model": "numpy", "fastmath": set(fastmath)}
+        try:
+            made: Loop = njit(cache=True, **options)(function)
+        except RuntimeError:  # no folder that could keep the compiled code: compile in each process
+            made = njit(**options)(function)
         return made
 
     return decorate

@@ -4,8 +4,10 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterable, Iterator
 
+from wavejig.batch.model import Placement
 from wavejig.files.printable import BED_MARGIN_MM
 from wavejig.reflector.flat import FlatPattern
+from wavejig.sheets import lists
 from wavejig.sheets.model import number
 from wavejig.sheets.report.axes import Pt, chain, line, picture, word
 from wavejig.sheets.report.markup import Element, el
@@ -15,6 +17,8 @@ from wavejig.sheets.report.tables import count_of, figure, parts_of, table
 _WIDE, _EDGE = 380.0, 10.0  # of the pictures, and white round them
 _ALONE = 250.0  # the blank alone, its longer side
 
+_LETTER = 5.6  # width of a small letter, about
+
 Move = Callable[[float, float], Pt]
 
 
@@ -22,7 +26,11 @@ def fit_section(r: Report) -> Iterator[Element]:
     """The pictures and the table of prints."""
     bed = r.design.printer
     own = r.design.reflector.kind == "own"
-    yield el("div", parts_of((_own(r.pattern) if own else _sheet(r), _bed(r))), class_="pair")
+    if r.batch is not None:
+        files = {e.path for e, _ in r.files}
+        made = [(*row[:3], _link(row[3], files)) for row in lists.batch(r.batch)]
+        yield table("For the whole batch", lists.BATCH_HEAD, made)
+    yield el("div", parts_of((_own(r.pattern) if own else _sheet(r), _plate(r) or _bed(r))), class_="pair")
     rows = [
         (
             p.name,
@@ -45,33 +53,50 @@ def fit_section(r: Report) -> Iterator[Element]:
 
 
 def _sheet(r: Report) -> Element:
-    """The blank in the corner of a stock sheet, and larger beside it."""
+    """The batch's blanks on the first stock sheet (or one in its corner), and the blank larger."""
     c, pattern = r.design.cutter, r.pattern
+    nest = None if r.batch is None else r.batch.nest
+    wide_mm, high_mm = (c.stock_x_mm, c.stock_y_mm) if nest is None else nest.stock_mm
     x0, y0, x1, y1 = pattern.outline.bounds()
-    wide, high = x1 - x0, y1 - y0
-    turned = not (wide <= c.stock_x_mm and high <= c.stock_y_mm)
-    scale = _WIDE / max(c.stock_x_mm, c.stock_y_mm)
-    floor = _EDGE + c.stock_y_mm * scale
-
-    def on_stock(x: float, y: float) -> Pt:
-        a, b = (y - y0, x - x0) if turned else (x - x0, y - y0)
-        return _EDGE + scale * a, floor - scale * b
-
+    scale = _WIDE / max(wide_mm, high_mm)
+    floor = _EDGE + high_mm * scale
     top = floor + 42.0
-    parts = [
-        el("rect", x=_EDGE, y=_EDGE, width=c.stock_x_mm * scale, height=c.stock_y_mm * scale, class_="frame"),
-        el("path", d=_closed(pattern.outline.points(0.2), on_stock), class_="part"),
-        word((_EDGE, top - 10.0), "the blank alone, from the radiator side (- \u00b7 - folds):"),
-        *_alone(pattern, top),
-    ]
-    w, h = pattern.size_mm
-    text = (
-        f"Blank {number(w, 1)} by {number(h, 1)} mm on a stock sheet of "
-        f"{number(c.stock_x_mm)} by {number(c.stock_y_mm)} mm{', turned a quarter' if turned else ''}; "
-        f"{count_of(len(pattern.holes), 'hole')}, {count_of(len(pattern.bends), 'fold')}."
+    parts = [el("rect", x=_EDGE, y=_EDGE, width=wide_mm * scale, height=high_mm * scale, class_="frame")]
+    placed = (
+        (Placement(number=1, x_mm=-x0, y_mm=-y0, turn_deg=0.0),)
+        if nest is None
+        else nest.sheets[0].placements
     )
-    tall = top + _ALONE * high / max(wide, high) + _EDGE
-    return figure(text, picture(400.0, tall, "sheet-plot", "Blank and stock sheet", text, parts))
+    for place in placed:
+        parts += _placed(pattern, place, lambda x, y: (_EDGE + scale * x, floor - scale * y))
+    parts.append(word((_EDGE, top - 10.0), "the blank alone, from the radiator side (- \u00b7 - folds):"))
+    parts += _alone(pattern, top)
+    w, h = pattern.size_mm
+    stock = f"{number(wide_mm)} by {number(high_mm)} mm"
+    text = f"Blank {number(w, 1)} by {number(h, 1)} mm; stock sheet {stock}"
+    if nest is not None:
+        first = f" (the first of {len(nest.sheets)} shown)" if len(nest.sheets) > 1 else ""
+        text = (
+            f"{count_of(r.design.quantity, 'blank')} of {number(w, 1)} by {number(h, 1)} mm on "
+            f"{count_of(len(nest.sheets), 'stock sheet')} of {stock}{first}, "
+            f"{100.0 * nest.utilisation:.0f} % of the metal used"
+        )
+    text += f"; {count_of(len(pattern.holes), 'hole')}, {count_of(len(pattern.bends), 'fold')} in each."
+    tall = top + _ALONE * (y1 - y0) / max(x1 - x0, y1 - y0) + _EDGE
+    return figure(text, picture(400.0, tall, "sheet-plot", "Blanks and stock sheet", text, parts))
+
+
+def _placed(pattern: FlatPattern, place: Placement, move: Move) -> Iterator[Element]:
+    """One blank where the nest has it, with its running number."""
+
+    def seen(x: float, y: float) -> Pt:
+        a, b = (-y, x) if place.turn_deg else (x, y)
+        return move(a + place.x_mm, b + place.y_mm)
+
+    yield el("path", d=_closed(pattern.outline.points(0.2), seen), class_="part")
+    x0, y0, x1, y1 = pattern.outline.bounds()
+    at = seen((x0 + x1) / 2.0, (y0 + y1) / 2.0)
+    yield word((at[0], at[1] + 4.0), f"{place.number}", class_="t small", anchor="middle")
 
 
 def _own(pattern: FlatPattern) -> Element:
@@ -104,6 +129,44 @@ def _alone(pattern: FlatPattern, top: float) -> Iterator[Element]:
 def _closed(points: Iterable[Iterable[float]], move: Move) -> str:
     """Path data of a closed loop of (x, y) in mm."""
     return chain((move(*(float(v) for v in p)) for p in points), closed=True)
+
+
+def _plate(r: Report) -> Element | None:
+    """The first plate of the batch's prints."""
+    prints = None if r.batch is None else r.batch.prints
+    if prints is None or not prints.plates:
+        return None
+    plate, sizes = prints.plates[0], {p.name: p.size_mm for p in prints.pieces}
+    wide_mm, high_mm = prints.bed_mm
+    scale = _WIDE / max(wide_mm, high_mm)
+    high = high_mm * scale
+    margin = prints.margin_mm * scale
+    used_x, used_y = wide_mm * scale - 2.0 * margin, high - 2.0 * margin
+    parts = [
+        el("rect", x=_EDGE, y=_EDGE, width=wide_mm * scale, height=high, class_="frame"),
+        el(
+            "rect", x=_EDGE + margin, y=_EDGE + margin, width=used_x, height=used_y, class_="fold",
+        ),
+    ]  # fmt: skip
+    for spot in plate.spots:
+        w, h = sizes[spot.name][:: -1 if spot.turn_deg else 1]
+        x, y = _EDGE + scale * (spot.x_mm - w / 2.0), _EDGE + high - scale * (spot.y_mm + h / 2.0)
+        parts.append(el("rect", x=x, y=y, width=scale * w, height=scale * h, class_="part"))
+    for spot in plate.spots:
+        if _LETTER * len(spot.name) > scale * sizes[spot.name][1 if spot.turn_deg else 0]:
+            continue  # no room; the table names them all
+        at = (_EDGE + scale * spot.x_mm, _EDGE + high - scale * spot.y_mm + 4.0)
+        parts.append(word(at, spot.name, anchor="middle", class_="t small halo"))
+    text = (
+        f"Plate 1 of {len(prints.plates)}: {count_of(len(plate.spots), 'piece')} in {plate.plastic} on a bed of "
+        f"{number(wide_mm)} by {number(high_mm)} mm (dashed: the part of it that is used); the boxes round the pieces."
+    )
+    return figure(text, picture(400.0, high + 2.0 * _EDGE, "bed-plot", "First plate on the bed", text, parts))
+
+
+def _link(path: str, files: set[str]) -> str | Element:
+    """A link where the pack has just that file."""
+    return el("a", path, href=path) if path in files else path
 
 
 def _bed(r: Report) -> Element | None:

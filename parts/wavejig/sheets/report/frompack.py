@@ -6,6 +6,7 @@ from collections.abc import Iterable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from wavejig.batch.model import Batch
 from wavejig.files.glb import ColouredMesh
 from wavejig.files.manifest import Entry
 from wavejig.files.printable import Printability
@@ -29,6 +30,7 @@ def write_pack_report(
     pictured: Iterable[tuple[ColouredMesh, str]],
     prints: Sequence[tuple[str, int, Printability]],
     entries: Sequence[Entry],
+    batch: Batch | None = None,
     prediction: Prediction | None = None,
     yields: Yield | None = None,
     measured: Measured | None = None,
@@ -44,6 +46,7 @@ def write_pack_report(
         pieces=tuple(sorted(shown, key=lambda s: s.group != "antenna")),
         prints=tuple(prints),
         files=tuple((e, (root / e.path).stat().st_size) for e in entries),
+        batch=batch,
         prediction=prediction,
         yields=yields,
         measured=measured,

@@ -9,7 +9,7 @@ from wavejig.sheets.model import number
 from wavejig.sheets.report.markup import Element, el
 from wavejig.sheets.report.matchplot import SweepShown, match_plot
 from wavejig.sheets.report.model import Report
-from wavejig.sheets.report.polarplot import polar_plots
+from wavejig.sheets.report.polarplot import hung, polar_plots
 from wavejig.sheets.report.reflectionchart import reflection_chart
 from wavejig.sheets.report.tables import figure, table
 
@@ -89,4 +89,16 @@ def match_section(r: Report) -> Iterator[Element]:
         figure(f"Up and down, gain at {checks.mhz(p.middle_hz)}", *height),
         class_="pair",
     )
-    yield table("Radiation at the band's middle", ("figure", "predicted"), checks.radiation(p), numbers=(1,))
+    yield table("Radiation at the band's middle", ("figure", "predicted"), _radiation(r), numbers=(1,))
+
+
+def _radiation(r: Report) -> Iterator[tuple[str, str]]:
+    p = r.prediction
+    assert p is not None
+    yield "gain straight ahead", f"{p.gain_dbi:.1f} dBi"
+    ways = ("round the compass", "up and down")
+    for way, cut in zip(ways, hung(p, r.design.reflector.up), strict=True):
+        width = cut.source.beamwidth_deg
+        yield f"half-power width {way}", "full circle" if width is None else f"{width:.0f}\u00b0"
+    yield "front to back", f"{p.pattern.front_to_back_db:.0f} dB"
+    yield "power that is radiated, not lost as heat", f"{100.0 * p.pattern.efficiency:.1f} %"

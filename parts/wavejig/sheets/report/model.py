@@ -6,6 +6,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import TYPE_CHECKING
 
+from wavejig.batch.model import Batch
 from wavejig.design.model import Design
 from wavejig.files.manifest import Entry
 from wavejig.files.printable import Printability
@@ -24,7 +25,7 @@ class Report:
     """Everything the page tells.
 
     prints: (part, pieces for each antenna or set, what was measured on the mesh). files: the pack's other
-    files with their sizes in bytes. prediction, yields, measured: None where that was not worked out.
+    files with their sizes in bytes. batch, prediction, yields, measured: None where that was not worked out.
     """
 
     inspection: Inspection
@@ -32,6 +33,7 @@ class Report:
     pieces: Sequence[Shown]
     prints: Sequence[tuple[str, int, Printability]]
     files: Sequence[tuple[Entry, int]]
+    batch: Batch | None = None
     prediction: Prediction | None = None
     yields: Yield | None = None
     measured: Measured | None = None

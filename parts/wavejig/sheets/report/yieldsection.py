@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from wavejig.tuning.yields import Fraction, Yield
 
 _WIDE, _HIGH, _LEFT, _FOOT = 420.0, 260.0, 46.0, 46.0
+MODEL = "model_frequency"  # the key of `tuning.yields.FREQUENCY`, which loads the solver
 
 
 def yield_answer(r: Report) -> str:
@@ -24,7 +25,7 @@ def yield_answer(r: Report) -> str:
         return f"Not worked out yet for this batch of {r.design.quantity}."
     return (
         f"About {y.expected:.1f} of {y.quantity} ({y.batch_low} to {y.batch_high} in nine batches of ten); "
-        f"each passes with {_share(y.passing)}."
+        f"each passes with a chance of {_share(y.passing)}."
     )
 
 
@@ -50,6 +51,11 @@ def yield_section(r: Report) -> Iterator[Element]:
          f"{100 * y.shares[d.key].total:.0f} %", f"{100 * y.shop_shares[d.key].total:.0f} %", d.source)
         for d in y.explored.spread.dimensions
     ]  # fmt: skip
+    spread = y.explored.spread
+    if spread.frequency_sigma > 0.0:
+        share = f"{100 * y.shares[MODEL].total:.0f} %"
+        error = f"{100 * spread.frequency_sigma:.2g} % standard error"
+        rows.append(("model's frequency", "", error, share, "", spread.frequency_source))
     yield table(
         "Which dimension decides it: share of the spread, with all it acts together with",
         ("dimension", "nominal", "tolerance", "share", "shop only", "tolerance from"), rows, numbers=(1, 2, 3, 4),
