@@ -98,7 +98,8 @@ class Surrogate:
     def predict(self, u: Array) -> tuple[Complex, Array]:
         """Impedances (..., F) and gains (...) at points u (..., n)."""
         step = (u - self.at) / self.scale
-        out: Complex = self.constant + step @ self.slope + 0.5 * (step @ self.x.T) ** 2 @ self.weights
+        curved = 0.5 * (step @ self.x.T) ** 2 @ self.weights
+        out = np.asarray(self.constant + step @ self.slope + curved, dtype=np.complex128)
         return out[..., :-1], out[..., -1].real
 
     def merit(self, u: Array, goal: Goal) -> Array:
