@@ -117,7 +117,9 @@ def from_sweep(design: Design, swept: Sweep) -> Prediction:
     gain = float(solved.gain_dbi([[0.0, 0.0, 1.0]])[0, 0])
 
     def point(frequency: float) -> MatchPoint:
-        return match_point(frequency, complex(swept.impedance_ohm([frequency / factor])[0]), target.reference_ohm)
+        return match_point(
+            frequency, complex(swept.impedance_ohm([frequency / factor])[0]), target.reference_ohm
+        )
 
     return Prediction(
         design_name=design.name,

@@ -50,9 +50,7 @@ def _changes(recipe: Recipe) -> Iterator[tuple[str, Recipe]]:
         radiator = recipe.radiator.model_copy(
             update={"wire": WireSize(standard="diameter", number=wire), "inside_bend_radius": "auto"}
         )
-        yield f'{word} wire (radiator.wire = "{wire:g} mm")', recipe.model_copy(
-            update={"radiator": radiator}
-        )
+        yield f'{word} wire (radiator.wire = "{wire:g} mm")', recipe.model_copy(update={"radiator": radiator})
     cut_sheet = recipe.reflector.kind != "own"
     if cut_sheet and recipe.reflector.lips == "none" and not recipe.reflector.material.startswith("laminate"):
         reflector = recipe.reflector.model_copy(update={"lips": "four"})
