@@ -113,12 +113,13 @@ def test_each_code_in_the_code_is_tried_here() -> None:
     codes |= set(re.findall(r'code="([a-z-]+)" if', text)) | set(
         re.findall(r' else "([a-z]+-[a-z]+)",\n\s+severity', text)
     )
-    untried = codes - {c[0] for c in CASES}
+    # the cases of these rooms' findings stand in files of their own
+    beside = "".join(Path(__file__).with_name(n).read_text() for n in ("test_own.py", "test_predicted.py"))
+    untried = codes - {c[0] for c in CASES} - set(re.findall(r'"([a-z]+(?:-[a-z]+)+)"', beside))
     # raised only by designs that other rooms' tests build, or by rare accidents of layout
     assert untried <= {
         "springback-rough", "wires-touch", "straight-short", "measure-connector", "spacer-conflict", "spacer-note",
         "fixture-note", "tray-cannot-be-folded", "hole-in-bend", "marks-left-out",
         "wire-caught", "spacer-caught",
         "no-bend-order",
-        "prediction-misses", "prediction-unbalanced", "prediction-less-sure",  # test_predicted.py
     }  # fmt: skip

@@ -15,7 +15,8 @@ from wavejig.design import Design, resolve
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.plan import plan as plan_radiator
 from wavejig.recipe.reader import read_recipe
-from wavejig.spacer.plan import BED_MARGIN_MM, extent_mm, plan
+from wavejig.spacer.bed import BED_MARGIN_MM
+from wavejig.spacer.plan import extent_mm, plan
 from wavejig.spacer.solid import printables
 from wavejig.spacer.withdraw import moves_mm, withdrawals
 

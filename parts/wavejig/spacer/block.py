@@ -15,9 +15,10 @@ from dataclasses import dataclass
 import numpy as np
 
 from wavejig.design.model import Design
+from wavejig.design.version import version_code
 from wavejig.geometry.plane import Contour
 from wavejig.spacer import marks, profile
-from wavejig.spacer.keepout import limits_mm
+from wavejig.spacer.keepout import axis_of, limits_mm, lip_tip_mm
 from wavejig.spacer.model import BlockPiece, Carry, Layer
 from wavejig.spacer.profile import STEP_MM, Columns
 from wavejig.spacer.side import Hump, Side, highest_block, in_the_way, slack_across_mm, slack_along_mm
@@ -34,6 +35,8 @@ LIFT_PLAY_MM = 0.5  # beyond the wire before the piece is lifted
 RIM_ABOVE_CENTRE = 0.3  # rim's top above the wire's centre, in diameters: half a wire to clip down on
 LEAST_FLOOR_MM = 1.2  # plastic below the wire
 GRIP_MM = (24.0, 4.0, 10.0)  # length, thickness, height over the rim
+OVER_LIP_MM = 2.5  # of the grip, where the lip is taller: a hand and a hold-down reach over it
+MOST_GRIP_MM = 20.0  # a taller grip breaks off
 _HALF_MM = 0.5  # travels are told, and spines made, in these steps
 
 
@@ -210,6 +213,7 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         Layer(bottom_mm=seat, top_mm=rim_z, contour=profile.above(here, p.rim, p.v_out, s.frame, p.low)),
     ]
     length, thick, rise = GRIP_MM
+    rise = max(rise, min(MOST_GRIP_MM, lip_tip_mm(design, *axis_of(s.frame))[1] + OVER_LIP_MM - rim_z))
     # the flat top: beyond every rim, and beyond keep-outs that reach into the spine
     band_low, band_top = float(p.rim.max()), p.v_out
     if band_top - band_low >= thick + marks.LEAST_BAND_MM:
@@ -220,7 +224,9 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         grip = Contour.polygon(s.frame.world(corners))
         layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + rise, contour=grip))
     band = (start, end, band_low, band_top)
-    text, strokes = marks.piece_marks(name, design.name, r.standoff_mm, band, s.frame)
+    text, strokes = marks.piece_marks(
+        name, design.name, version_code(design), r.standoff_mm, band, s.frame
+    )
     return BlockPiece(
         name=name,
         withdrawal=s.frame.direction,

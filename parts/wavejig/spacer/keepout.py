@@ -160,6 +160,25 @@ def lip_at(design: Design, axis: str, sign: int) -> Lip | None:
     return next((lip for lip in design.reflector.lips if lip.edge == edge), None)
 
 
+def lip_tip_mm(design: Design, axis: str, sign: int) -> tuple[float, float]:
+    """How far out and how high the sheet reaches at an edge: its lip's outermost and highest, or the cut edge."""
+    sheet = design.reflector
+    half = (sheet.base_x_mm if axis == "x" else sheet.base_y_mm) / 2.0
+    lip = lip_at(design, axis, sign)
+    if lip is None:
+        return half, 0.0
+    turn, thick = math.radians(lip.angle_deg), sheet.thickness_mm
+    # its height is measured along the outer face, from where the outer faces would meet
+    top = lip.height_mm * math.sin(turn) + max(0.0, thick * math.cos(turn)) - thick
+    return half + max(0.0, lip.height_mm * math.cos(turn)), top
+
+
+def axis_of(frame: Frame) -> tuple[str, int]:
+    """Axis and sign of a frame's direction."""
+    dx, dy = frame.direction
+    return ("y" if dy else "x"), (1 if dx + dy > 0 else -1)
+
+
 def edge_room_mm(design: Design, at: Point2) -> float:
     """From a point of the base to the end of its flat, the nearest way."""
     own = design.reflector.own

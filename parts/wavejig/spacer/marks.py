@@ -1,4 +1,4 @@
-"""What is engraved into a spacer piece: its letter, the recipe's name, the standoff, the way out."""
+"""What is engraved into a spacer piece: its letter, the recipe's name and version, the standoff, the way out."""
 
 from __future__ import annotations
 
@@ -20,25 +20,31 @@ _ARROW = 0.9  # width of the arrow's box beside the first line, in text heights
 def piece_marks(
     piece_name: str,
     recipe_name: str,
+    version: str,
     standoff_mm: float,
     band: tuple[float, float, float, float],
     frame: Frame,
 ) -> tuple[str, tuple[Stroke, ...]]:
     """The text (lines apart by " / ") and its strokes in x, y, with an arrow along the pull.
 
-    band: u from, u to, v from, v to of the flat top. Of letter, name and standoff as much is written as
-    fits at a legible height, in one line or two; nothing where not even the letter fits.
+    band: u from, u to, v from, v to of the flat top. Of letter, name, version and standoff as much is
+    written as fits at a legible height, in one line or two; nothing where not even the letter fits.
     """
     u0, u1, v0, v1 = band
     letter = piece_name.rsplit("-", 1)[-1].upper()
     size = f"{round(standoff_mm, 2):g} mm"
     tall = v1 - v0 - 2.0 * EDGE_MM - LINE_MM
     room = u1 - u0 - 2.0 * EDGE_MM - LINE_MM
+    state = f"V{version}"
     for lines in (
-        (f"{letter} {recipe_name} {size}",),
-        (f"{letter} {size}", recipe_name),
-        (letter, size),
-        (f"{letter} {size}",),
+        (f"{letter} {recipe_name} {state} {size}",),
+        (f"{letter} {size} {state}", recipe_name),
+        (f"{letter} {size}", f"{recipe_name} {state}"),
+        (f"{letter} {recipe_name} {state}",),
+        (f"{letter} {size}", state),
+        (f"{letter} {size} {state}",),
+        (f"{letter} {state}",),
+        (letter, state),
         (letter,),
     ):
         gaps = (len(lines) - 1) * (LEADING_MM + LINE_MM)

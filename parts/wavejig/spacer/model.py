@@ -63,6 +63,37 @@ class BlockPiece:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class HoldDown:
+    """A printed clamp that presses one piece onto the sheet while it is soldered: a C pushed on over the edge.
+
+    name: of its shape, of which several pieces may each have one; withdrawal: unit vector it is pulled off
+    along, the piece's own; middle_mm: where it sits across that, u in the piece's frame; profile: its side
+    view in v (along the withdrawal) and z, as printed lying on its side, width_mm thick. edge_mm: v of the
+    sheet's outermost edge. press_mm: how much narrower its mouth is made than what it grips, so how far it
+    springs open; force_n: the push on the piece; strain, strain_limit: greatest in the plastic, and allowed.
+    off_mm: how far it is pulled to come free. text, marks: engraved into its side, in v and z.
+    """
+
+    name: str
+    piece: str
+    withdrawal: Point2
+    middle_mm: float
+    width_mm: float
+    profile: Contour
+    contact_mm: Point2
+    edge_mm: float
+    press_mm: float
+    force_n: float
+    strain: float
+    strain_limit: float
+    off_mm: float
+    text: str
+    marks: tuple[Stroke, ...]
+    marks_depth_mm: float
+    mark_width_mm: float
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Post:
     """A post that stays: a hexagon with a channel for the wire in its top and a screw hole from below.
 
@@ -90,6 +121,7 @@ class Spacer:
     clearance_mm: float
     standoff_mm: float
     pieces: tuple[BlockPiece, ...]
+    hold_downs: tuple[HoldDown, ...]
     posts: tuple[Post, ...]
     conflicts: tuple[Conflict, ...]
     notes: tuple[str, ...]

@@ -9,15 +9,16 @@ from types import MappingProxyType
 from wavejig.design.model import Conflict, Design, Point2
 from wavejig.radiator.model import Radiator
 from wavejig.spacer import block
+from wavejig.spacer.bed import fits_upright
+from wavejig.spacer.holddown import plan_hold_downs
 from wavejig.spacer.keepout import Wires, keepouts, loose_hardware, wires
-from wavejig.spacer.model import BlockPiece, Post, Spacer
+from wavejig.spacer.model import BlockPiece, HoldDown, Post, Spacer
 from wavejig.spacer.posts import plan_posts
 from wavejig.spacer.profile import Frame
 from wavejig.spacer.side import Hump, Side, look
 
 ACROSS_Y = ((0.0, 1.0), (0.0, -1.0))
 ACROSS_X = ((1.0, 0.0), (-1.0, 0.0))
-BED_MARGIN_MM = 5.0  # skirt and clips; common practice, no source
 # A side shift of more than this is worth telling: the eye places the wire better. Common practice.
 LOOSE_MM = 1.0
 _LOBES = MappingProxyType({"quad": 1, "biquad": 2, "double-biquad": 4, "twin-loop": 2, "path": 1})
@@ -44,6 +45,7 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
     sampled = wires(design, radiator)
     pieces: tuple[BlockPiece, ...] = ()
     posts: tuple[Post, ...] = ()
+    hold_downs: tuple[HoldDown, ...] = ()
     notes: tuple[str, ...] = ()
     if design.spacer.style == "posts":
         posts, conflicts = plan_posts(design, radiator, sampled)
@@ -56,6 +58,9 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
             if not still:
                 pieces, conflicts = other, still
         notes = (*_late_bolts(design, pieces), *_loose(pieces))
+        if not conflicts:
+            hold_downs, soft = plan_hold_downs(design, sampled, keepouts(design, radiator), pieces)
+            notes += soft
     if design.reflector.own is not None:  # it is there: nobody makes its base wider
         conflicts = tuple(
             replace(c, key="reflector.own", remedy="Take a larger dish, or use posts.")
@@ -69,6 +74,7 @@ def plan(design: Design, radiator: Radiator) -> Spacer:
         clearance_mm=design.printer.clearance_mm,
         standoff_mm=design.radiator.standoff_mm,
         pieces=pieces,
+        hold_downs=hold_downs,
         posts=posts,
         conflicts=conflicts,
         notes=notes,
@@ -135,12 +141,6 @@ def fits_bed(design: Design, piece: BlockPiece) -> bool:
     x, y, z = extent_mm(piece)
     flat = fits_upright(design, x, y) or fits_upright(design, y, x)
     return flat and z <= design.printer.bed_z_mm
-
-
-def fits_upright(design: Design, x_mm: float, y_mm: float) -> bool:
-    """Whether a part of this plan size lies on the bed without turning it, with the margin left free."""
-    room = (design.printer.bed_x_mm - 2.0 * BED_MARGIN_MM, design.printer.bed_y_mm - 2.0 * BED_MARGIN_MM)
-    return x_mm <= room[0] and y_mm <= room[1]
 
 
 def _late_bolts(design: Design, pieces: tuple[BlockPiece, ...]) -> list[str]:

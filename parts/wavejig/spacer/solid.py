@@ -15,9 +15,10 @@ from wavejig.geometry.engrave import engrave, prism
 from wavejig.geometry.plane import Contour
 from wavejig.geometry.region import Region, grooves
 from wavejig.radiator.model import Radiator
+from wavejig.spacer.bed import fits_upright
 from wavejig.spacer.model import BlockPiece, Post, Spacer
 from wavejig.spacer.outline import channelled
-from wavejig.spacer.plan import fits_upright
+from wavejig.spacer.profile import Frame
 
 
 class SpacerSolidError(ValueError):
@@ -48,6 +49,30 @@ def printables(design: Design, radiator: Radiator, spacer: Spacer) -> tuple[Prin
     made = [_on_bed(design, piece.name, _block_solid(piece)) for piece in spacer.pieces]
     made += [_on_bed(design, post.name, _post_solid(post)) for post in spacer.posts]
     return tuple(made)
+
+
+def hold_downs(design: Design, spacer: Spacer) -> tuple[Printable, ...]:
+    """The clamps in the order of `Spacer.hold_downs`, lying on their sides; those of one name are one shape."""
+    made: dict[str, cq.Solid] = {}
+    out = []
+    for h in spacer.hold_downs:
+        v0, z0, v1, z1 = h.profile.bounds()
+        turn = 0.0 if fits_upright(design, v1 - v0, z1 - z0) else 90.0
+        middle = cq.Location(cq.Vector((v0 + v1) / 2.0, (z0 + z1) / 2.0, 0.0))
+        lying = middle * cq.Location(cq.Vector(), cq.Vector(0, 0, 1), turn)
+        if h.name not in made:
+            flat = _prism(h.profile, 0.0, h.width_mm)
+            if h.marks:
+                cut = grooves(h.marks, h.mark_width_mm)
+                flat = engrave(flat, cut, h.width_mm - h.marks_depth_mm, h.width_mm)
+            made[h.name] = _checked(h.name, [flat]).moved(lying.inverse)
+        frame = Frame(direction=h.withdrawal)
+        (across,) = frame.world([(1.0, 0.0)])
+        (start,) = frame.world([(h.middle_mm - h.width_mm / 2.0, 0.0)])
+        # the side view's v runs along the withdrawal, its z up, so its thickness across: v x z = u
+        upright = cq.Plane(origin=(*start, 0.0), xDir=(*h.withdrawal, 0.0), normal=(*across, 0.0))
+        out.append(Printable(name=h.name, solid=made[h.name], placement=cq.Location(upright) * lying))
+    return tuple(out)
 
 
 def _block_solid(piece: BlockPiece) -> cq.Solid:
