@@ -113,8 +113,10 @@ def test_legs_are_soldered_in_the_right_order() -> None:
     order = [
         "Trial bend", "Lay the radiator in the check nest", "Fit the connector", "Screw a mating plug",
         "Set spacer-a and spacer-b",
-        "Lower the radiator", "Clip a heat sink", "Solder the ground leg in its hole in the sheet FIRST",
-        "Solder the pin leg to the pin", "take the spacer out", "Wash the flux off", "it reads as a SHORT",
+        "Lower the radiator", "push a hold-down over", "Clip a heat sink",
+        "Solder the ground leg in its hole in the sheet FIRST",
+        "Solder the pin leg to the pin", "pull the hold-downs straight out",
+        "take the spacer out", "Wash the flux off", "it reads as a SHORT",
         "Measure the match", "Seal:",
     ]  # fmt: skip
     places = [place(steps, needle) for needle in order]

@@ -56,7 +56,6 @@ def test_without_the_cluster_library_it_says_what_to_install(monkeypatch: pytest
         pass
 
 
-@pytest.mark.slow
 @pytest.mark.filterwarnings("ignore")  # the cluster's own: ports, event loops, closing
 def test_a_local_cluster_gives_the_same_numbers() -> None:
     distributed = pytest.importorskip("distributed")

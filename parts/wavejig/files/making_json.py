@@ -20,10 +20,12 @@ _COARSE = 3  # measured clearances: printed figures are coarser than the chords 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Made:
-    """What a build measures on the printed parts. prints: part, count, figures."""
+    """What a build measures on the printed parts. hold_downs_off: by spacer piece, least air to the wire while
+    its hold-down is pulled off; prints: part, count, figures."""
 
     lift_outs: tuple[LiftOut, ...]
     withdrawals: tuple[Withdrawal, ...]
+    hold_downs_off: dict[str, float]
     posts: PostEffect | None
     prints: tuple[tuple[str, int, Printability], ...]
 
@@ -134,6 +136,19 @@ def spacer_data(spacer: Spacer, made: Made) -> dict[str, Any]:
                 **_way(ways.get(p.name)),
             }
             for p in spacer.pieces
+        ],
+        "hold_downs": [
+            {
+                "name": h.name,
+                "piece": h.piece,
+                "press": _c(h.press_mm),
+                "force_n": _c(h.force_n),
+                "strain": round(h.strain, 5),
+                "allowed_strain": round(h.strain_limit, 5),
+                "off": _c(h.off_mm),
+                "least_to_wire": _c(made.hold_downs_off[h.piece]),
+            }
+            for h in spacer.hold_downs
         ],
         "posts": [
             {"name": p.name, "at": [_n(p.hole.x_mm), _n(p.hole.y_mm)], "screw": p.screw} for p in spacer.posts

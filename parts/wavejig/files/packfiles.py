@@ -6,6 +6,7 @@ written stops the build.
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Callable, Iterable, Iterator
 from dataclasses import dataclass, replace
 from pathlib import Path
@@ -50,8 +51,9 @@ from wavejig.shop.bending import order_findings
 from wavejig.shop.finding import Finding
 from wavejig.shop.ways import way_findings
 from wavejig.spacer.effect import post_effect
+from wavejig.spacer.solid import hold_downs as spacer_hold_downs
 from wavejig.spacer.solid import printables as spacer_printables
-from wavejig.spacer.withdraw import withdrawals
+from wavejig.spacer.withdraw import hold_downs_off_mm, withdrawals
 
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction
@@ -228,6 +230,11 @@ class PackFiles:
         for part in spacer_printables(self.design, self.radiator, self.spacer):
             self._printable(part.name, part.solid, "spacer")
             self.assembly.append(NamedSolid(name=part.name, shape=part.placed(), colour=_PLASTIC))
+        # drawn as they are made, not sprung open, so they are not part of the assembly
+        shapes = {part.name: part for part in spacer_hold_downs(self.design, self.spacer)}
+        counts = Counter(h.name for h in self.spacer.hold_downs)
+        for name, part in shapes.items():
+            self._printable(name, part.solid, "spacer", counts[name], shown=True)
 
     def write_fixture(self) -> None:
         """The bending fixture and the check nest, a file a printed piece."""
@@ -289,6 +296,7 @@ class PackFiles:
         made = Made(
             lift_outs=lift_outs(self.design, self.radiator, self.fixture),
             withdrawals=withdrawals(self.design, self.radiator, self.spacer),
+            hold_downs_off=hold_downs_off_mm(self.design, self.radiator, self.spacer),
             posts=post_effect(self.design, self.radiator, self.spacer.posts),
             prints=tuple(self.prints),
         )
@@ -323,14 +331,16 @@ class PackFiles:
 
     # -- files --------------------------------------------------------------------------------------
 
-    def _printable(self, name: str, shape: Any, part: str, count: int = 1) -> None:
+    def _printable(
+        self, name: str, shape: Any, part: str, count: int = 1, *, shown: bool = False
+    ) -> None:
         """STEP, STL and 3MF of one printed piece, which must print without support on the given bed."""
         self._step([NamedSolid(name=name, shape=shape, colour=_PLASTIC)], f"{part}/{name}.step", part)
         mesh, figures = tessellate(shape, name=name), measure(shape)
         printer = self.design.printer
         bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
         self.prints.append((part, count, require_printable(mesh, bed, BED_MARGIN_MM)))
-        if part != "spacer":  # which is shown in its place in the assembly
+        if shown or part != "spacer":  # whose pieces are shown in their places in the assembly
             self.pictured.append((ColouredMesh(mesh=mesh, colour=_PLASTIC), part))
         self._for_batch(name, part, count, mesh, figures)
         title = f"{self.design.name} {name}"

@@ -56,6 +56,30 @@ def _spacer_on(design: Design, spacer: Spacer) -> str:
     )
 
 
+def _held_down(spacer: Spacer) -> Iterator[str]:
+    """Once the wire lies on the block's pieces: what keeps them where they are."""
+    if spacer.style == "posts":
+        return
+    held = {h.piece: h for h in spacer.hold_downs}
+    if held:
+        force = max(h.force_n for h in spacer.hold_downs)
+        pushed = "; ".join(
+            f"{h.name} from {_way(h.withdrawal)} onto {piece}, until it stops at the edge"
+            for piece, h in held.items()
+        )
+        yield (
+            "Slide the pieces in until their rims meet the wire, then push a hold-down over the sheet's edge "
+            f"onto each, jaw under the sheet: {pushed}. Each presses with some {number(force, 0)} N; the sheet "
+            "must stand with its edges free underneath."
+        )
+    loose = [p.name for p in spacer.pieces if p.name not in held]
+    if loose:
+        yield (
+            f"Slide {' and '.join(loose)} in until the rims meet the wire and hold them down with tape or a "
+            "weight, clear of the joints."
+        )
+
+
 def _spacer_off(spacer: Spacer) -> str:
     if spacer.style == "posts":
         return (
@@ -65,7 +89,8 @@ def _spacer_off(spacer: Spacer) -> str:
     moves = "; ".join(
         f"{p.name} along {_way(p.withdrawal)} {number(p.travel_mm, 1)} mm, then up" for p in spacer.pieces
     )
-    return f"Let everything go cold, then take the spacer out: {moves}. Do not lever on the wire."
+    off = "pull the hold-downs straight out over the edges, " if spacer.hold_downs else ""
+    return f"Let everything go cold, {off}then take the spacer out: {moves}. Do not lever on the wire."
 
 
 def _way(direction: tuple[float, float]) -> str:
@@ -146,6 +171,7 @@ def leg_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: Fixtu
         )
         + ". The pin's side is y+, up in the drawings."
     )
+    yield from _held_down(spacer)
     yield _clip(spacer)
     if feed.ground == "sheet":
         yield (
@@ -191,6 +217,7 @@ def tube_steps(design: Design, radiator: Radiator, spacer: Spacer) -> Iterator[s
     yield (
         "Lower the radiator onto the spacer: the ground side's corner lies across the end of the tube's wall."
     )
+    yield from _held_down(spacer)
     yield _clip(spacer)
     yield "Solder the wire to the tube's wall along its outside. No solder into the tube's open end."
     hook = next((j for j in radiator.joints if j.kind == "hook"), None)

@@ -98,6 +98,8 @@ def tools(design: Design, fixture: Fixture, spacer: Spacer) -> Rows:
         sets = spacer_sets(design)
         many = f", {sets} sets" if sets > 1 else ""
         rows.append((f"spacer: {names}{many}", plastic, f"{sets * len(spacer.pieces)}"))
+        for name, count in Counter(h.name for h in spacer.hold_downs).items():
+            rows.append((f"{name}, presses the spacer on while soldering", plastic, f"{sets * count}"))
     else:
         rows.append(("spacer posts (they stay)", plastic, f"{design.quantity * len(spacer.posts)}"))
     for (diameter, turned), count in sorted(fixture_pins(design, fixture).items()):

@@ -224,9 +224,7 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         grip = Contour.polygon(s.frame.world(corners))
         layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + rise, contour=grip))
     band = (start, end, band_low, band_top)
-    text, strokes = marks.piece_marks(
-        name, design.name, version_code(design), r.standoff_mm, band, s.frame
-    )
+    text, strokes = marks.piece_marks(name, design.name, version_code(design), r.standoff_mm, band, s.frame)
     return BlockPiece(
         name=name,
         withdrawal=s.frame.direction,

@@ -40,10 +40,13 @@ from wavejig.stock.processes import plastic
 WIDTH_MM = 10.0
 FORCE_N = 8.0  # wanted on each piece: many times the radiator's weight, and no effort to pull off
 MOST_FORCE_N = 30.0
-PRESS_MM = (0.8, 2.5)  # a mouth that springs less is lost in the printer's error; one that springs more is slow
+PRESS_MM = (
+    0.8,
+    2.5,
+)  # a mouth that springs less is lost in the printer's error; one that springs more is slow
 DEPTHS_MM = tuple(4.5 + 0.5 * k for k in range(24))  # of arm, back and jaw in side view
 LEAST_SPRING_MM = 20.0  # arm: shorter ones are too stiff
-MOST_REACH_MM = 150.0
+MOST_REACH_MM = 120.0  # longer ones are soft, and in the way
 STRAIN_SHARE = 0.5  # of what the plastic may take: inner corners are sharp
 WEDGE_DEG = 8.0  # underside over the grip; below the angle of friction, so it stays where it is pushed to
 LEAD_DEG = 30.0
@@ -97,7 +100,9 @@ def plan_hold_downs(
     shapes = list(dict.fromkeys(_shape(h) for h in made))
     number = {shape: f"-{k}" if len(shapes) > 1 else "" for k, shape in enumerate(shapes, start=1)}
     named = tuple(replace(h, name=f"hold-down{number[_shape(h)]}") for h in made)
-    notes = tuple(f"{', '.join(who)} can have no printed hold-down: {why}. {SOFT_WAY}" for why, who in without.items())
+    notes = tuple(
+        f"{', '.join(who)} can have no printed hold-down: {why}. {SOFT_WAY}" for why, who in without.items()
+    )
     return named, notes
 
 
@@ -197,7 +202,9 @@ def _spring(design: Design, g: _Grip) -> _Spring | str:
     wedge = math.tan(math.radians(WEDGE_DEG)) * BEFORE_MM
     most = min(PRESS_MM[1], g.height - g.lip_top - LIP_PLAY_MM - wedge)
     if most < PRESS_MM[0]:
-        return f"the lip ends {g.height - g.lip_top:.1f} mm below the grip's top and the arm must pass over it"
+        return (
+            f"the lip ends {g.height - g.lip_top:.1f} mm below the grip's top and the arm must pass over it"
+        )
     width = min(WIDTH_MM, g.high_u - g.low_u)
     e = plastic(design.spacer.plastic).youngs_modulus_gpa * 1000.0
     for h in DEPTHS_MM:
@@ -245,7 +252,12 @@ def _profile(design: Design, g: _Grip, s: _Spring) -> Contour:
 
 
 def _place(
-    design: Design, sampled: Wires, discs: Sequence[Keepout], g: _Grip, reach: tuple[float, float], width: float
+    design: Design,
+    sampled: Wires,
+    discs: Sequence[Keepout],
+    g: _Grip,
+    reach: tuple[float, float],
+    width: float,
 ) -> float | None:
     """u of its middle: the grip's own, or the nearest to it with nothing in the way above or below the sheet."""
     spots = [(d.x_mm, d.y_mm, d.radius_mm) for d in discs]

@@ -41,6 +41,7 @@ def piece_marks(
         (f"{letter} {size} {state}", recipe_name),
         (f"{letter} {size}", f"{recipe_name} {state}"),
         (f"{letter} {recipe_name} {state}",),
+        (f"{letter} {state}", recipe_name),
         (f"{letter} {size}", state),
         (f"{letter} {size} {state}",),
         (f"{letter} {state}",),

@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 import shapely
@@ -17,10 +18,12 @@ from wavejig.geometry.prisms import Prism, clearances_mm, contour_polygon
 from wavejig.radiator.model import Radiator
 from wavejig.spacer.keepout import HARDWARE_PLAY_MM, hardware_radius_mm, wires
 from wavejig.spacer.model import BlockPiece, Spacer
+from wavejig.spacer.profile import Frame
 
 STEP_MM = 0.5
 LIFTS = 12
 MOST_STEPS = 48
+SLICES = 24
 _NEAR_MM = 6.0
 TOUCH_MM = 0.01  # the wire rests on the piece; outlines are smoothed by this
 
@@ -105,6 +108,34 @@ def _withdraw(design: Design, piece: BlockPiece, points: np.ndarray, radius_mm: 
         carries=len(piece.carries),
         standoff_off_mm=abs(seat - design.radiator.standoff_mm),
     )
+
+
+def hold_downs_off_mm(design: Design, radiator: Radiator, spacer: Spacer) -> dict[str, float]:
+    """Least air to any wire of each piece's hold-down while it is pulled off straight out; by the piece's name.
+
+    Its side view is cut into slices of even height, each as long as the view is anywhere in that slice.
+    """
+    sampled = wires(design, radiator)
+    out = {}
+    for h in spacer.hold_downs:
+        frame = Frame(direction=h.withdrawal)
+        side = contour_polygon(h.profile)
+        v0, z0, v1, z1 = side.bounds
+        prisms = []
+        levels = np.linspace(z0, z1, SLICES + 1)
+        u0, u1 = h.middle_mm - h.width_mm / 2.0, h.middle_mm + h.width_mm / 2.0
+        for low, high in pairwise(levels):
+            band = side.intersection(shapely.box(v0 - 1.0, low, v1 + 1.0, high))
+            for part in getattr(band, "geoms", [band]):
+                if isinstance(part, shapely.Polygon):
+                    a, _, b, _ = part.bounds
+                    plan = shapely.Polygon(frame.world([(u0, a), (u1, a), (u1, b), (u0, b)]))
+                    prisms.append(Prism(plan=plan, bottom_mm=low, top_mm=high))
+        dx, dy = h.withdrawal
+        pulls = np.linspace(0.0, h.off_mm, max(2, math.ceil(h.off_mm / (4.0 * STEP_MM))))
+        moves = np.column_stack([-pulls * dx, -pulls * dy, np.zeros(len(pulls))])
+        out[h.piece] = float(clearances_mm(sampled.points, sampled.radius_mm, prisms, moves).min())
+    return out
 
 
 def _hardware(design: Design) -> list[tuple[float, float, float]]:
