@@ -57,6 +57,7 @@ def test_a_slicer_prints_the_other_demos_too(stem: str, tmp_path: Path) -> None:
     from wavejig.files.stl import write_stl
     from wavejig.fixture.solid import printables as fixture_printables
     from wavejig.pack import inspect_recipe
+    from wavejig.spacer.solid import hold_downs
     from wavejig.spacer.solid import printables as spacer_printables
 
     _, found = inspect_recipe(Path(__file__).parents[1] / "recipes" / f"{stem}.toml")
@@ -64,6 +65,7 @@ def test_a_slicer_prints_the_other_demos_too(stem: str, tmp_path: Path) -> None:
     pieces = [
         *fixture_printables(found.fixture),
         *spacer_printables(found.design, found.radiator, found.spacer),
+        *{part.name: part for part in hold_downs(found.design, found.spacer)}.values(),
     ]
     for piece in pieces:
         path = tmp_path / f"{piece.name}.stl"

@@ -148,6 +148,7 @@ def test_every_demo_recipe_has_them_or_says_why_not(path: Path) -> None:
     told = " ".join(n for n in spacer.notes if SOFT_WAY in n)
     for piece in spacer.pieces:
         assert (piece.name in held) != (piece.name in told)
+        assert f"V{version_code(design)}" in piece.text and piece.marks
     off = hold_downs_off_mm(design, radiator, spacer)
     for h in spacer.hold_downs:
         assert off[h.piece] >= 0.9

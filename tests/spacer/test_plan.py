@@ -506,24 +506,30 @@ def test_planning_loads_no_kernel() -> None:
 def test_engraving_says_as_much_as_fits() -> None:
     frame = Frame(direction=(0.0, 1.0))
 
-    def text(wide: float, tall: float) -> str:
-        said, strokes = piece_marks("spacer-a", "saltmarsh-2g4", "1A2B", 15.35, (0.0, wide, 0.0, tall), frame)
+    def text(wide: float, tall: float, nozzle: float = 0.4) -> str:
+        said, strokes = piece_marks(
+            "spacer-a", "saltmarsh-2g4", "1A2B", 15.35, (0.0, wide, 0.0, tall), frame, nozzle
+        )
         assert bool(said) == bool(strokes)
         return said
 
     assert text(90.0, 6.0) == "A saltmarsh-2g4 V1A2B 15.35 mm"
-    assert text(38.0, 9.0) == "A 15.35 mm V1A2B / saltmarsh-2g4"
+    assert text(41.5, 9.0) == "A 15.35 mm V1A2B / saltmarsh-2g4"
+    assert text(36.0, 9.0) == "A V1A2B / saltmarsh-2g4"
     assert text(27.0, 9.0) == "A 15.35 mm / V1A2B"
-    assert text(38.0, 5.0) == "A 15.35 mm V1A2B"
+    assert text(41.5, 5.0) == "A 15.35 mm V1A2B"
     assert text(22.0, 5.0) == "A V1A2B"
     assert text(14.0, 9.0) == "A / V1A2B"
+    assert text(13.8, 7.5) == "A" and text(13.8, 7.5, 0.25) == "A / V1A2B"
     assert text(9.0, 5.0) == "A"
     assert text(9.0, 4.0) == ""
 
 
 @pytest.mark.parametrize("direction", [(0.0, 1.0), (0.0, -1.0), (1.0, 0.0), (-1.0, 0.0)])
 def test_the_arrow_points_the_way_out(direction: tuple[float, float]) -> None:
-    _, strokes = piece_marks("spacer-a", "x", "1A2B", 15.0, (0.0, 60.0, 0.0, 8.0), Frame(direction=direction))
+    _, strokes = piece_marks(
+        "spacer-a", "x", "1A2B", 15.0, (0.0, 60.0, 0.0, 8.0), Frame(direction=direction), 0.4
+    )
     shaft, head = strokes[-2].points, strokes[-1].points
     along = np.subtract(shaft[1], shaft[0])
     assert along / np.linalg.norm(along) == pytest.approx(direction)

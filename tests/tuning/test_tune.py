@@ -154,6 +154,6 @@ def test_every_demo_recipe_meets_its_target_on_a_finer_mesh_too(path: Path) -> N
         assert answer.solves <= 40
         design = tuned_design(recipe, answer.values)
     coarse = in_band_worst(design)
-    fine = in_band_worst(design, 2.0)
-    assert min(coarse, fine) >= design.target.return_loss_db
-    assert abs(coarse - fine) < 0.5
+    assert min(coarse, in_band_worst(design, 2.0)) >= design.target.return_loss_db
+    for refine in (1.1, 1.25):  # every node elsewhere
+        assert in_band_worst(design, refine) == pytest.approx(coarse, abs=0.5)
