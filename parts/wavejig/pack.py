@@ -113,7 +113,12 @@ def build(
         from wavejig.sheets.sheetfiles import write_sheets
 
         files.entries += write_sheets(
-            files.inspection, files.pattern, stage, prediction=files.prediction, batch=files.batch
+            files.inspection,
+            files.pattern,
+            stage,
+            prediction=files.prediction,
+            order=files.bend_order,
+            batch=files.batch,
         )
         progress("report")
         from wavejig.sheets.report.frompack import write_pack_report

@@ -14,6 +14,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from wavejig.fixture.bending.model import BLOCK, BendOrder, BendStep
+from wavejig.fixture.bending.scene import CLAMP, STOP
 from wavejig.fixture.model import Fixture, Station
 from wavejig.geometry.path import PathBend, path_from_bends
 from wavejig.geometry.plane import Circle, Contour
@@ -23,6 +24,7 @@ from wavejig.sheets.laid import laid
 from wavejig.sheets.model import SMALL_TEXT_MM, Arrow, Item, Line, Pen, Ring, Shape, Text, number
 from wavejig.sheets.project import outlines_of
 
+_TURNED = np.array([-1.0, 1.0, -1.0])
 _BLOCK_SHOWN_MM = 16.0  # how much straight wire a block's picture shows on either side
 
 
@@ -76,6 +78,8 @@ def _board_frame(
     from_end = step is not None and step.held == "end"
     now = laid(piece, {*before, bend.number}, bend.number, from_end=from_end)
     was = laid(piece, set(before), bend.number, from_end=from_end)
+    if fixture.face_down:  # the radiator lies turned over about the y axis, as the board is drawn
+        now, was = now * _TURNED[: now.shape[1]], was * _TURNED[: was.shape[1]]
     x0, y0, x1, y1 = fixture.board.outline.bounds()
     items: list[Item] = [Shape(contour=fixture.board.outline, pen="grey")]
     for s in fixture.stations:
@@ -115,7 +119,7 @@ def _board_frame(
         text.append(f"Begins {number(bend.from_start_mm, 1)} mm from the start.")
     return Frame(
         title=title, text=" ".join(t for t in text if t), items=tuple(_cut_off(items, clip)), box=clip,
-        seen="from above the board",
+        seen="from above the board, the radiator face down" if fixture.face_down else "from above the board",
     )  # fmt: skip
 
 
@@ -127,8 +131,12 @@ def _located(step: BendStep) -> str:
     return "Formed bend in its place."
 
 
-def _many(pins: tuple[int, ...]) -> str:
-    return ("pins " if len(pins) > 1 else "pin ") + ", ".join(str(p) for p in pins)
+def _many(labels: tuple[int, ...]) -> str:
+    """Pins by number; labels below 1 are the stop and the clamp."""
+    pins = [str(p) for p in labels if p > 0]
+    named = [word for label, word in ((STOP, "the stop"), (CLAMP, "the clamp")) if label in labels]
+    numbered = [("pins " if len(pins) > 1 else "pin ") + ", ".join(pins)] if pins else []
+    return " and ".join(numbered + named)
 
 
 def _wire(points: np.ndarray, diameter: float, pen: Pen) -> Iterator[Item]:
