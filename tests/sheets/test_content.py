@@ -13,6 +13,7 @@ from pypdf import PdfReader
 
 from tests.designs import design
 from tests.sheets.conftest import DEMOS, inspected, pattern_of
+from wavejig.batch.plates import spacer_sets
 from wavejig.fixture.bending.model import BendOrder, BendStep, PieceOrder
 from wavejig.sheets import bending, checks, lists
 from wavejig.sheets.buildsheet import BuildSheet, write_build_sheet
@@ -160,6 +161,15 @@ def test_enamel_is_scraped_only_where_there_is_some() -> None:
 
     assert "Scrape" in wire(insulation="enamel", insulation_thickness="0.04 mm")
     assert "Scrape" not in wire()
+
+
+def test_hold_downs_are_listed_for_every_set_and_tape_where_there_are_none() -> None:
+    made = inspected("saltmarsh-2g4")
+    assert made.fixture and made.spacer
+    (row,) = [r for r in lists.tools(made.design, made.fixture, made.spacer) if r[0].startswith("hold-down")]
+    assert row[2] == str(2 * spacer_sets(made.design))
+    dish = " ".join(steps_of(inspected("landing-2g4-own")))
+    assert "tape or a weight" in dish and "hold-down" not in dish
 
 
 def test_posts_stay_and_blocks_leave() -> None:

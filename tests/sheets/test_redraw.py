@@ -210,4 +210,4 @@ def test_the_nest_is_the_mirror_image_and_says_so(written: Callable[[str], Path]
     (nest,) = [t for t in texts if t.startswith("CHECK NEST")]
     assert "face DOWN" in nest and "mirror image" in nest
     (board,) = [t for t in texts if t.startswith("BENDING BOARD")]
-    assert "as the antenna from its radiator side" in board
+    assert "radiator face DOWN, legs up (mirror image)" in board

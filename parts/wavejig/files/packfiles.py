@@ -331,9 +331,7 @@ class PackFiles:
 
     # -- files --------------------------------------------------------------------------------------
 
-    def _printable(
-        self, name: str, shape: Any, part: str, count: int = 1, *, shown: bool = False
-    ) -> None:
+    def _printable(self, name: str, shape: Any, part: str, count: int = 1, *, shown: bool = False) -> None:
         """STEP, STL and 3MF of one printed piece, which must print without support on the given bed."""
         self._step([NamedSolid(name=name, shape=shape, colour=_PLASTIC)], f"{part}/{name}.step", part)
         mesh, figures = tessellate(shape, name=name), measure(shape)

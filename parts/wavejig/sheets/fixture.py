@@ -52,7 +52,8 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
     board_at = (centre - (board[0] + board[2]) / 2.0 * scale, board_base - board[1] * scale)
     views = [
         View(
-            title="BENDING BOARD: seen from above (as the antenna from its radiator side)",
+            title="BENDING BOARD: seen from above, "
+            + ("radiator face DOWN, legs up (mirror image)" if fixture.face_down else "radiator face up"),
             items=tuple(_board(fixture, scale)),
             at=board_at,
             scale=scale,
@@ -73,8 +74,8 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
         views=tuple(views),
         tables=tuple(_tables(fixture, radiator, left, y1)),
         notes=(
-            "Bend in the order of the table. Put in only the pins the wire has reached: a later pin is "
-            "in the way.",
+            "Bend in the order of fixture/steps.svg and the build sheet. Put in only the pins the wire has "
+            "reached: a later pin is in the way.",
             "Pull the wire round until its inner edge reaches the tick (loaded angle), let go, compare "
             "in the nest.",
             "Wire ends spring: wear eye protection.",

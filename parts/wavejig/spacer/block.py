@@ -224,7 +224,9 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         grip = Contour.polygon(s.frame.world(corners))
         layers.append(Layer(bottom_mm=rim_z, top_mm=rim_z + rise, contour=grip))
     band = (start, end, band_low, band_top)
-    text, strokes = marks.piece_marks(name, design.name, version_code(design), r.standoff_mm, band, s.frame)
+    text, strokes = marks.piece_marks(
+        name, design.name, version_code(design), r.standoff_mm, band, s.frame, design.printer.nozzle_mm
+    )
     return BlockPiece(
         name=name,
         withdrawal=s.frame.direction,
@@ -239,7 +241,7 @@ def _draw(design: Design, s: Side, humps: tuple[Hump, ...], name: str, p: _Plan,
         marks=strokes,
         marks_z_mm=rim_z,
         marks_depth_mm=min(marks.DEPTH_MM, (rim_z - seat) / 2.0),
-        mark_width_mm=max(marks.LINE_MM, 1.25 * design.printer.nozzle_mm),
+        mark_width_mm=marks.line_mm(design.printer.nozzle_mm),
     )
 
 

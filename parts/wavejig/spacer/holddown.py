@@ -146,7 +146,7 @@ def _plan(design: Design, sampled: Wires, discs: Sequence[Keepout], piece: Block
         text=text,
         marks=lines,
         marks_depth_mm=marks.DEPTH_MM,
-        mark_width_mm=max(marks.LINE_MM, 1.25 * design.printer.nozzle_mm),
+        mark_width_mm=marks.line_mm(design.printer.nozzle_mm),
     )
 
 
@@ -288,15 +288,16 @@ def _place(
 
 def _marks(design: Design, g: _Grip, s: _Spring) -> tuple[str, tuple[Stroke, ...]]:
     """Name and version along the arm's side, as much as fits."""
-    line = max(marks.LINE_MM, 1.25 * design.printer.nozzle_mm)
+    line = marks.line_mm(design.printer.nozzle_mm)
+    least = marks.least_text_mm(design.printer.nozzle_mm)
     low = g.height - s.press
     v0, v1 = g.back + BEFORE_MM, g.spine + s.depth
     height = min(marks.MOST_TEXT_MM, s.depth - 2.0 * marks.EDGE_MM - line)
     state = f"V{version_code(design)}"
     for text in (f"{design.name} {state}", state):
-        for size in (height, marks.LEAST_TEXT_MM):
+        for size in (height, least):
             wide = text_width_mm(text, size) + 2.0 * marks.EDGE_MM + line
-            if marks.LEAST_TEXT_MM - 1e-9 <= size <= height + 1e-9 and wide <= v1 - v0:
+            if least - 1e-9 <= size <= height + 1e-9 and wide <= v1 - v0:
                 middle = low - BEFORE_MM * math.tan(math.radians(WEDGE_DEG)) + s.depth / 2.0
                 return text, strokes(text, size, x_mm=(v0 + v1) / 2.0, y_mm=middle, align="centre")
     return "", ()
