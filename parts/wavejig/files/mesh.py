@@ -16,6 +16,11 @@ from OCP.BRepBuilderAPI import BRepBuilderAPI_Copy
 from OCP.BRepGProp import BRepGProp
 from OCP.BRepMesh import BRepMesh_IncrementalMesh
 from OCP.GProp import GProp_GProps
+from OCP.IMeshTools import (
+    IMeshTools_MeshAlgoType_Delabella,
+    IMeshTools_MeshAlgoType_Watson,
+    IMeshTools_Parameters,
+)
 from OCP.TopAbs import TopAbs_FACE, TopAbs_REVERSED
 from OCP.TopExp import TopExp_Explorer
 from OCP.TopLoc import TopLoc_Location
@@ -29,6 +34,7 @@ ANGLE_DEG = 12.0  # common practice, no source: thin wires stay round to the eye
 # Corners nearer than this in x, y and z are one corner. It is below the step of a 32-bit float at 200 mm, the
 # best an STL file can hold, and above the kernel's own noise.
 WELD_MM = 1e-5
+_USUAL, _OTHER = IMeshTools_MeshAlgoType_Watson, IMeshTools_MeshAlgoType_Delabella
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -119,8 +125,22 @@ def tessellate(
             f"{name}: got a chord error of {chord_error_mm} mm and {angle_deg} deg, need more than 0 mm "
             "and an angle up to 90 deg."
         )
+    try:
+        return Mesh(name=name, **_weld(*_triangles(shape, name, chord_error_mm, angle_deg, _USUAL)))
+    except MeshError:
+        # the usual algorithm now and then leaves a piece of a large flat face with many holes unfilled
+        return Mesh(name=name, **_weld(*_triangles(shape, name, chord_error_mm, angle_deg, _OTHER)))
+
+
+def _triangles(
+    shape: Any, name: str, chord_error_mm: float, angle_deg: float, algorithm: Any
+) -> tuple[np.ndarray, np.ndarray]:
+    """Corners (n, 3) and triangles (m, 3) of all faces, not welded yet."""
     copy = BRepBuilderAPI_Copy(shape.wrapped, True, False).Shape()
-    BRepMesh_IncrementalMesh(copy, chord_error_mm, False, float(np.radians(angle_deg)), False)
+    parameters = IMeshTools_Parameters()
+    parameters.Deflection, parameters.Angle = chord_error_mm, float(np.radians(angle_deg))
+    parameters.Relative, parameters.InParallel, parameters.MeshAlgo = False, False, algorithm
+    BRepMesh_IncrementalMesh(copy, parameters)
     vertices: list[np.ndarray] = []
     faces: list[np.ndarray] = []
     count = 0
@@ -133,7 +153,7 @@ def tessellate(
         explorer.Next()
     if not vertices:
         raise MeshError(f"{name}: got a shape without faces, need a solid.")
-    return Mesh(name=name, **_weld(np.vstack(vertices), np.vstack(faces)))
+    return np.vstack(vertices), np.vstack(faces)
 
 
 def measure(shape: Any) -> Measure:
