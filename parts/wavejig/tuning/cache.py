@@ -1,9 +1,12 @@
 """Tuned answers kept on disk, so that a second build of the same recipe pays nothing.
 
-The key is a hash of everything the answer depends on: every number of the recipe but its name and
-quantity, the aim and the grid, this package's own sources and tables, and the versions of the libraries
-that compute. A changed wire, table or solver therefore never meets an old answer. A file that cannot be
-read, or was cut short, counts as absent.
+The key is a hash of everything the answer depends on: the recipe but for what is listed below, the aim and
+the grid, this package's own sources and tables, and the versions of the libraries that compute. A changed
+wire, table or solver therefore never meets an old answer. A file that cannot be read, or was cut short,
+counts as absent.
+
+What is left out reaches neither a model nor a shop finding that can refuse a design; the tests look
+at each. Whatever may refuse one (a printer's bed, a spool that is too short) counts.
 """
 
 from __future__ import annotations
@@ -21,7 +24,13 @@ from pathlib import Path
 from wavejig.recipe.models import Recipe
 
 LIBRARIES = ("numpy", "scipy", "numba")
-_NOT_PHYSICS = {"name", "quantity", "wire_stock", "prices"}
+# Tables that a tuned answer does not follow from: lettering, paper, mast and money.
+NOT_PHYSICS = {"name", "quantity", "station", "sheet", "prices"}
+# Tolerances that only yield and measurements look at.
+NOT_TOLERANCES = {
+    "distribution", "feed_gap", "wire", "bend_radius", "base", "lip_height", "lip_angle", "leg_spacing",
+    "permittivity", "model",
+}  # fmt: skip
 
 
 def cache_folder() -> Path:
@@ -40,8 +49,13 @@ def cache_folder() -> Path:
 
 def key(recipe: Recipe, aim: str, grid_mm: float) -> str:
     """Hash of all that a tuned answer depends on."""
-    asked = recipe.model_dump(mode="json", exclude=_NOT_PHYSICS | {"measured"})
+    asked = recipe.model_dump(mode="json", exclude=NOT_PHYSICS | {"measured"})
+    for name in NOT_TOLERANCES:
+        del asked["tolerances"][name]
+    del asked["spacer"]["sets"]
     asked["measured.frequency"] = recipe.measured.frequency
+    if all(value == "auto" for name, value in asked["wire_stock"].items() if name.endswith("length")):
+        del asked["wire_stock"]  # lengths that are long enough for everything refuse nothing
     told = json.dumps([asked, aim, grid_mm, _program()], sort_keys=True)
     return hashlib.sha256(told.encode()).hexdigest()[:32]
 
