@@ -1,56 +1,28 @@
 """Quantities as strings with units: "2.44 GHz", "31 mm", "1 1/2 in", "13 AWG", "20 gauge".
 
-Units are converted by pint, from the few definitions below (its own registry takes longer to load
-than a whole `wavejig check`). Results are plain floats in Hz, mm, deg, ohm, dB, W; gauges stay
-gauges, since their tables live in `stock`.
+Two dozen spellings are a table of factors here: a units library takes as long to load as half of the rest
+of `wavejig check`. Results are plain floats in Hz, mm, deg, ohm, dB, W, m/s; gauges stay gauges, since their
+tables live in `stock`.
+
+Factors are exact by definition: the inch is 25.4 mm, the mile 63360 of them (international yard and pound
+agreement, 1959); the nautical mile is 1852 m; SI prefixes.
 """
 
 from __future__ import annotations
 
-import functools
 import math
 import re
 from dataclasses import dataclass
-from typing import TYPE_CHECKING
 
 from wavejig.recipe.errors import nearest, show
-
-if TYPE_CHECKING:
-    import pint
-
-# Exact by definition: the inch is 25.4 mm, the mile 63360 of them (international yard and pound agreement,
-# 1959); the nautical mile is 1852 m; SI prefixes.
-_DEFINITIONS = (
-    "metre = [length] = m",
-    "second = [time] = s",
-    "radian = [] = rad",
-    "ohm = [resistance]",
-    "watt = [power] = W",
-    "decibel = [level] = dB",
-    "hertz = 1 / second = Hz",
-    "kilohertz = 1e3 * hertz = kHz",
-    "megahertz = 1e6 * hertz = MHz",
-    "gigahertz = 1e9 * hertz = GHz",
-    "millimetre = 1e-3 * metre = mm",
-    "micrometre = 1e-6 * metre = um",
-    "centimetre = 1e-2 * metre = cm",
-    "inch = 25.4e-3 * metre",
-    "degree = 0.017453292519943295 * radian = deg",
-    "milliwatt = 1e-3 * watt = mW",
-    "metre_per_second = metre / second",
-    "kilometre_per_hour = metre / second / 3.6",
-    "mile_per_hour = 0.44704 * metre / second",
-    "knot = 1852 / 3600 * metre / second",
-)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Kind:
-    """A kind of quantity: the unit it is kept in, the spellings a recipe may use, an example."""
+    """A kind of quantity: the spellings a recipe may use, the first of them the unit it is kept in; an example."""
 
     name: str
-    base: str
-    spellings: tuple[tuple[str, str], ...]  # as written in a recipe -> pint name
+    spellings: tuple[tuple[str, float], ...]  # as written in a recipe, and how many of the unit it is kept in
     example: str
 
     def allowed(self) -> str:
@@ -60,42 +32,29 @@ class Kind:
 
 LENGTH = Kind(
     name="length",
-    base="millimetre",
     spellings=(
-        ("mm", "millimetre"),
-        ("cm", "centimetre"),
-        ("m", "metre"),
-        ("in", "inch"),
-        ('"', "inch"),
-        ("um", "micrometre"),
-        ("µm", "micrometre"),
+        ("mm", 1.0),
+        ("cm", 10.0),
+        ("m", 1000.0),
+        ("in", 25.4),
+        ('"', 25.4),
+        ("um", 1e-3),
+        ("µm", 1e-3),
     ),
     example="31 mm",
 )
 FREQUENCY = Kind(
     name="frequency",
-    base="hertz",
-    spellings=(("Hz", "hertz"), ("kHz", "kilohertz"), ("MHz", "megahertz"), ("GHz", "gigahertz")),
+    spellings=(("Hz", 1.0), ("kHz", 1e3), ("MHz", 1e6), ("GHz", 1e9)),
     example="2.44 GHz",
 )
-ANGLE = Kind(
-    name="angle",
-    base="degree",
-    spellings=(("deg", "degree"), ("°", "degree"), ("rad", "radian")),
-    example="90 deg",
-)
-RESISTANCE = Kind(name="resistance", base="ohm", spellings=(("ohm", "ohm"), ("Ω", "ohm")), example="50 ohm")
-LEVEL = Kind(name="level", base="decibel", spellings=(("dB", "decibel"),), example="12 dB")
-POWER = Kind(name="power", base="watt", spellings=(("W", "watt"), ("mW", "milliwatt")), example="100 mW")
+ANGLE = Kind(name="angle", spellings=(("deg", 1.0), ("°", 1.0), ("rad", math.degrees(1.0))), example="90 deg")
+RESISTANCE = Kind(name="resistance", spellings=(("ohm", 1.0), ("Ω", 1.0)), example="50 ohm")
+LEVEL = Kind(name="level", spellings=(("dB", 1.0),), example="12 dB")
+POWER = Kind(name="power", spellings=(("W", 1.0), ("mW", 1e-3)), example="100 mW")
 SPEED = Kind(
     name="speed",
-    base="metre_per_second",
-    spellings=(
-        ("m/s", "metre_per_second"),
-        ("km/h", "kilometre_per_hour"),
-        ("mph", "mile_per_hour"),
-        ("kn", "knot"),
-    ),
+    spellings=(("m/s", 1.0), ("km/h", 1.0 / 3.6), ("mph", 0.44704), ("kn", 1852.0 / 3600.0)),
     example="40 m/s",
 )
 
@@ -126,7 +85,7 @@ def parse(text: object, kind: Kind) -> float:
         near = nearest(unit, spellings)
         fix = f'Write "{_plain(value)} {near}"?' if near else f'Write it like "{kind.example}".'
         raise UnitError(f"a {kind.name} in {kind.allowed()}", fix)
-    result = float(_registry().Quantity(value, spellings[unit]).to(kind.base).magnitude)
+    result = value * spellings[unit]
     if not math.isfinite(result):
         raise UnitError(f"a finite {kind.name}", f'Write it like "{kind.example}".')
     return result
@@ -193,7 +152,7 @@ def _split(text: object, example: str, allowed: str) -> tuple[float, str]:
     if isinstance(text, bool) or not isinstance(text, str | int | float):
         raise UnitError(allowed, f'Write it in quotes, like "{example}".')
     if isinstance(text, int | float):
-        if not math.isfinite(text):
+        if not finite(text):
             raise UnitError(allowed, f'Write a number with its unit, like "{example}".')
         unit = example.split()[-1]
         raise UnitError(
@@ -229,12 +188,13 @@ def _split(text: object, example: str, allowed: str) -> tuple[float, str]:
     return value, unit
 
 
+def finite(value: float) -> bool:
+    """Whether a number is one that arithmetic can be done with: not infinite, none of hundreds of digits."""
+    try:
+        return math.isfinite(value)
+    except OverflowError:  # an integer beyond every float
+        return False
+
+
 def _plain(value: float) -> str:
     return f"{value:.10g}"
-
-
-@functools.cache
-def _registry() -> pint.UnitRegistry[float]:
-    import pint  # loaded at the first quantity, not for --help
-
-    return pint.UnitRegistry(list(_DEFINITIONS), on_redefinition="raise")
