@@ -167,11 +167,11 @@ def test_every_blank_carries_its_own_number() -> None:
             (outline,) = outlines(alone)
             at = [
                 tuple((round(x - place.x_mm, 4), round(y - place.y_mm, 4)) for x, y in stroke.points)
-                for stroke in alone.marks
+                for stroke in (*alone.marks, *alone.numbers)
             ]
             assert len(at) > len(pattern.marks)
             seen.add(tuple(at))
-            for stroke in alone.marks:
+            for stroke in (*alone.marks, *alone.numbers):
                 assert outline.contains(shapely.LineString(stroke.points))
     assert len(seen) == 12
 
@@ -188,7 +188,7 @@ def test_marks_keep_clear_of_holes_and_bends() -> None:
     laid = nest(made, tray, pattern)
     for sheet, shapes in all_shapes(made, tray, pattern, laid):
         assert sheet.placements
-        marks = [shapely.LineString(s.points) for s in shapes.marks]
+        marks = [shapely.LineString(s.points) for s in (*shapes.marks, *shapes.numbers)]
         tree = shapely.STRtree(marks)
         for c in shapes.cut:
             if isinstance(c, Circle):

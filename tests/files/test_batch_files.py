@@ -19,18 +19,19 @@ from hypothesis import strategies as st
 from tests.designs import design
 
 from wavejig.batch.bill import fixture_pins
-from wavejig.batch.model import Batch, Bill, BillLine, PrintPiece, PrintPlan
+from wavejig.batch.model import Batch, Bill, BillLine, NestedShapes, PrintPiece, PrintPlan
 from wavejig.batch.nest import NumberedBlank
 from wavejig.batch.plan import plan as plan_batch
 from wavejig.batch.plates import print_plan
 from wavejig.files.batch_json import batch_data
 from wavejig.files.batchfiles import check_cut_plan, write_batch, write_cut_plan
 from wavejig.files.billfile import check_bill, safe_cell, write_bill
+from wavejig.files.dxfcheck import check_dxf
 from wavejig.files.errors import FileCheckError
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
-from wavejig.files.nestfile import nest_layers, write_nest
+from wavejig.files.nestfile import NestFiles, check_digits, nest_layers
 from wavejig.files.platefile import check_plate, write_plate
-from wavejig.reflector.flat import flat_pattern
+from wavejig.reflector.flat import FlatPattern, flat_pattern
 from wavejig.shop import Inspection, inspect
 
 PRICES = {
@@ -110,10 +111,11 @@ def test_a_nest_read_back(lips: str, tmp_path: Path) -> None:
     pattern = flat_pattern(found.tray, found.design.name)
     blank = NumberedBlank(found.design, found.tray, pattern)
     total = 0
+    files = NestFiles("x", blank_area_mm2=pattern.area_mm2)
     for number, sheet in enumerate(batch.nest.sheets, start=1):
         path = tmp_path / f"nest-{number}.dxf"
         count = len(sheet.placements)
-        write_nest(blank.shapes(batch.nest, sheet), path, "x", blanks=count, blank_area_mm2=pattern.area_mm2)
+        files.write(blank.shapes(batch.nest, sheet), path, blanks=count)
         space = ezdxf.readfile(path).modelspace()
         outlines = [e for e in space.query('LWPOLYLINE[layer=="cut"]') if e.is_closed]
         total += len(outlines)
@@ -129,14 +131,72 @@ def test_a_nest_read_back(lips: str, tmp_path: Path) -> None:
     assert total == 7
 
 
-def test_a_nest_that_lost_a_blank_is_refused(tmp_path: Path) -> None:
-    found, batch = made(quantity=2)
+def nested(quantity: int) -> tuple[FlatPattern, list[NestedShapes]]:
+    """A few blanks to a sheet."""
+    found, batch = made(quantity=quantity, cutter={"stock_sheet": ["600 mm", "200 mm"]})
     assert batch.nest is not None and found.tray is not None
-    pattern = flat_pattern(found.tray)
-    shapes = NumberedBlank(found.design, found.tray, pattern).shapes(batch.nest, batch.nest.sheets[0])
+    pattern = flat_pattern(found.tray, found.design.name)
+    blank = NumberedBlank(found.design, found.tray, pattern)
+    return pattern, [blank.shapes(batch.nest, sheet) for sheet in batch.nest.sheets]
+
+
+def test_a_nest_that_lost_a_blank_is_refused(tmp_path: Path) -> None:
+    pattern, (shapes,) = nested(2)
     with pytest.raises(FileCheckError, match="outer contours"):
-        write_nest(shapes, tmp_path / "n.dxf", "x", blanks=3, blank_area_mm2=pattern.area_mm2)
+        NestFiles("x", blank_area_mm2=pattern.area_mm2).write(shapes, tmp_path / "n.dxf", blanks=3)
     assert nest_layers(shapes)[0].name == "cut"
+
+
+def test_a_sheet_made_from_the_first_is_as_good_as_one_made_by_itself(tmp_path: Path) -> None:
+    """Numbers whose digits take more strokes than the first sheet's, then a sheet with fewer blanks."""
+    pattern, sheets = nested(125)
+    files = NestFiles("x", blank_area_mm2=pattern.area_mm2)
+    counts = {len(shapes.numbers) for shapes in sheets}
+    assert len(counts) > 3, counts
+    for number, shapes in enumerate(sheets):
+        path, alone = tmp_path / f"{number}.dxf", tmp_path / "alone.dxf"
+        outlines = len(shapes.cut) // (1 + len(pattern.holes))
+        files.write(shapes, path, blanks=outlines)
+        if number in (1, 20, 33, 40, len(sheets) - 1):
+            check_dxf(path, nest_layers(shapes), cut_area_mm2=outlines * pattern.area_mm2, blanks=outlines)
+            NestFiles("x", blank_area_mm2=pattern.area_mm2).write(shapes, alone, blanks=outlines)
+            a, b = ezdxf.readfile(path), ezdxf.readfile(alone)
+            assert [(e.dxftype(), e.dxf.layer) for e in a.modelspace()] == [
+                (e.dxftype(), e.dxf.layer) for e in b.modelspace()
+            ]
+            # the handles of all entities and tables, and the next free one
+            lines = path.read_text().splitlines()
+            tags = zip(lines[0::2], lines[1::2], strict=True)
+            handles = [int(value, 16) for code, value in tags if int(code) in (5, 105)]
+            assert len(set(handles)) == len(handles)
+            assert max(handles) == int(a.header["$HANDSEED"], 16)
+
+
+@pytest.mark.parametrize("fault", ["digit", "layer", "lost", "elsewhere"])
+def test_a_spoiled_copy_of_a_sheet_is_refused(tmp_path: Path, fault: str) -> None:
+    pattern, sheets = nested(12)
+    files = NestFiles("x", blank_area_mm2=pattern.area_mm2)
+    for number, shapes in enumerate(sheets):
+        outlines = len(shapes.cut) // (1 + len(pattern.holes))
+        files.write(shapes, tmp_path / f"{number}.dxf", blanks=outlines)
+    judged = files._judged
+    assert judged is not None
+    path = tmp_path / "1.dxf"
+    check_digits(path, judged.head, judged.tail, sheets[1].numbers)
+    data = path.read_bytes()
+    digits = data[len(judged.head) : -len(judged.tail)]
+    if fault == "digit":
+        bad = judged.head + digits.replace(b"\r\n 10\r\n", b"\r\n 10\r\n1", 1) + judged.tail
+    elif fault == "layer":
+        bad = judged.head + digits.replace(b"\r\nmarks\r\n", b"\r\ncut\r\n", 1) + judged.tail
+    elif fault == "lost":
+        bad = judged.head + digits[: digits.rindex(b"  0\r\n")] + judged.tail
+    else:
+        bad = data.replace(b"CIRCLE", b"CIRCEL", 1)
+    assert bad != data
+    path.write_bytes(bad)
+    with pytest.raises(FileCheckError):
+        check_digits(path, judged.head, judged.tail, sheets[1].numbers)
 
 
 # -- plates -------------------------------------------------------------------------------------------

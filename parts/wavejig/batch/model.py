@@ -65,11 +65,15 @@ class Nest:
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class NestedShapes:
-    """What one sheet's file holds: contours to cut, fold lines as (start, end, angle), marks, the sheet itself."""
+    """What one sheet's file holds: contours to cut, fold lines as (start, end, angle), marks, the sheet itself.
+
+    marks: alike on every blank; numbers: the running numbers' digits, all that differs between full sheets.
+    """
 
     cut: tuple[Contour | Circle, ...]
     bends: tuple[tuple[tuple[float, float], tuple[float, float], float], ...]
     marks: tuple[Stroke, ...]
+    numbers: tuple[Stroke, ...]
     stock: tuple[Stroke, ...]
     unmarked: tuple[int, ...] = ()  # running numbers that found no room
 

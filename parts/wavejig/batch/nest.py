@@ -6,11 +6,12 @@ All blanks are alike, so every full sheet is: the packing library lays one out, 
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 from wavejig.batch.model import Box, Nest, NestedShapes, NestSheet, Placement
 from wavejig.batch.rectangles import Laid, most_equal
 from wavejig.design.model import Design
-from wavejig.geometry.lettering import text_width_mm
+from wavejig.geometry.lettering import strokes, text_width_mm
 from wavejig.geometry.plane import Circle, Contour, Stroke
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.marks import Mark, find_marks
@@ -144,9 +145,9 @@ class NumberedBlank:
         self._digits = len(str(design.quantity))
         widest = max("0123456789", key=lambda d: text_width_mm(d, 1.0)) * self._digits
         # name and number on one line; where that has no room the number on its own, with or without the name
-        self._marks: tuple[Mark, ...] = ()
         self._numbered: Mark | None = None
         self._with_name = True
+        marks: tuple[Mark, ...] = ()
         for names, with_name in (
             ((self._label(widest, True),), True),
             ((design.name, self._label(widest, False)), False),
@@ -154,11 +155,16 @@ class NumberedBlank:
         ):
             marks, _ = find_marks(tray, names)
             self._numbered = next((m for m in marks if m.text == names[-1]), None)
-            self._marks = tuple(m for m in marks if m is not self._numbered)
             self._with_name = with_name
             if self._numbered is not None:
                 break
-        self._fixed = tuple(s for m in self._marks for s in m.strokes())
+        fixed = [s for m in marks if m is not self._numbered for s in m.strokes()]
+        # digits are all of one width, so what stands before them stays where it is, whatever the number
+        self._leading = sum(len(strokes(c, 1.0)) for c in self._label("", self._with_name))
+        if self._numbered is not None:
+            fixed += self._numbered.strokes()[: self._leading]
+        self._fixed = tuple(fixed)
+        self._drawn: tuple[object, NestedShapes] | None = None
 
     @property
     def has_number(self) -> bool:
@@ -169,14 +175,25 @@ class NumberedBlank:
         return f"{self._name} No {digits}" if with_name else f"No {digits}"
 
     def _number(self, number: int) -> tuple[Stroke, ...]:
+        """The digits' strokes; the text before them is among the fixed marks."""
         if self._numbered is None:
             return ()
-        return self._numbered.strokes(self._label(f"{number:0{self._digits}d}", self._with_name))
+        label = self._label(f"{number:0{self._digits}d}", self._with_name)
+        return self._numbered.strokes(label)[self._leading :]
 
     def shapes(self, laid: Nest, sheet: NestSheet) -> NestedShapes:
-        """All that one sheet's file draws."""
+        """All that one sheet's file draws; a sheet laid out like the last one drawn shares all but the numbers."""
+        spots = (laid.stock_mm, tuple((p.x_mm, p.y_mm, p.turn_deg) for p in sheet.placements))
+        if self._drawn is None or self._drawn[0] != spots:
+            self._drawn = (spots, self._unnumbered(laid, sheet))
+        return replace(
+            self._drawn[1],
+            numbers=tuple(_stroke(s, p) for p in sheet.placements for s in self._number(p.number)),
+            unmarked=() if self.has_number else tuple(p.number for p in sheet.placements),
+        )
+
+    def _unnumbered(self, laid: Nest, sheet: NestSheet) -> NestedShapes:
         cut: list[Contour | Circle] = []
-        marks: list[Stroke] = []
         bends = []
         for place in sheet.placements:
             cut.append(_contour(self._pattern.outline, place))
@@ -184,16 +201,14 @@ class NumberedBlank:
             bends += [
                 (_at(b.line[0], place), _at(b.line[1], place), b.angle_deg) for b in self._pattern.bends
             ]
-            for stroke in (*self._fixed, *self._number(place.number)):
-                marks.append(Stroke(points=tuple(_at(p, place) for p in stroke.points)))
         w, h = laid.stock_mm
         edge = Stroke(points=((0.0, 0.0), (w, 0.0), (w, h), (0.0, h), (0.0, 0.0)))
         return NestedShapes(
             cut=tuple(cut),
             bends=tuple(bends),
-            marks=tuple(marks),
+            marks=tuple(_stroke(s, place) for place in sheet.placements for s in self._fixed),
+            numbers=(),
             stock=(edge, *_grain_arrow(laid)),
-            unmarked=() if self.has_number else tuple(p.number for p in sheet.placements),
         )
 
 
@@ -218,6 +233,10 @@ def _at(point: tuple[float, float], place: Placement) -> tuple[float, float]:
     if place.turn_deg:
         x, y = -y, x
     return (x + place.x_mm, y + place.y_mm)
+
+
+def _stroke(stroke: Stroke, place: Placement) -> Stroke:
+    return Stroke(points=tuple(_at(p, place) for p in stroke.points))
 
 
 def _contour(contour: Contour, place: Placement) -> Contour:

@@ -13,7 +13,7 @@ from wavejig.files.billfile import check_bill, safe_cell, write_bill
 from wavejig.files.errors import FileCheckError
 from wavejig.files.manifest import Entry
 from wavejig.files.mesh import Measure, Mesh
-from wavejig.files.nestfile import write_nest
+from wavejig.files.nestfile import NestFiles
 from wavejig.files.platefile import check_plate, write_plate
 from wavejig.reflector.flat import FlatPattern, with_kerf
 from wavejig.reflector.model import Tray
@@ -48,15 +48,10 @@ def write_batch(
     if batch.nest is not None:
         cut = with_kerf(pattern, design.cutter.kerf_mm) if design.cutter.offset_in_file else pattern
         blank = NumberedBlank(design, tray, cut)
+        files = NestFiles(f"{design.name} nest", blank_area_mm2=cut.area_mm2)
         for number, sheet in enumerate(batch.nest.sheets, start=1):
             name = f"reflector/nest-{number}.dxf"
-            write_nest(
-                blank.shapes(batch.nest, sheet),
-                _path(root, name),
-                f"{design.name} nest {number}",
-                blanks=len(sheet.placements),
-                blank_area_mm2=cut.area_mm2,
-            )
+            files.write(blank.shapes(batch.nest, sheet), _path(root, name), blanks=len(sheet.placements))
             yield Entry(path=name, kind="dxf", part="reflector", units="mm")
     if batch.prints is not None:
         for number, plate in enumerate(batch.prints.plates, start=1):

@@ -99,25 +99,40 @@ def write_dxf(layers: Sequence[Layer], path: Path, *, version: Version = "R2010"
     """
     check_layers(layers)
     with fixed_metadata():
-        document = DxfDocument.new(version)
-        if version != "R12":
-            document.header["$INSUNITS"] = 4  # mm
-            document.header["$MEASUREMENT"] = 1  # metric
-            document.header.custom_vars.append("Title", clean_name(title))
-        _add_layers(document, layers)
-        low, high = _extents(layers)
-        modelspace = document.modelspace()
-        modelspace.reset_extents((*low, 0.0), (*high, 0.0))
-        modelspace.reset_limits(low, high)
-        document.header["$EXTMIN"], document.header["$EXTMAX"] = (*low, 0.0), (*high, 0.0)
-        centre = ((low[0] + high[0]) / 2.0, (low[1] + high[1]) / 2.0)
-        document.set_modelspace_vport(1.1 * max(high[0] - low[0], high[1] - low[1]), centre)
-        for kind in sorted(document.entitydb.dxf_types_in_use()):
-            document.classes.add_class(kind)  # left to itself, the library adds them in the order of a set
-        stream = io.StringIO()
-        document.write(stream)
-    text = stream.getvalue().replace("\n", "\r\n")  # as old readers expect, whatever system writes
-    path.write_bytes(text.encode(document.output_encoding, errors="dxfreplace"))
+        document = make_document(layers, version=version, title=title)
+        path.write_bytes(document_bytes(document))
+
+
+def make_document(layers: Sequence[Layer], *, version: Version = "R2010", title: str = "") -> DxfDocument:
+    """The layers as a document of the library's; to be called and written under `fixed_metadata`."""
+    document = DxfDocument.new(version)
+    if version != "R12":
+        document.header["$INSUNITS"] = 4  # mm
+        document.header["$MEASUREMENT"] = 1  # metric
+        document.header.custom_vars.append("Title", clean_name(title))
+    _add_layers(document, layers)
+    low, high = _extents(layers)
+    modelspace = document.modelspace()
+    modelspace.reset_extents((*low, 0.0), (*high, 0.0))
+    modelspace.reset_limits(low, high)
+    document.header["$EXTMIN"], document.header["$EXTMAX"] = (*low, 0.0), (*high, 0.0)
+    centre = ((low[0] + high[0]) / 2.0, (low[1] + high[1]) / 2.0)
+    document.set_modelspace_vport(1.1 * max(high[0] - low[0], high[1] - low[1]), centre)
+    for kind in sorted(document.entitydb.dxf_types_in_use()):
+        document.classes.add_class(kind)  # left to itself, the library adds them in the order of a set
+    return document
+
+
+def document_bytes(document: DxfDocument) -> bytes:
+    """The document as a file, its lines ended as old readers expect, whatever system writes."""
+    stream = io.StringIO()
+    document.write(stream)
+    return encoded(stream.getvalue(), document)
+
+
+def encoded(text: str, document: DxfDocument) -> bytes:
+    """Tags of the document as they stand in its file."""
+    return text.replace("\n", "\r\n").encode(document.output_encoding, errors="dxfreplace")
 
 
 def check_layers(layers: Sequence[Layer]) -> None:
@@ -132,7 +147,7 @@ def check_layers(layers: Sequence[Layer]) -> None:
         if not 1 <= layer.colour <= 255:
             raise DrawingError(f"layer {layer.name}: got colour {layer.colour}, need 1 to 255.")
         for number, entity in enumerate(layer.entities, start=1):
-            fault = _fault(entity, is_cut_layer(layer.name))
+            fault = entity_fault(entity, is_cut_layer(layer.name))
             if fault:
                 raise DrawingError(f"layer {layer.name}, entity {number}: {fault}")
     if not any(layer.entities for layer in layers):
@@ -158,11 +173,12 @@ def entity_numbers(entity: Entity) -> list[float]:
         return [_mm(entity.x_mm), _mm(entity.y_mm), _mm(entity.diameter_mm / 2.0)]
     if isinstance(entity, Contour):
         return [n for x, y, b in entity.vertices for n in (_mm(x), _mm(y), round(b, _BULGE_PLACES) + 0.0)]
-    points = entity.points[:-1] if _is_ring(entity) else entity.points
+    points = entity.points[:-1] if is_ring(entity) else entity.points
     return [n for x, y in points for n in (_mm(x), _mm(y), 0.0)]
 
 
-def _is_ring(stroke: Stroke) -> bool:
+def is_ring(stroke: Stroke) -> bool:
+    """A stroke that ends where it begins: written as a closed polyline."""
     return len(stroke.points) > 3 and math.dist(stroke.points[0], stroke.points[-1]) < SHORTEST_MM
 
 
@@ -170,7 +186,7 @@ def _mm(value: float) -> float:
     return round(float(value), _PLACES) + 0.0  # + 0 turns -0 into 0
 
 
-def _fault(entity: Entity, cut: bool) -> str | None:
+def entity_fault(entity: Entity, cut: bool) -> str | None:
     """What is wrong with an entity, or None."""
     numbers = entity_numbers(entity)
     if not numbers or not all(math.isfinite(number) for number in numbers):
@@ -229,7 +245,7 @@ def _add_entity(modelspace: Modelspace, entity: Entity, layer: str, *, old: bool
     if isinstance(entity, Stroke) and len(corners) == 2:
         modelspace.add_line(corners[0][:2], corners[1][:2], dxfattribs=attributes)
         return
-    close = isinstance(entity, Contour) or _is_ring(entity)
+    close = isinstance(entity, Contour) or is_ring(entity)
     if old:
         modelspace.add_polyline2d(corners, format="xyb", close=close, dxfattribs=attributes)
     else:
