@@ -221,36 +221,6 @@ def test_a_failed_build_leaves_the_old_pack_and_nothing_else(
     assert [p.name for p in out.iterdir()] == ["spare"]
 
 
-def test_a_swap_that_fails_brings_the_old_pack_back(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
-    out = tmp_path / "out"
-    (out / "spare").mkdir(parents=True)
-    (out / "spare" / "manifest.json").write_text("{}")
-    rename = Path.rename
-
-    def stubborn(self: Path, target: Path) -> Path:
-        if ".building-" in self.name:
-            raise OSError(errno.EBUSY, "Device or resource busy")
-        return rename(self, target)
-
-    monkeypatch.setattr(Path, "rename", stubborn)
-    with pytest.raises(OSError, match="busy"), pack.staging(out, "spare") as stage:
-        (stage / "manifest.json").write_text("new")
-    assert (out / "spare" / "manifest.json").read_text() == "{}"
-    assert [p.name for p in out.iterdir()] == ["spare"]
-
-
-def test_what_a_killed_build_left_is_mended_by_the_next(tmp_path: Path) -> None:
-    out = tmp_path / "out"
-    caught = out / ".spare.replaced-1"  # killed between the two renames: the old pack sits aside
-    caught.mkdir(parents=True)
-    (caught / "manifest.json").write_text("old")
-    (out / ".spare.building-x").mkdir()
-    with pytest.raises(RuntimeError), pack.staging(out, "spare"):
-        raise RuntimeError
-    assert (out / "spare" / "manifest.json").read_text() == "old"
-    assert [p.name for p in out.iterdir()] == ["spare"]
-
-
 def test_a_folder_that_is_no_pack_is_not_touched(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     recipe, out = built_good(tmp_path)
     (out / "spare").mkdir(parents=True)

@@ -7,6 +7,7 @@ Exit codes: 0 fine; 1 a design that cannot be made or misses a figure its recipe
 from __future__ import annotations
 
 import argparse
+import contextlib
 import sys
 from importlib import import_module
 from pathlib import Path
@@ -18,7 +19,7 @@ from wavejig.commands.telling import MACHINE, OK, WRONG_INPUT
 COMMANDS = ("new", "check", "match", "tune", "build", "yield", "measured", "watch", "stock")
 _OPTIONS = (
     "--help", "--version", "--json", "--out", "--schema", "--plot", "--skip-field", "--as-is", "--aim", "--grid",
-    "--cluster", "--write", "--reading", "--record", "--port",
+    "--cluster", "--write", "--reading", "--record", "--port", "--from-scratch", "--jobs", "--no-wait", "--verify",
 )  # fmt: skip
 
 _ABOUT = """\
@@ -48,8 +49,10 @@ def main(argv: list[str] | None = None) -> int:
     try:
         args = _parser().parse_args(argv)
         return int(import_module(f"wavejig.commands.{args.module}").run(args))
-    except KeyboardInterrupt:
-        print("interrupted; packs already on disk are as they were", file=sys.stderr)  # noqa: T201
+    except KeyboardInterrupt as err:
+        # by name where it was a signal other than ctrl-C; a closed terminal takes no message
+        with contextlib.suppress(OSError):
+            print(f"{str(err) or 'interrupted'}; packs already on disk are as they were", file=sys.stderr)  # noqa: T201
         return MACHINE
     except BrokenPipeError:  # the reader of our output went away, as `| head` does
         sys.stderr.close()
@@ -143,13 +146,28 @@ def _parser() -> argparse.ArgumentParser:
     build = command(
         "build",
         "write the pack of each recipe: everything the machines and the bench need",
-        "  wavejig build saltmarsh-2g4.toml\n  wavejig build recipes/*.toml --out packs --json\n",
+        "  wavejig build saltmarsh-2g4.toml\n  wavejig build recipes/*.toml --out packs --json\n"
+        "  wavejig build --verify out/saltmarsh-2g4     is this pack what its recipe gives?\n",
     )
-    _recipes(build)
+    build.add_argument("recipes", nargs="*", type=Path, metavar="RECIPE", help="recipe files (TOML)")
+    build.add_argument("--json", action="store_true", help="results as JSON on stdout")
     build.add_argument("--out", type=Path, default=Path("out"), metavar="DIR", help="where packs go (out)")
     build.add_argument(
         "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
     )
+    build.add_argument(
+        "--from-scratch", action="store_true", help="take nothing over from earlier builds or tunings"
+    )
+    build.add_argument(
+        "-j", "--jobs", type=int, metavar="N", help="recipes built side by side (as many as cores and memory allow)"
+    )
+    build.add_argument(
+        "--no-wait", action="store_true", help="refuse where another process is building the same pack"
+    )
+    build.add_argument(
+        "--verify", nargs="+", type=Path, default=[], metavar="DIR",
+        help="build nothing: say whether these packs are what their recipes give",
+    )  # fmt: skip
     build.set_defaults(module="building")
 
     yields = command(

@@ -6,16 +6,18 @@ then swapped in. Whatever fails before the swap leaves the earlier pack as it wa
 
 from __future__ import annotations
 
-import contextlib
-import os
+import errno
 import shutil
-import tempfile
-from collections.abc import Callable, Iterator
+from collections.abc import Callable
 from dataclasses import dataclass
 from pathlib import Path
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
-import wavejig
+from wavejig.design import resolve
+from wavejig.files.lock import locked
+from wavejig.files.manifest import Entry, check_manifest, write_manifest
+from wavejig.files.origin import RECIPE, Found, made_from, versions
+from wavejig.files.staging import staging
 from wavejig.recipe import RecipeError, RecipeFile, read_recipe
 from wavejig.shop import Inspection, inspect
 from wavejig.tuning.settle import Settled, kept, settle
@@ -25,7 +27,8 @@ if TYPE_CHECKING:
     from wavejig.files.kept import Kept
 
 Progress = Callable[[str], None]
-_STAGE, _OLD = ".building-", ".replaced-"
+Free = Literal["tuned", "start", "kept"]  # what becomes of values left "auto"
+_FREE = {"kept": "tuned"}  # in the manifest: where the answer came from is no matter
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -50,6 +53,10 @@ class CannotBeMadeError(Exception):
     def __init__(self, inspection: Inspection) -> None:
         self.inspection = inspection
         super().__init__(f"{inspection.design.name} cannot be made")
+
+
+class BuiltMeanwhileError(Exception):
+    """The build that was waited for made the very pack that was wanted."""
 
 
 def inspect_recipe(path: Path) -> tuple[RecipeFile, Inspection]:
@@ -85,59 +92,72 @@ def build(
     predict: bool = True,
     announce: Progress = lambda _: None,
     memory: Kept | None = None,
+    wait: bool = True,
+    free: Free | None = None,
+    anew: bool = False,
+    done: Callable[[], bool] = lambda: False,
 ) -> Built:
     """Build the pack of a recipe into `out`/<name>/.
 
     predict: work out what is left free, solve the field and write field/; without it free values are what is
-    kept from before, or starting values. announce: told once if the solver has to be compiled. memory: of earlier
-    builds in this process, to run only the steps that a change touches.
-    Raises RecipeError (exit 2), CannotBeMadeError (exit 1), OSError (exit 3); FileCheckError or a kernel
+    kept from before, or starting values. announce: told once if the solver has to be compiled, or another
+    build of the same pack has to be waited for (wait: or be refused with LockedError). memory: of earlier
+    builds, to run only the steps that a change touches. free: "tuned" or "start" in spite of `predict`.
+    anew: tune in spite of a kept answer. done: asked after another build has been waited for: is nothing left to do?
+    Raises BuiltMeanwhileError where `done` says so; RecipeError (exit 2), CannotBeMadeError (exit 1), OSError
+    (exit 3); FileCheckError or a kernel
     error when a file does not come back as it was written, which is a fault of ours.
     """
     progress("reading the recipe")
-    if predict:
-        _, inspection, _ = settle_recipe(path, progress, announce)
-    else:
-        _, inspection = inspect_recipe(path)
-    if not inspection.can_be_made:
-        raise CannotBeMadeError(inspection)
-    progress("loading the CAD kernel")
-    from wavejig.files.packfiles import PackFiles
+    recipe_file, text = _read(path)
+    with locked(out, recipe_file.recipe.name, wait=wait, told=announce) as waited:
+        if waited and done():
+            raise BuiltMeanwhileError(path)
+        settled = _settled(recipe_file, free or ("tuned" if predict else "kept"), progress, announce, anew)
+        inspection = inspect(settled.design)
+        if not inspection.can_be_made:
+            raise CannotBeMadeError(inspection)
+        progress("loading the CAD kernel")
+        from wavejig.files.fingerprint import fingerprint
+        from wavejig.files.packfiles import PackFiles
 
-    with staging(out, inspection.design.name) as stage:
-        files = PackFiles(inspection, stage, predict=predict, announce=announce, kept=memory)
-        for step in files.steps():
-            progress(step.title)
-            files.do(step)
-        progress("drawings and build sheet")
-        from wavejig.sheets.sheetfiles import write_sheets
+        with staging(out, inspection.design.name) as stage:
+            files = PackFiles(inspection, stage, predict=predict, announce=announce, kept=memory)
+            for step in files.steps():
+                progress(step.title)
+                files.do(step)
+            progress("drawings and build sheet")
+            from wavejig.sheets.sheetfiles import write_sheets
 
-        files.entries += write_sheets(
-            files.inspection,
-            files.pattern,
-            stage,
-            prediction=files.prediction,
-            order=files.bend_order,
-            batch=files.batch,
-        )
-        progress("report")
-        from wavejig.sheets.report.frompack import write_pack_report
+            files.entries += write_sheets(
+                files.inspection,
+                files.pattern,
+                stage,
+                prediction=files.prediction,
+                order=files.bend_order,
+                batch=files.batch,
+            )
+            progress("report")
+            from wavejig.sheets.report.frompack import write_pack_report
 
-        files.entries += write_pack_report(
-            files.inspection,
-            files.pattern,
-            stage,
-            pictured=files.pictured,
-            prints=files.prints,
-            entries=files.entries,
-            batch=files.batch,
-            prediction=files.prediction,
-        )
-        progress("checking the pack")
-        files.finish(_versions())
-        count, size = files.totals()
-    if memory is not None:
-        memory.pack = out / inspection.design.name
+            files.entries += write_pack_report(
+                files.inspection,
+                files.pattern,
+                stage,
+                pictured=files.pictured,
+                prints=files.prints,
+                entries=files.entries,
+                batch=files.batch,
+                prediction=files.prediction,
+            )
+            progress("checking the pack")
+            origin = made_from(
+                fingerprint(recipe_file.recipe), field=predict, free=_FREE.get(settled.how, settled.how)
+            )
+            files.finish(text, versions(), origin)
+            count, size = files.totals()
+        if memory is not None:
+            memory.pack = out / inspection.design.name
     return Built(
         folder=out / inspection.design.name,
         files=count,
@@ -147,65 +167,49 @@ def build(
     )
 
 
-@contextlib.contextmanager
-def staging(out: Path, name: str) -> Iterator[Path]:
-    """A fresh folder beside the pack's place; swapped in when the block ends well, removed otherwise."""
-    out.mkdir(parents=True, exist_ok=True)
-    final = out / name
-    if final.exists() and not (final / "manifest.json").is_file() and any(final.iterdir()):
-        raise FileExistsError(
-            17, "this folder exists and is not a pack of ours; move it away or use --out", str(final)
-        )
-    _clear_leftovers(out, name)
-    stage = Path(tempfile.mkdtemp(prefix=f".{name}{_STAGE}", dir=out))
+def _read(path: Path) -> tuple[RecipeFile, bytes]:
+    """A recipe and its very text, even while an editor is saving it."""
+    while True:
+        recipe_file, text = read_recipe(path), path.read_bytes()
+        if read_recipe(path) == recipe_file:
+            return recipe_file, text
+
+
+def _settled(
+    recipe_file: RecipeFile, free: Free, progress: Progress, announce: Progress, anew: bool
+) -> Settled:
+    recipe = recipe_file.recipe
     try:
-        yield stage
-        _swap(stage, final)
-    except BaseException:  # ctrl-C too: nothing may be left behind
-        shutil.rmtree(stage, ignore_errors=True)
-        raise
+        if free == "start":
+            return Settled(design=resolve(recipe), how="start")
+        if free == "kept":
+            return kept(recipe)
+        return settle(recipe, lambda step: progress(f"tuning, {step}"), announce, anew=anew)
+    except RecipeError as err:
+        raise recipe_file.error(err.problems) from err
 
 
-def _swap(stage: Path, final: Path) -> None:
-    """Put the new pack in the old one's place; the old one comes back if the second step fails."""
-    stage.chmod(0o755)  # mkdtemp's folders are private; a pack is to be shared
-    if not final.exists():
-        stage.rename(final)
-        return
-    old = final.with_name(f".{final.name}{_OLD}{os.getpid()}")
-    final.rename(old)
-    try:
-        stage.rename(final)
-    except BaseException:
-        old.rename(final)
-        raise
-    shutil.rmtree(old, ignore_errors=True)
+def retell(path: Path, found: Found, *, wait: bool = True, announce: Progress = lambda _: None) -> None:
+    """Put another text of the same numbers into a pack: remarks and spelling, which reach no other file.
 
-
-def _clear_leftovers(out: Path, name: str) -> None:
-    """Undo what a killed build left: bring back a pack caught between the two renames, drop the rest."""
-    for old in sorted(out.glob(f".{name}{_OLD}*")):
-        if not (out / name).exists():
-            old.rename(out / name)
-        else:
-            shutil.rmtree(old, ignore_errors=True)
-    for stage in out.glob(f".{name}{_STAGE}*"):
-        shutil.rmtree(stage, ignore_errors=True)
-
-
-def _versions() -> dict[str, str]:
-    from importlib.metadata import version
-
-    libraries = (
-        "cadquery",
-        "cadquery-ocp",
-        "ezdxf",
-        "numpy",
-        "rectpack",
-        "reportlab",
-        "scipy",
-        "numba",
-        "trimesh",
-        "shapely",
-    )
-    return {"wavejig": wavejig.__version__, **{name: version(name) for name in libraries}}
+    found: that pack, just looked at. Raises OSError.
+    """
+    out, name = found.folder.parent, found.folder.name
+    _, text = _read(path)
+    with locked(out, name, wait=wait, told=announce), staging(out, name) as stage:
+        entries = [
+            Entry(path=f["path"], kind=f["kind"], part=f["part"], units=f["units"])
+            for f in found.manifest["files"]
+        ]
+        for entry in entries:
+            target = stage / entry.path
+            target.parent.mkdir(parents=True, exist_ok=True)
+            if entry.path == RECIPE:
+                target.write_bytes(text)
+            else:
+                shutil.copyfile(found.folder / entry.path, target)
+        write_manifest(stage, entries, versions(), found.manifest["made"])
+        was = {f["path"]: f["sha256"] for f in found.manifest["files"] if f["path"] != RECIPE}
+        for entry in check_manifest(stage)["files"]:
+            if was.get(entry["path"], entry["sha256"]) != entry["sha256"]:
+                raise OSError(errno.EBUSY, "this file changed under our hands", str(stage / entry["path"]))

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import shutil
 import time
 from typing import TextIO
 
@@ -21,6 +22,8 @@ class Meter:
         if not self.shown:
             return
         text = f"{self.title}: {name} ({time.monotonic() - self.began:.0f} s)"
+        room = shutil.get_terminal_size().columns - 1  # a line that wraps could not be rewritten
+        text = text if len(text) <= room else text[: room - 3] + "..."
         self.stream.write("\r" + text.ljust(self.width))
         self.stream.flush()
         self.width = len(text)

@@ -1,88 +1,97 @@
-"""`wavejig build`: the pack of each recipe."""
+"""`wavejig build`: the pack of each recipe, side by side where there are several."""
 
 from __future__ import annotations
 
 import argparse
 import json
 import sys
+from collections.abc import Iterable
 from pathlib import Path
-from typing import Any
 
-from wavejig.commands.inspecting import count_of, finding_text, inspection_data, inspection_text
-from wavejig.commands.telling import (
-    CANNOT_BE_MADE,
-    MACHINE,
-    OK,
-    WRONG_INPUT,
-    announce,
-    input_error,
-    say,
-    unreadable,
-)
+from wavejig.commands.buildone import Options, Outcome, build_one, unchanged
+from wavejig.commands.stopping import stoppable
+from wavejig.commands.telling import OK, WRONG_INPUT, announce, stop
 
 
 def run(args: argparse.Namespace) -> int:
     """Build each pack; the exit code is the worst of theirs."""
-    from wavejig.pack import CannotBeMadeError, build
-    from wavejig.progress import Meter
-    from wavejig.recipe import RecipeError
+    if args.verify:
+        if args.recipes:
+            return stop(WRONG_INPUT, "build --verify takes packs and no recipes; allowed: one or the other")
+        from wavejig.commands.verifying import run as verify
 
-    code, results = OK, []
-    for path in args.recipes:
+        with stoppable():
+            return verify(args)
+    if not args.recipes:
+        return stop(WRONG_INPUT, "build: which recipe? Allowed: RECIPE..., or --verify DIR...")
+    if args.jobs is not None and args.jobs < 1:
+        return stop(WRONG_INPUT, f"build: --jobs: read {args.jobs}; allowed: 1 or more")
+    clash = _same_pack(args.recipes)
+    if clash:
+        return stop(WRONG_INPUT, f"build: {clash}")
+    options = Options(
+        out=args.out, field=not args.skip_field, from_scratch=args.from_scratch, wait=not args.no_wait
+    )
+    with stoppable():
+        return _tell(_all(args, options), args.json)
+
+
+def _all(args: argparse.Namespace, options: Options) -> Iterable[Outcome]:
+    """Outcomes in the order of the recipes, each as soon as it and those before it are known."""
+    known = {path: unchanged(path, options) for path in args.recipes}
+    todo = [path for path, outcome in known.items() if outcome is None]
+    if len(todo) > 1:
+        from wavejig.commands.buildmany import build_many
+
+        yield from build_many(args.recipes, known, options, args.jobs, quiet=args.json)
+        return
+    from wavejig.progress import Meter
+
+    for path, outcome in known.items():
+        if outcome is not None:
+            yield outcome
+            continue
         meter = Meter(path.name, sys.stderr, quiet=args.json)
         try:
-            built = build(path, args.out, meter.step, predict=not args.skip_field, announce=announce)
-        except RecipeError as err:
+            outcome = build_one(path, options, meter.step, announce)
+        finally:
             meter.end()
-            code = max(code, WRONG_INPUT)
-            results.append(input_error(path, err, args.json))
-        except CannotBeMadeError as err:
-            meter.end()
-            code = max(code, CANNOT_BE_MADE)
-            results.append({"recipe": str(path), "pack": None, **inspection_data(err.inspection)})
-            if not args.json:
-                sys.stderr.write(inspection_text(path, err.inspection) + "\nNo pack was written.\n")
-        except OSError as err:
-            meter.end()
-            if err.filename is not None and Path(str(err.filename)) == path:
-                code = max(code, WRONG_INPUT)
-                results.append(unreadable(path, err, args.json))
-                continue
-            code = MACHINE
-            message = f"{path}: pack not written: {err.strerror or err}"
-            message += f" ({err.filename})" if err.filename else ""
-            results.append({"recipe": str(path), "pack": None, "error": message})
-            sys.stderr.write(f"{message}; an earlier pack is as it was\n")
-        else:
-            meter.end()
-            results.append(
-                {
-                    "recipe": str(path),
-                    "pack": str(built.folder),
-                    "files": built.files,
-                    "bytes": built.bytes,
-                    **inspection_data(built.inspection),
-                }
-            )
-            if not args.json:
-                say(_built_text(built))
-            if not built.keeps_its_promise:
-                code = max(code, CANNOT_BE_MADE)
-                sys.stderr.write(f"{path}: the pack is written, but {_missed(built)}\n")
-    if args.json:
-        say(json.dumps(results, indent=1))
+        yield outcome
+
+
+def _tell(outcomes: Iterable[Outcome], as_json: bool) -> int:
+    code, data = OK, []
+    for outcome in outcomes:
+        code = max(code, outcome.code)
+        data.append(outcome.data)
+        if not as_json:
+            sys.stdout.write(outcome.out)
+            sys.stdout.flush()
+            sys.stderr.write(outcome.err)
+    if as_json:
+        sys.stdout.write(json.dumps(data, indent=1) + "\n")
     return code
 
 
-def _built_text(built: Any) -> str:
-    counts = [count_of(built.inspection, severity) for severity in ("warning", "note")]
-    warnings = [finding_text(f) for f in built.inspection.findings if f.severity == "warning"]
-    head = (
-        f"{built.folder}: {built.files} files, {built.bytes / 1e6:.1f} MB, each read back and found right; "
-        f"{' and '.join(counts)}"
-    )
-    return "\n".join([head, *warnings])
+def _same_pack(recipes: list[Path]) -> str | None:
+    """Why two of these recipes cannot be built in one call; None where each has a pack of its own."""
+    from wavejig.files.origin import seeming_name
 
-
-def _missed(built: Any) -> str:
-    return str(next(f.message for f in built.inspection.findings if f.code == "prediction-misses"))
+    seen: dict[str, Path] = {}
+    for path in recipes:
+        try:
+            name = seeming_name(path.read_bytes()) if path.is_file() else None
+        except OSError:
+            continue
+        if name is None:
+            continue
+        other = seen.setdefault(name.casefold(), path)  # one folder on a disk that ignores case
+        if other is path:
+            continue
+        if other.resolve() == path.resolve():
+            return f"{path} is given twice"
+        return (
+            f'{other} and {path} are both named "{name}" and would write the same pack; allowed: one recipe '
+            "a name. Give one of them another `name`, or build them one by one into different --out folders"
+        )
+    return None

@@ -1,22 +1,24 @@
-"""What one build leaves for the next of the same recipe: steps whose inputs are the same are not run again.
+"""What one build leaves for the next of the same pack: steps whose inputs are the same are not run again.
 
-For `watch`, where a recipe is saved over and over. A step's inputs are the whole design but what is known not
-to reach that step, and the plans of the parts; its files are copied from the earlier pack once their
-checksums are right, so a pack touched by hand is made anew.
+A step's inputs are the whole design but what is known not to reach that step, and the plans of the parts,
+compared by content. Its files are copied from the pack on disk once their checksums are right, so a pack
+touched by hand is made anew; what else it gave (solids, meshes, findings) is held here, and from process to
+process by `wavejig.files.record`.
 """
 
 from __future__ import annotations
 
-import hashlib
 import json
 import shutil
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass, field, fields, replace
 from pathlib import Path
-from typing import TYPE_CHECKING, Any
+from typing import TYPE_CHECKING, Any, Protocol
 
 from wavejig.design.model import Design, TargetDesign
+from wavejig.files.fingerprint import fingerprint
 from wavejig.files.manifest import Entry
+from wavejig.files.origin import sha256
 
 if TYPE_CHECKING:
     from wavejig.field.model import Model
@@ -45,15 +47,18 @@ _PLANS = {
 }
 
 
-def inputs(step: str, design: Design, plans: Mapping[str, object]) -> tuple[object, ...] | None:
-    """What that step's files follow from, to be compared; None for a step that is always run."""
+def inputs(step: str, design: Design, plans: Mapping[str, object]) -> str | None:
+    """Fingerprint of what that step's files follow from; None for a step that is always run."""
     if step not in _ASIDE:
         return None
     left_out = _NEVER | _ASIDE[step]
     asked = replace(design, target=_shape(design.target))
-    return (
-        *((f.name, getattr(asked, f.name)) for f in fields(design) if f.name not in left_out),
-        *(plans[p] for p in _PLANS[step]),
+    return fingerprint(
+        [
+            step,
+            {f.name: getattr(asked, f.name) for f in fields(design) if f.name not in left_out},
+            [plans[p] for p in _PLANS[step]],
+        ]
     )
 
 
@@ -62,30 +67,39 @@ def _shape(target: TargetDesign) -> TargetDesign:
     return replace(target, return_loss_db=0.0)
 
 
-@dataclass(slots=True)
-class _Done:
-    """A step that was run: its inputs, its files with their checksums, and what it left in memory."""
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Done:
+    """A step that was run: its inputs, its files with their checksums, and what else it gave."""
 
-    given: tuple[object, ...]
+    given: str
     files: tuple[tuple[Entry, str], ...]
     left: dict[str, Any]
 
 
+class Shelf(Protocol):
+    """Where solves are kept from process to process, by the fingerprint of what was solved."""
+
+    def solved(self, key: str) -> Prediction | None: ...
+
+    def keep_solved(self, key: str, prediction: Prediction) -> None: ...
+
+
 @dataclass(slots=True)
 class Kept:
-    """Holds the last build's steps and its solves. `pack`: where their files lie by now."""
+    """The steps and the solve of the last build. pack: where their files lie by now."""
 
     pack: Path | None = None
     reused: list[str] = field(default_factory=list)  # steps of the last build that were not run again
-    _steps: dict[str, _Done] = field(default_factory=dict)
-    _solved: dict[str, Prediction] = field(default_factory=dict)
+    steps: dict[str, Done] = field(default_factory=dict)
+    solves: dict[str, Prediction] = field(default_factory=dict)
+    shelf: Shelf | None = None
 
-    def recall(self, step: str, given: tuple[object, ...] | None, root: Path) -> dict[str, Any] | None:
+    def recall(self, step: str, given: str | None, root: Path) -> dict[str, Any] | None:
         """Put the step's files into `root` again and give what it left; None when it has to be run."""
-        done = self._steps.get(step)
+        done = self.steps.get(step)
         if done is None or given is None or self.pack is None or done.given != given:
             return None
-        if any(_sha256(self.pack / entry.path) != digest for entry, digest in done.files):
+        if any(_digest(self.pack / entry.path) != digest for entry, digest in done.files):
             return None
         for entry, _ in done.files:
             target = root / entry.path
@@ -95,35 +109,34 @@ class Kept:
         return done.left
 
     def remember(
-        self,
-        step: str,
-        given: tuple[object, ...] | None,
-        root: Path,
-        entries: list[Entry],
-        left: dict[str, Any],
+        self, step: str, given: str | None, root: Path, entries: list[Entry], left: dict[str, Any]
     ) -> None:
         """Note a step that was run just now."""
         if given is not None:
-            files = tuple((entry, _sha256(root / entry.path)) for entry in entries)
-            self._steps[step] = _Done(given=given, files=files, left=left)
+            files = tuple((entry, sha256(root / entry.path)) for entry in entries)
+            self.steps[step] = Done(given=given, files=files, left=left)
 
     def solve(self, design: Design, model: Model, predict: Callable[[], Prediction]) -> Prediction:
         """The prediction of a model; solved once for all designs that come to the same model and target."""
         from wavejig.field.from_design import reference_plane
 
-        told = json.dumps(
-            [model.to_dict(), repr(_shape(design.target)), reference_plane(design)], sort_keys=True
-        )
-        key = hashlib.sha256(told.encode()).hexdigest()
-        if key in self._solved:
+        told = json.dumps(model.to_dict(), sort_keys=True)
+        key = fingerprint([told, _shape(design.target), reference_plane(design)])
+        found = self.solves.get(key)
+        if found is None and self.shelf is not None:
+            found = self.shelf.solved(key)
+        if found is not None:
             self.reused.append("field solve")
         else:
-            self._solved = {key: predict()}  # the last one only: memory stays small over a day of saving
-        return replace(self._solved[key], design_name=design.name, wanted_db=design.target.return_loss_db)
+            found = predict()
+            if self.shelf is not None:
+                self.shelf.keep_solved(key, found)
+        self.solves = {key: found}  # the last one only: memory stays small over a day of saving
+        return replace(found, design_name=design.name, wanted_db=design.target.return_loss_db)
 
 
-def _sha256(path: Path) -> str:
+def _digest(path: Path) -> str:
     try:
-        return hashlib.sha256(path.read_bytes()).hexdigest()
+        return sha256(path)
     except OSError:
         return ""

@@ -1,14 +1,14 @@
-"""manifest.json: every file of a pack with its size and checksum, and the versions that made it."""
+"""manifest.json: every file of a pack with its size and checksum, and what the pack was made from."""
 
 from __future__ import annotations
 
-import hashlib
 import json
 from dataclasses import dataclass
 from pathlib import Path
 from typing import Any
 
 from wavejig.files.errors import FileCheckError
+from wavejig.files.origin import MANIFEST, differing, sha256
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -21,8 +21,10 @@ class Entry:
     units: str
 
 
-def write_manifest(root: Path, entries: list[Entry], versions: dict[str, str]) -> None:
-    """Write manifest.json over the given files of `root`, sorted by path."""
+def write_manifest(
+    root: Path, entries: list[Entry], versions: dict[str, str], made: dict[str, Any] | None = None
+) -> None:
+    """Write manifest.json over the given files of `root`, sorted by path. made: as of `origin.made_from`."""
     files = [
         {
             "path": e.path,
@@ -30,12 +32,14 @@ def write_manifest(root: Path, entries: list[Entry], versions: dict[str, str]) -
             "part": e.part,
             "units": e.units,
             "bytes": (root / e.path).stat().st_size,
-            "sha256": _sha256(root / e.path),
+            "sha256": sha256(root / e.path),
         }
         for e in sorted(entries, key=lambda e: e.path)
     ]
-    text = json.dumps({"files": files, "versions": versions}, indent=1)
-    (root / "manifest.json").write_text(text + "\n", encoding="utf-8", newline="\n")
+    data: dict[str, Any] = {"files": files, "versions": versions}
+    if made is not None:
+        data["made"] = made
+    (root / MANIFEST).write_text(json.dumps(data, indent=1) + "\n", encoding="utf-8", newline="\n")
 
 
 def check_manifest(root: Path) -> dict[str, Any]:
@@ -43,21 +47,12 @@ def check_manifest(root: Path) -> dict[str, Any]:
 
     Raises FileCheckError naming the first file that is missing, changed or extra.
     """
-    path = root / "manifest.json"
-    data: dict[str, Any] = json.loads(path.read_text(encoding="utf-8"))
-    listed = {f["path"] for f in data["files"]}
-    found = {p.relative_to(root).as_posix() for p in root.rglob("*") if p.is_file()} - {"manifest.json"}
-    for extra in sorted(found - listed):
-        raise FileCheckError(root / extra, "a file the manifest does not list", "only listed files")
-    for entry in data["files"]:
-        file = root / entry["path"]
-        if not file.is_file():
-            raise FileCheckError(file, "nothing", "a file the manifest lists")
-        if file.stat().st_size != entry["bytes"] or _sha256(file) != entry["sha256"]:
-            raise FileCheckError(file, "other bytes", f"sha256 {entry['sha256']}")
+    data: dict[str, Any] = json.loads((root / MANIFEST).read_text(encoding="utf-8"))
+    digests = {f["path"]: f["sha256"] for f in data["files"]}
+    for name, what in differing(root, data):
+        if what == "extra":
+            raise FileCheckError(root / name, "a file the manifest does not list", "only listed files")
+        if what == "missing":
+            raise FileCheckError(root / name, "nothing", "a file the manifest lists")
+        raise FileCheckError(root / name, "other bytes", f"sha256 {digests[name]}")
     return data
-
-
-def _sha256(path: Path) -> str:
-    with path.open("rb") as stream:
-        return hashlib.file_digest(stream, "sha256").hexdigest()

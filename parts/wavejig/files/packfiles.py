@@ -28,8 +28,10 @@ from wavejig.files.kept import Kept, inputs
 from wavejig.files.making_json import Made
 from wavejig.files.manifest import Entry, check_manifest, write_manifest
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
+from wavejig.files.origin import RECIPE
 from wavejig.files.printable import BED_MARGIN_MM, Printability, require_printable
-from wavejig.files.step import NamedSolid, write_step
+from wavejig.files.steady import SteadySolid, steady
+from wavejig.files.step import write_step
 from wavejig.files.stepcheck import check_step
 from wavejig.files.steps import check_steps, write_steps
 from wavejig.files.stl import check_stl, write_stl
@@ -106,7 +108,7 @@ class PackFiles:
         self.prediction: Prediction | None = None
         self.bend_order = BendOrder(pieces=())
         self.entries: list[Entry] = []
-        self.assembly: list[NamedSolid] = []
+        self.assembly: list[SteadySolid] = []
         self.pictured: list[tuple[ColouredMesh, str]] = []  # and "antenna", or the part it is a tool for
         self.prints: list[tuple[str, int, Printability]] = []
         self.printed: list[tuple[PrintPiece, Mesh, Measure]] = []  # counts for one set of spacers
@@ -154,9 +156,11 @@ class PackFiles:
         self._found(left["findings"])
         self.bend_order = left["bend_order"]
 
-    def finish(self, versions: dict[str, str]) -> None:
-        """The manifest, and the last look at the whole folder."""
-        write_manifest(self.root, self.entries, versions)
+    def finish(self, recipe: bytes, versions: dict[str, str], made: dict[str, Any]) -> None:
+        """The recipe's own text, the manifest, and the last look at the whole folder."""
+        (self.root / RECIPE).write_bytes(recipe)
+        self._note(RECIPE, "toml", "design", "")
+        write_manifest(self.root, self.entries, versions, made)
         check_manifest(self.root)
 
     def totals(self) -> tuple[int, int]:
@@ -170,10 +174,10 @@ class PackFiles:
         """radiator.step, radiator.dxf, bend-table.csv."""
         metal = _METAL_COLOURS.get(self.design.radiator.metal.name, _OTHER_METAL)
         solids = [
-            NamedSolid(
-                name=f"radiator {p.role}" if p.role != "tube" else "tube",
-                shape=piece_solid(p),
-                colour=metal if p.role not in ("tube", "inner") else _METAL_COLOURS["copper"],
+            steady(
+                f"radiator {p.role}" if p.role != "tube" else "tube",
+                piece_solid(p),
+                metal if p.role not in ("tube", "inner") else _METAL_COLOURS["copper"],
             )
             for p in self.radiator.pieces
         ]
@@ -199,7 +203,7 @@ class PackFiles:
         A dish of the user's own is only drilled: own.step, and its floor with what is drilled where.
         """
         metal = _METAL_COLOURS.get(self.design.reflector.metal.name, _OTHER_METAL)
-        solid = NamedSolid(name="reflector", shape=tray_solid(self.tray), colour=metal)
+        solid = steady("reflector", tray_solid(self.tray), metal)
         own = self.tray.own is not None
         self._step([solid], "reflector/own.step" if own else "reflector/tray.step", "reflector")
         self.assembly.append(solid)
@@ -229,7 +233,7 @@ class PackFiles:
         """The printed standoff."""
         for part in spacer_printables(self.design, self.radiator, self.spacer):
             self._printable(part.name, part.solid, "spacer")
-            self.assembly.append(NamedSolid(name=part.name, shape=part.placed(), colour=_PLASTIC))
+            self.assembly.append(steady(part.name, part.placed(), _PLASTIC))
         # drawn as they are made, not sprung open, so they are not part of the assembly
         shapes = {part.name: part for part in spacer_hold_downs(self.design, self.spacer)}
         counts = Counter(h.name for h in self.spacer.hold_downs)
@@ -265,7 +269,7 @@ class PackFiles:
         """The antenna put together, for the eye: STEP and GLB."""
         self._step(self.assembly, "assembly.step", "assembly")
         pieces: list[tuple[ColouredMesh, Measure]] = []
-        for solid in self.assembly:
+        for solid in (s.named() for s in self.assembly):
             mesh = tessellate(solid.shape, name=solid.name)
             pieces.append((ColouredMesh(mesh=mesh, colour=solid.colour), measure(solid.shape)))
         self.pictured += [(piece, "antenna") for piece, _ in pieces]
@@ -333,7 +337,9 @@ class PackFiles:
 
     def _printable(self, name: str, shape: Any, part: str, count: int = 1, *, shown: bool = False) -> None:
         """STEP, STL and 3MF of one printed piece, which must print without support on the given bed."""
-        self._step([NamedSolid(name=name, shape=shape, colour=_PLASTIC)], f"{part}/{name}.step", part)
+        solid = steady(name, shape, _PLASTIC)
+        self._step([solid], f"{part}/{name}.step", part)
+        shape = solid.named().shape
         mesh, figures = tessellate(shape, name=name), measure(shape)
         printer = self.design.printer
         bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
@@ -365,8 +371,8 @@ class PackFiles:
         )
         self.printed.append((piece, mesh, figures))
 
-    def _step(self, solids: list[NamedSolid], name: str, part: str) -> None:
-        path = self._path(name)
+    def _step(self, made: list[SteadySolid], name: str, part: str) -> None:
+        path, solids = self._path(name), [solid.named() for solid in made]
         write_step(solids, path, f"{self.design.name} {part}")
         check_step(path, solids)
         self._note(name, "step", part, "mm")

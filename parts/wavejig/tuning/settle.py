@@ -43,21 +43,24 @@ def kept(recipe: Recipe) -> Settled:
     return Settled(design=tuned_design(recipe, values), how="kept")
 
 
-def settle(recipe: Recipe, told: Told = lambda _: None, announce: Told = lambda _: None) -> Settled:
-    """The tuned design, from the cache or worked out now and kept.
+def settle(
+    recipe: Recipe, told: Told = lambda _: None, announce: Told = lambda _: None, *, anew: bool = False
+) -> Settled:
+    """The tuned design, from the cache (anew: not from there) or worked out now and kept.
 
     told: after each solve. Where the start cannot be made, or cannot be solved, the start comes back as it
     is: its findings, or the prediction, say why. Raises RecipeError.
     """
     found = kept(recipe)
-    if found.how != "start":
+    if found.how == "given" or (found.how == "kept" and not anew):
         return found
+    start = Settled(design=resolve(recipe), how="start")
     from wavejig.field.errors import ModelError
     from wavejig.tuning.tune import CannotStartError, tune
 
     try:
         answer = tune(recipe, aim=AIM, grid_mm=GRID_MM, told=told, announce=announce)
     except (CannotStartError, ModelError):
-        return found
+        return start
     cache.save(recipe, AIM, GRID_MM, answer.values)
     return Settled(design=tuned_design(recipe, answer.values), how="tuned", tuned=answer)
