@@ -134,7 +134,7 @@ def _free_spot(
     if np.any(low > high):
         return None
     xs, ys = (np.unique([*np.arange(a, b, step), b, (a + b) / 2.0]) for a, b in zip(low, high, strict=True))
-    spots = np.array([(x, y) for x in xs for y in ys])
+    spots = np.stack(np.meshgrid(xs, ys, indexing="ij"), axis=-1).reshape(-1, 2)
     free = np.ones(len(spots), dtype=bool)
     for hole in tray.holes:
         off = np.maximum(np.abs(spots - (hole.x_mm, hole.y_mm)) - half, 0.0)
