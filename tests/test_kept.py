@@ -2,20 +2,26 @@
 
 from __future__ import annotations
 
-import copy
 import hashlib
 import json
-import re
+import os
+import resource
 import shutil
+import subprocess
+import sys
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
 import numpy as np
 import pytest
-import trimesh
 
 from tests.yard import YARD
-from wavejig.pack import build
+from wavejig.files import origin, record
+from wavejig.files.fingerprint import fingerprint
+from wavejig.files.kept import Kept
+from wavejig.files.manifest import Entry, check_manifest
+from wavejig.pack import build, retell
 
 # What is changed, and what of the earlier build must have been taken over (more may be).
 PAPER = (
@@ -41,46 +47,43 @@ CHANGES = [
         ("[cutter]", '[tolerances]\nside = "0.2 mm"\nbend_angle = "0.5 deg"\n[cutter]'), {"radiator", "field solve"},
         id="tolerances", marks=pytest.mark.slow,
     ),
+    pytest.param(
+        ("[cutter]", '[spacer]\nmaterial = "ASA"\n[cutter]'), {"radiator", "reflector", "fixture", "field solve"},
+        id="spacer",
+    ),
+    pytest.param(
+        ('["5.725 GHz", "5.875 GHz"]', '["5.730 GHz", "5.870 GHz"]'), {"fixture"}, id="band", marks=pytest.mark.slow
+    ),
+    pytest.param(
+        ("[printer]", '[printer]\nbed = ["120 mm", "120 mm", "120 mm"]'), {"radiator", "reflector", "field solve"},
+        id="bed", marks=pytest.mark.slow,
+    ),
     pytest.param(('"yard-5g8"', '"lawn-5g8"'), {"field solve"}, id="name", marks=pytest.mark.slow),
 ]  # fmt: skip
 
 
-def tree(folder: Path) -> dict[str, object]:
-    """Every file's content. Where the kernel cuts a face into triangles one way or another from build to build in one
-    process (the corners are the same), the corners are compared, and the page without its meshes."""
-    out: dict[str, object] = {}
-    for path in folder.rglob("*"):
-        name = path.relative_to(folder).as_posix()
-        if path.suffix in (".stl", ".3mf"):
-            corners = np.vstack([m.vertices for m in trimesh.load_scene(path).geometry.values()])
-            out[name] = np.unique(corners.round(4), axis=0).tobytes()
-        elif name == "report.html":
-            head, _, rest = path.read_text(encoding="utf-8").partition('id="parts-data">')
-            sizes = re.sub(r"[0-9.]+ [kM]?B<", "<", head + rest.partition("</script>")[2])
-            out[name] = re.sub(r"files, [0-9.]+ MB", "", sizes)
-        elif name == "manifest.json":
-            out[name] = sorted(
-                f["path"] + f["kind"] + f["part"] for f in json.loads(path.read_text())["files"]
-            )
-        elif path.is_file():
-            out[name] = hashlib.sha256(path.read_bytes()).hexdigest()
-    return out
+def tree(folder: Path) -> dict[str, str]:
+    """Every file's digest."""
+    return {
+        path.relative_to(folder).as_posix(): hashlib.sha256(path.read_bytes()).hexdigest()
+        for path in folder.rglob("*")
+        if path.is_file()
+    }
 
 
-def earlier(yard: tuple[Path, Any], out: Path) -> Any:
-    """The memory of the small pack's build, with a copy of that pack to take files from."""
+def earlier(yard: tuple[Path, Any], out: Path) -> Kept:
+    """What the small pack's build left, with a copy of that pack to take files from; once through the disk."""
     folder, memory = yard
-    memory = copy.copy(memory)
-    memory._steps, memory._solved, memory.reused = dict(memory._steps), dict(memory._solved), []
-    memory.pack = out / folder.name
-    shutil.copytree(folder, memory.pack)
-    return memory
+    shutil.copytree(folder, out / folder.name)
+    record.keep(Kept(pack=out / folder.name, steps=memory.steps))
+    kept = record.recall(out / folder.name)
+    assert kept.steps.keys() == memory.steps.keys()
+    for key, prediction in memory.solves.items():
+        record.Solved().keep_solved(key, prediction)
+    return kept
 
 
-@pytest.mark.parametrize(("change", "taken"), CHANGES)
-def test_a_rebuild_writes_what_a_fresh_build_writes(
-    change: tuple[str, str], taken: set[str], yard: tuple[Path, Any], tmp_path: Path
-) -> None:
+def changed(change: tuple[str, str]) -> str:
     assert YARD.count(change[0]) == 1
     text = YARD.replace(*change)
     if "[sheet]" in change[1]:  # tables come after the keys above them
@@ -88,8 +91,15 @@ def test_a_rebuild_writes_what_a_fresh_build_writes(
         text = (
             head.replace("quantity = 6", "quantity = 9") + change[1].split("\n", 1)[1] + "\n[target]" + rest
         )
+    return text
+
+
+@pytest.mark.parametrize(("change", "taken"), CHANGES)
+def test_a_rebuild_writes_what_a_fresh_build_writes(
+    change: tuple[str, str], taken: set[str], yard: tuple[Path, Any], tmp_path: Path
+) -> None:
     recipe = tmp_path / "yard.toml"
-    recipe.write_text(text, encoding="utf-8")
+    recipe.write_text(changed(change), encoding="utf-8")
     memory = earlier(yard, tmp_path / "again")
     again = build(recipe, tmp_path / "again", memory=memory)
     assert taken <= set(memory.reused)
@@ -97,13 +107,30 @@ def test_a_rebuild_writes_what_a_fresh_build_writes(
     one, other = tree(again.folder), tree(fresh.folder)
     assert sorted(one) == sorted(other)
     assert [name for name in one if one[name] != other[name]] == []
-    assert tree(again.folder) != tree(yard[0])
+    assert one != tree(yard[0])
     assert again.inspection.findings == fresh.inspection.findings
+
+
+def test_a_remark_changes_the_recipe_and_the_manifest_alone(yard: tuple[Path, Any], tmp_path: Path) -> None:
+    folder = tmp_path / yard[0].name
+    shutil.copytree(yard[0], folder)
+    recipe = tmp_path / "yard.toml"
+    recipe.write_text(YARD.replace("52 mm", "52.0 mm") + "# a remark\n", encoding="utf-8")
+    found = origin.look(recipe, tmp_path, field=True)
+    assert found is not None and not found.same_text
+    retell(recipe, found)
+    before, after = tree(yard[0]), tree(folder)
+    assert before.keys() == after.keys()
+    assert {name for name in after if after[name] != before[name]} == {"recipe.toml", "manifest.json"}
+    found = origin.look(recipe, tmp_path, field=True)
+    assert found is not None and found.same_text
+    check_manifest(folder)
 
 
 def test_a_pack_touched_by_hand_is_not_taken_over(yard: tuple[Path, Any], tmp_path: Path) -> None:
     memory = earlier(yard, tmp_path)
-    done = memory._steps["radiator"]
+    assert memory.pack is not None
+    done = memory.steps["radiator"]
     (tmp_path / "stage").mkdir()
     assert memory.recall("radiator", done.given, tmp_path / "stage") is not None
     table = memory.pack / "radiator" / "bend-table.csv"
@@ -111,3 +138,160 @@ def test_a_pack_touched_by_hand_is_not_taken_over(yard: tuple[Path, Any], tmp_pa
     assert memory.recall("radiator", done.given, tmp_path / "stage") is None
     table.unlink()
     assert memory.recall("radiator", done.given, tmp_path / "stage") is None
+
+
+# -- what is there already --------------------------------------------------------------------------------
+
+
+def cut_short(pack: Path) -> None:
+    (pack / "design.json").write_bytes((pack / "design.json").read_bytes()[:-2])
+
+
+def edited(pack: Path) -> None:
+    table = pack / "radiator" / "bend-table.csv"
+    table.write_bytes(table.read_bytes().replace(b"1", b"2", 1))  # of the same length
+
+
+def added(pack: Path) -> None:
+    (pack / "fixture" / "more.stl").write_text("")
+
+
+def gone(pack: Path) -> None:
+    (pack / "report.html").unlink()
+
+
+def linked(pack: Path) -> None:
+    shutil.move(pack / "report.html", pack.parent / "elsewhere.html")
+    (pack / "report.html").symlink_to(pack.parent / "elsewhere.html")
+
+
+def in_manifest(key: str, value: Any) -> Callable[[Path], None]:
+    def change(pack: Path) -> None:
+        data = json.loads((pack / "manifest.json").read_text())
+        table, _, name = key.rpartition(".")
+        (data[table] if table else data)[name] = value
+        (pack / "manifest.json").write_text(json.dumps(data))
+
+    return change
+
+
+@pytest.mark.parametrize(
+    "touch",
+    [
+        cut_short, edited, added, gone, linked, in_manifest("made.program", "0"), in_manifest("versions.numpy", "1.0"),
+        in_manifest("made.field", False), in_manifest("made", None), in_manifest("files", [3]),
+        lambda pack: (pack / "manifest.json").write_text("[" * 100_000),
+    ],
+)  # fmt: skip
+def test_a_pack_that_is_not_what_would_be_written_is_seen_through(
+    touch: Callable[[Path], None], yard: tuple[Path, Any], tmp_path: Path
+) -> None:
+    pack = tmp_path / yard[0].name
+    shutil.copytree(yard[0], pack)
+    shutil.copy(pack / "recipe.toml", tmp_path / "r.toml")
+    assert origin.look(tmp_path / "r.toml", tmp_path, field=True) is not None
+    touch(pack)
+    assert origin.look(tmp_path / "r.toml", tmp_path, field=True) is None
+
+
+@pytest.mark.parametrize(("change", "taken"), CHANGES)
+def test_a_change_of_numbers_is_seen(
+    change: tuple[str, str], taken: set[str], yard: tuple[Path, Any], tmp_path: Path
+) -> None:
+    (tmp_path / "r.toml").write_text(changed(change), encoding="utf-8")
+    assert origin.look(tmp_path / "r.toml", yard[0].parent, field=True) is None
+    assert (
+        origin.look(yard[0] / "recipe.toml", yard[0].parent, field=False) is None
+    )  # nor is it without a field
+
+
+def test_an_unchanged_recipe_costs_less_than_half_of_loading_the_kernel(yard: tuple[Path, Any]) -> None:
+    """Processor time, which other work on the machine moves less than the clock's; the best of three each."""
+    pack = yard[0]
+    before = tree(pack), (pack / "manifest.json").stat().st_mtime_ns
+    heavy = "{'cadquery', 'OCP', 'numba', 'matplotlib', 'numpy', 'pydantic', 'trimesh'}"
+    code = (
+        "import sys\nfrom wavejig.cli import main\n"
+        "code = main(['build', sys.argv[1], '--out', sys.argv[2], '--json'])\n"
+        f"sys.exit(code or len({heavy} & set(sys.modules)))"
+    )
+    ours, kernel = [], []
+    for _ in range(3):
+        seconds, told = used([sys.executable, "-c", code, str(pack / "recipe.toml"), str(pack.parent)])
+        ours.append(seconds)
+        (data,) = json.loads(told)
+        assert data["state"] == "unchanged" and data["name"] == pack.name and data["findings"]
+        kernel.append(used([sys.executable, "-c", "import cadquery"])[0])
+    assert min(ours) < 0.5 * min(kernel)
+    assert (tree(pack), (pack / "manifest.json").stat().st_mtime_ns) == before
+
+
+def used(command: list[str]) -> tuple[float, str]:
+    """Processor seconds of a command, and what it said."""
+    before = resource.getrusage(resource.RUSAGE_CHILDREN)
+    done = subprocess.run(command, capture_output=True, text=True, check=False)
+    after = resource.getrusage(resource.RUSAGE_CHILDREN)
+    assert done.returncode == 0, done.stderr
+    return after.ru_utime + after.ru_stime - before.ru_utime - before.ru_stime, done.stdout
+
+
+# -- what is kept between processes -------------------------------------------------------------------------
+
+
+def test_a_record_that_does_not_count_is_as_none(
+    yard: tuple[Path, Any], tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    kept = earlier(yard, tmp_path)
+    assert kept.pack is not None and kept.steps
+    (file,) = (record.cache_folder() / "built").iterdir()
+    whole = file.read_bytes()
+    for data in (b"", whole[:-1], whole[:40], whole[:-1] + bytes([whole[-1] ^ 1]), b"x" + whole):
+        file.write_bytes(data)
+        assert record.recall(kept.pack).steps == {}
+    file.write_bytes(whole)
+    assert record.recall(kept.pack).steps
+    monkeypatch.setattr(record, "program", lambda: "another")
+    assert record.recall(kept.pack).steps == {}
+
+
+def test_a_record_calls_nothing(tmp_path: Path) -> None:
+    """What a pickle could do in the hands of a trusting reader."""
+
+    class Evil:
+        def __reduce__(self) -> Any:
+            return os.mkdir, (str(tmp_path / "made"),)
+
+    for value in (Evil(), {"radiator": Evil()}, build, subprocess.Popen, record.cache_folder):
+        record._write(record._place(tmp_path / "pack"), value)
+        assert record.recall(tmp_path / "pack").steps == {}
+    assert not (tmp_path / "made").exists()
+
+
+def test_the_least_used_is_thrown_away_first(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(record, "MOST_BYTES", 2500)
+    for age, name in enumerate("abcd"):
+        path = record.cache_folder() / "built" / f"{name}.kept"
+        path.parent.mkdir(parents=True, exist_ok=True)
+        path.write_bytes(bytes(1000))
+        os.utime(path, (1e9 - age, 1e9 - age))
+    record._tidy(record.cache_folder())
+    assert sorted(p.name for p in path.parent.iterdir()) == ["a.kept", "b.kept"]
+
+
+def test_fingerprints_go_by_content() -> None:
+    same = [
+        ({"a": 1.0, "b": (2, 3)}, {"b": [2, 3], "a": 1.0}),
+        ({3, 1, 2}, {2, 3, 1}),
+        (np.arange(6.0), np.arange(12.0)[::2] / 2.0),
+    ]
+    for one, other in same:
+        assert fingerprint(one) == fingerprint(other)
+    other_than = [
+        (1.0, 1), (0.0, -0.0), (0.1 + 0.2, 0.3), ("1", 1), (["ab", "c"], ["a", "bc"]), ([1, [2]], [[1], 2]),
+        (np.zeros(4), np.zeros((2, 2))), (np.zeros(2), np.zeros(2, dtype=np.float32)), (None, "None"), (True, 1),
+        (Entry(path="a", kind="b", part="", units=""), Entry(path="a", kind="", part="b", units="")),
+    ]  # fmt: skip
+    for one, other in other_than:
+        assert fingerprint(one) != fingerprint(other), (one, other)
+    with pytest.raises(TypeError):
+        fingerprint(object())
