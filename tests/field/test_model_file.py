@@ -83,7 +83,7 @@ WIRE = {"start": [0, 0, 0], "end": [0, 0, 1], "radius": 0.1}
 
 BAD = [
     ([], "the file"),
-    ({"wire": []}, "unknown key 'wire'"),
+    ({"wire": []}, 'unknown key "wire"'),
     ({"wires": {}}, "wires: need a list"),
     ({"wires": [1]}, "wires[0]"),
     ({"wires": [WIRE, {"start": [0, 0, 0], "radius": 1}]}, "wires[1]: 'end' is missing"),
@@ -92,7 +92,7 @@ BAD = [
     ({"wires": [{**WIRE, "radius": None}]}, "wires[0].radius"),
     ({"wires": [{**WIRE, "radius": True}]}, "wires[0].radius"),
     ({"wires": [{**WIRE, "radius": float("inf")}]}, "wires[0].radius"),
-    ({"wires": [{**WIRE, "diameter": 1}]}, "unknown key 'diameter'"),
+    ({"wires": [{**WIRE, "diameter": 1}]}, 'unknown key "diameter"'),
     ({"wires": [{**WIRE, "conductivity": "copper"}]}, "wires[0].conductivity"),
     ({"wires": [{**WIRE, "insulation": 2}]}, "wires[0].insulation"),
     ({"wires": [{**WIRE, "insulation": {"permittivity": 2}}]}, "'outer_radius' is missing"),
@@ -119,8 +119,43 @@ def test_malformed_files_are_named_by_key(data: object, says: str, tmp_path: Pat
 def test_files_that_are_no_json(content: bytes, tmp_path: Path) -> None:
     path = tmp_path / "m.json"
     path.write_bytes(content)
-    with pytest.raises(ModelError, match=r"m\.json: not a readable JSON file"):
+    with pytest.raises(ModelError, match=r"m\.json(:1)?: not a readable JSON file"):
         Model.load(path)
+
+
+def test_faults_are_told_with_their_line(tmp_path: Path) -> None:
+    """In the last wire's end, in a file laid out over lines; other wires' values look alike."""
+    wires = [WIRE, {**WIRE, "insulation": {"a]": [1, "}"], "outer_radius": 1}}, {**WIRE, "end": [0, 0, "1"]}]
+    path = tmp_path / "m.json"
+    for n, key in ((1, "insulation: unknown key"), (2, "end: need a finite number")):
+        chosen = [WIRE, wires[n]]
+        text = json.dumps({"plane": None, "wires": chosen}, indent=1)
+        path.write_text(text, encoding="utf-8")
+        with pytest.raises(ModelError) as caught:
+            Model.load(path)
+        line = text.split("\n").index('   "insulation": {' if n == 1 else '   "end": [', 10) + 1
+        assert str(caught.value).startswith(f"file: {path}:{line}: wires[1].{key}")
+
+
+@pytest.mark.parametrize(
+    ("text", "says"),
+    [
+        ('{"wires": [], "wires": []}', 'the key "wires" stands twice'),
+        ("[" * 100_000, "too deep"),
+        ('{"sheet_conductivity": ' + "9" * 5000 + "}", "sheet_conductivity: need a finite number, got inf"),
+        ('{"plane": {"z": 0}}', "plane: need null or"),
+        ('{"ports": [{"wire": 99999999, "end": 0}]}', "ports[0].wire: need a whole number"),
+        ('{"triangles": [' + "[]," * 30_000 + "[]]}", "at most 20000"),
+        ('{"triangles": [' + "[]," * 300_000 + "[]]}", "too large"),
+        (" " * 5_000_000, "too large"),
+    ],
+)
+def test_files_beyond_every_use_are_refused(text: str, says: str, tmp_path: Path) -> None:
+    path = tmp_path / "m.json"
+    path.write_text(text, encoding="utf-8")
+    with pytest.raises(ModelError) as caught:
+        Model.load(path)
+    assert caught.value.code == "file" and says in str(caught.value)
 
 
 def test_a_file_that_is_not_there(tmp_path: Path) -> None:

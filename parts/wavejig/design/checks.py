@@ -3,10 +3,14 @@
 from __future__ import annotations
 
 import math
+from itertools import pairwise
 
 from wavejig.design.model import own_inset_mm
 from wavejig.recipe.errors import Problem, show
 from wavejig.recipe.models import Recipe
+
+_RIGHT_BACK = math.cos(math.radians(179.0))  # of a turn: no radius rounds such a corner
+_LEAST_GAP_MM = 0.01  # between the terminals: as for the feed gap of the other families
 
 
 def contradictions(recipe: Recipe) -> list[Problem]:
@@ -159,6 +163,16 @@ class _Checker:
                 f"2 to {len(corners) - 1} for a path that returns to its first corner",
                 "Say which corner is the ground terminal.",
             )
+        if closed and ground is not None and 2 <= ground <= len(corners) - 1:
+            last = corners[ground - 1]
+        if (not closed or ground is not None) and math.dist(first[:2], last[:2]) < _LEAST_GAP_MM:
+            self._problem(
+                "radiator.corners",
+                f"both terminals at {first[0]:g}, {first[1]:g} mm",
+                "a pin terminal and a ground terminal side by side, seen from the front",
+                "The first corner is the pin terminal; the ground terminal is the last, or ground_corner.",
+            )
+        self._turns([(*c, 0.0)[:3] for c in corners])
         if ground is not None and (not closed or not 2 <= ground <= len(corners) - 1):
             self._problem(
                 "radiator.ground_corner",
@@ -166,3 +180,24 @@ class _Checker:
                 f"2 to {len(corners) - 1}, for a path whose last corner is its first again",
                 "Without it the last corner is the ground terminal.",
             )
+
+    def _turns(self, corners: list[tuple[float, ...]]) -> None:
+        """Corners between which there is no side, or at which a side goes right back along the one before."""
+        sides = [[b - a for a, b in zip(*pair, strict=True)] for pair in pairwise(corners)]
+        for n, side in enumerate(sides, start=1):
+            if math.hypot(*side) < _LEAST_GAP_MM:
+                self._problem(
+                    f"radiator.corners[{n}]",
+                    f"the place of corner {n} again",
+                    "corners in different places",
+                    "Leave one of the two out.",
+                )
+        for n, (u, v) in enumerate(pairwise(sides), start=1):
+            size = math.hypot(*u) * math.hypot(*v)
+            if size > 0.0 and sum(a * b for a, b in zip(u, v, strict=True)) / size < _RIGHT_BACK:
+                self._problem(
+                    f"radiator.corners[{n}]",
+                    "a corner where the wire goes right back",
+                    "turns of less than half a circle",
+                    "Move the next corner aside.",
+                )

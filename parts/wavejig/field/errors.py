@@ -5,12 +5,15 @@ from __future__ import annotations
 from dataclasses import dataclass
 from typing import Literal
 
+from wavejig.recipe.errors import cut, visible
+
+_LONGEST = 600  # of a message; what a model file holds may be longer
 
 class ModelError(ValueError):
     """A model that cannot be solved; code names what is wrong, the text says where and what to do."""
 
     def __init__(self, code: str, message: str) -> None:
-        super().__init__(f"{code}: {message}")
+        super().__init__(cut(visible(f"{code}: {message}"), _LONGEST))
         self.code = code
 
 

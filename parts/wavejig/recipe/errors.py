@@ -8,6 +8,7 @@ from dataclasses import dataclass
 from pathlib import Path
 
 _LONGEST_SHOWN = 60
+_LONGEST_PART = 600  # of a message; what a recipe holds may be longer
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -20,9 +21,15 @@ class Problem:
     fix: str
     line: int = 0
 
+    def __post_init__(self) -> None:
+        """Whatever of the file's text came along, a message is one line of letters a terminal only shows."""
+        for name in ("key", "read", "allowed", "fix"):
+            object.__setattr__(self, name, cut(visible(getattr(self, name)), _LONGEST_PART))
+
     def text(self, path: Path | str) -> str:
         """The fault as one message, `file:line: key: read ...; allowed ...; fix`."""
-        where = f"{path}:{self.line}" if self.line else f"{path}"
+        name = visible(str(path))
+        where = f"{name}:{self.line}" if self.line else name
         read = f" read {self.read};" if self.read else ""
         return f"{where}: {self.key}:{read} allowed: {self.allowed}. {self.fix}"
 
@@ -38,9 +45,35 @@ class RecipeError(ValueError):
 
 def show(value: object) -> str:
     """A value as read, on one line, cut short, with control characters made visible."""
-    text = f'"{value}"' if isinstance(value, str) else repr(value)
-    text = "".join(c if c.isprintable() else f"\\x{ord(c):02x}" for c in text)
-    return text if len(text) <= _LONGEST_SHOWN else text[: _LONGEST_SHOWN - 1] + "…"
+    if isinstance(value, str):
+        text = f'"{value}"'
+    else:
+        try:
+            text = repr(value)
+        except (RecursionError, ValueError):  # nested very deeply; an integer of thousands of digits
+            text = f"a very long {type(value).__name__}"
+    return cut(visible(text), _LONGEST_SHOWN)
+
+
+def visible(text: str, keep: str = "") -> str:
+    """The text with every character written out that a terminal would obey and not show.
+
+    Those are control characters (colours, cursor moves), marks that turn the direction of writing, line
+    separators, and halves of characters. keep: some of them that may stand, as a line feed.
+    """
+    if text.isprintable():
+        return text
+    return "".join(c if c.isprintable() or c in keep else _spelt(c) for c in text)
+
+
+def _spelt(c: str) -> str:
+    code = ord(c)
+    return f"\\x{code:02x}" if code < 0x100 else f"\\u{code:04x}" if code < 0x10000 else f"\\U{code:08x}"
+
+
+def cut(text: str, most: int) -> str:
+    """The text, its end replaced by an ellipsis where it is longer than `most` characters."""
+    return text if len(text) <= most else text[: most - 1] + "…"
 
 
 def nearest(word: str, choices: Iterable[str]) -> str | None:

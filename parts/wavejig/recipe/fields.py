@@ -6,7 +6,6 @@ itself to the JSON Schema so that an editor can help while the person types.
 
 from __future__ import annotations
 
-import math
 import re
 from collections.abc import Callable
 from typing import Annotated, Any, Final
@@ -109,7 +108,7 @@ def number(low: float, high: float) -> Reads:
                 f"a plain number from {low:g} to {high:g}",
                 "Write it without quotes and without a unit.",
             )
-        if not math.isfinite(value) or not low <= value <= high:
+        if not units.finite(value) or not low <= value <= high:
             raise refuse(value, f"a plain number from {low:g} to {high:g}", "Check the number.")
         return float(value)
 
@@ -125,7 +124,7 @@ def auto_number(low: float, high: float) -> Reads:
         allowed = f'a plain number from {low:g} to {high:g}, or "auto"'
         if isinstance(value, bool) or not isinstance(value, int | float):
             raise refuse(value, allowed, "Write it without quotes and without a unit.")
-        if not math.isfinite(value) or not low <= value <= high:
+        if not units.finite(value) or not low <= value <= high:
             raise refuse(value, allowed, "Check the number.")
         return float(value)
 

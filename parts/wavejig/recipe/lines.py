@@ -5,9 +5,15 @@ Assumes a text that `tomllib` has accepted, so it need not judge syntax, only wa
 
 from __future__ import annotations
 
+import re
+
 Key = tuple[str | int, ...]
 
-_BARE_END = set(" \t=.]\n\r,}#")
+_BARE = re.compile(r"[^ \t=.\]\n\r,}#]*")
+_SPACE = re.compile(r"(?:[ \t]+|#[^\n]*)*")
+_BLANK = re.compile(r"(?:[ \t\r\n]+|#[^\n]*)*")
+_SCALAR = re.compile(r"[^,\]}#\n]*")
+_QUOTED = {'"': re.compile(r'"(?:[^"\\]|\\.)*', re.DOTALL), "'": re.compile(r"'[^']*")}
 
 
 def key_lines(text: str) -> dict[Key, int]:
@@ -22,6 +28,7 @@ class _Walker:
         self.line = 1
         self.lines: dict[Key, int] = {}
         self.counts: dict[Key, int] = {}
+        self.implied: dict[Key, int] = {}  # tables that only stand in the headers of tables below them
 
     def walk(self) -> dict[Key, int]:
         table: Key = ()
@@ -36,11 +43,13 @@ class _Walker:
                     self.lines.setdefault(name, self.line)
                     name = (*name, index)
                 self.lines.setdefault(name, self.line)
+                for n in range(1, len(name)):
+                    self.implied.setdefault(name[:n], self.line)
                 table = name
                 self._advance(2 if is_array else 1)
             else:
                 self._pair(table)
-        return self.lines
+        return self.implied | self.lines
 
     def _resolve(self, name: Key) -> Key:
         """Point a header below an array of tables at the array's newest element."""
@@ -72,13 +81,11 @@ class _Walker:
             elif c == ".":
                 self._advance(1)
             else:
-                start = self.at
-                while self._peek() and self._peek() not in _BARE_END:
+                part = self._match(_BARE)
+                if part:
+                    parts.append(part)
+                else:  # cannot happen in valid TOML; never loop for ever
                     self._advance(1)
-                if self.at == start:  # cannot happen in valid TOML; never loop for ever
-                    self._advance(1)
-                else:
-                    parts.append(self.text[start : self.at])
 
     def _value(self, key: Key) -> None:
         c = self._peek()
@@ -103,12 +110,8 @@ class _Walker:
                     continue
                 self._pair(key)
             self._advance(1)
-        else:
-            start = self.at
-            while self._peek() and self._peek() not in ",]}#\n":
-                self._advance(1)
-            if self.at == start:
-                self._advance(1)
+        elif not self._match(_SCALAR):
+            self._advance(1)
 
     def _string(self) -> str:
         quote = self._peek()
@@ -128,27 +131,19 @@ class _Walker:
                 end += 1
             self._advance(end + 3 - self.at)
             return self.text[start:end]
-        start = self.at + 1
-        end = start
-        while end < len(self.text) and (
-            self.text[end] != quote or (quote == '"' and _escaped(self.text, end))
-        ):
-            end += 1
-        self._advance(end + 1 - self.at)
-        return self.text[start:end]
+        return self._match(_QUOTED[quote], closing=1)[1:]
 
     def _skip_blank(self, *, newlines: bool) -> bool:
         """Pass over spaces and comments; False at the text's end."""
-        while self.at < len(self.text):
-            c = self.text[self.at]
-            if c == "#":
-                end = self.text.find("\n", self.at)
-                self.at = len(self.text) if end < 0 else end
-            elif c in " \t" or (newlines and c in "\r\n"):
-                self._advance(1)
-            else:
-                return True
-        return False
+        self._match(_BLANK if newlines else _SPACE)
+        return self.at < len(self.text)
+
+    def _match(self, pattern: re.Pattern[str], closing: int = 0) -> str:
+        """Pass over what matches here (and as many characters that close it), which may be nothing."""
+        found = pattern.match(self.text, self.at)
+        text = found[0] if found else ""
+        self._advance(len(text) + closing)
+        return text
 
     def _peek(self) -> str:
         return self.text[self.at : self.at + 1]

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import functools
 import re
 import tomllib
 from collections.abc import Iterable, Mapping
@@ -11,12 +12,27 @@ from typing import Any
 
 from pydantic import BaseModel, ValidationError
 
-from wavejig.recipe.errors import Problem, RecipeError, show, spelling_fix
+from wavejig.recipe.errors import Problem, RecipeError, show, spelling_fix, visible
 from wavejig.recipe.lines import Key, key_lines
 from wavejig.recipe.models import Recipe
+from wavejig.recipe.plainfile import read_plain
 
 # A recipe with 120 corners and 200 holes, all commented, is under 40 kB; more is not a recipe.
 MOST_BYTES = 256 * 1024
+# Told at once; more of them come from a file that is no recipe at all, and nobody would read them.
+_MOST_PROBLEMS = 40
+_MOST_COMMAS = 20_000  # of a recipe's longest lists, 200 holes and 120 corners, there are under 2,000
+# Our keys have three parts at most (`feed.calliper.nut`). The standard reader's time grows with the square of
+# their number, so that a key of a hundred thousand parts would keep it busy for hours.
+_MARKS = (
+    (b"\xff\xfe\0\0", "UTF-32"),
+    (b"\0\0\xfe\xff", "UTF-32"),
+    (b"\xff\xfe", "UTF-16"),
+    (b"\xfe\xff", "UTF-16"),
+)
+_PART = r"""(?:[A-Za-z0-9_-]+|"[^"\n]*"|'[^'\n]*')"""
+_BARE = re.compile(r"[A-Za-z0-9_-]+")
+_ENDLESS_KEY = re.compile(rf"(?:^|[\[{{,])[ \t]*{_PART}(?:[ \t]*\.[ \t]*{_PART}){{20}}", re.MULTILINE)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -42,7 +58,11 @@ class RecipeFile:
             self.path,
             [
                 Problem(
-                    key=p.key, read=p.read, allowed=p.allowed, fix=p.fix, line=p.line or self.line_of(p.key)
+                    key=p.key,
+                    read=p.read,
+                    allowed=p.allowed,
+                    fix=p.fix,
+                    line=p.line or self.line_of(p.key) or 1,
                 )
                 for p in problems
             ],
@@ -55,6 +75,16 @@ def read_recipe(path: Path) -> RecipeFile:
     Raises RecipeError with every fault of the text at once; OSError when the file cannot be read.
     """
     text = _text(path)
+    if text.count(",") > _MOST_COMMAS:
+        raise RecipeError(
+            path, [_whole("lists of very many values", "lists as a recipe has them", "Shorten them.")]
+        )
+    endless = _ENDLESS_KEY.search(text)
+    if endless:
+        line = text.count("\n", 0, endless.end()) + 1
+        raise RecipeError(
+            path, [_whole("a key of very many parts", "keys of up to three parts", "Shorten it.", line)]
+        )
     try:
         data = tomllib.loads(text)
     except tomllib.TOMLDecodeError as err:
@@ -71,14 +101,12 @@ def read_recipe(path: Path) -> RecipeFile:
     try:
         recipe = Recipe.model_validate(data)
     except ValidationError as err:
-        problems = [_problem(e, lines) for e in err.errors(include_url=False)]
-        raise RecipeError(path, _unique(problems)) from err
+        raise RecipeError(path, _problems(err, lines)) from err
     return RecipeFile(path=path, recipe=recipe, lines=lines)
 
 
 def _text(path: Path) -> str:
-    with path.open("rb") as stream:
-        raw = stream.read(MOST_BYTES + 1)
+    raw = read_plain(path, MOST_BYTES)
     if len(raw) > MOST_BYTES:
         raise RecipeError(
             path,
@@ -88,14 +116,14 @@ def _text(path: Path) -> str:
                 )
             ],
         )
+    for mark, name in _MARKS:
+        if raw.startswith(mark):
+            raise RecipeError(path, [_whole(f"{name} text", "UTF-8 text", "Save the file as UTF-8.")])
+    raw = raw.removeprefix(b"\xef\xbb\xbf")  # some editors begin UTF-8 files with this mark
     if not raw.strip():
         raise RecipeError(
             path, [_whole("an empty file", "a recipe", "`wavejig new FILE` writes one to start from.")]
         )
-    for mark, name in ((b"\xff\xfe", "UTF-16"), (b"\xfe\xff", "UTF-16")):
-        if raw.startswith(mark):
-            raise RecipeError(path, [_whole(f"{name} text", "UTF-8 text", "Save the file as UTF-8.")])
-    raw = raw.removeprefix(b"\xef\xbb\xbf")  # some editors begin UTF-8 files with this mark
     try:
         text = raw.decode("utf-8")
     except UnicodeDecodeError as err:
@@ -115,8 +143,8 @@ def _text(path: Path) -> str:
     return text.replace("\r\n", "\n")
 
 
-def _whole(read: str, allowed: str, fix: str) -> Problem:
-    return Problem(key="(file)", read=read, allowed=allowed, fix=fix, line=1)
+def _whole(read: str, allowed: str, fix: str, line: int = 1) -> Problem:
+    return Problem(key="(file)", read=read, allowed=allowed, fix=fix, line=line)
 
 
 def _syntax_problem(err: tomllib.TOMLDecodeError, text: str) -> Problem:
@@ -126,8 +154,7 @@ def _syntax_problem(err: tomllib.TOMLDecodeError, text: str) -> Problem:
     rows = text.split("\n")
     row = rows[line - 1].strip() if line <= len(rows) else ""
     reason = re.sub(r"\s*\(at .*\)$", "", message)
-    reason = "".join(c if c.isprintable() else f"\\x{ord(c):02x}" for c in reason)
-    bare = re.fullmatch(r"([A-Za-z_]\w*)\s*=\s*(.*?)\s*(#.*)?", row)
+    bare = re.fullmatch(r"([A-Za-z_]\w*)\s*=\s*([^#]*?)\s*(#.*)?", row[:400])
     if "Illegal character '\\n'" in reason:
         fix = "A quote is left open on this line."
     elif "Cannot overwrite" in reason or "Cannot declare" in reason:
@@ -139,6 +166,26 @@ def _syntax_problem(err: tomllib.TOMLDecodeError, text: str) -> Problem:
     return Problem(
         key=bare[1] if bare else "(syntax)", read=show(row), allowed='TOML: key = "value"', fix=fix, line=line
     )
+
+
+def _problems(err: ValidationError, lines: Mapping[Key, int]) -> list[Problem]:
+    """The first of them, in the file's order; the last one says how many more there are."""
+    errors = err.errors(include_url=False)
+    if len(errors) > _MOST_PROBLEMS:
+        errors.sort(key=lambda e: _line(tuple(e["loc"]), lines))
+    first = [_problem(e, lines) for e in errors[:_MOST_PROBLEMS]]
+    left = len(errors) - len(first)
+    if left > 0:
+        line = _line(tuple(errors[_MOST_PROBLEMS]["loc"]), lines)
+        first.append(
+            _whole(
+                f"{left} more faults from here on",
+                "a recipe",
+                "Mend those above first; is this a recipe?",
+                line,
+            )
+        )
+    return _unique(first)
 
 
 def _problem(error: Any, lines: Mapping[Key, int]) -> Problem:
@@ -181,6 +228,7 @@ def _known_keys(table: Key) -> list[str]:
     return _all_keys().get(_dotted(tuple(p for p in table if isinstance(p, str))), list(Recipe.model_fields))
 
 
+@functools.cache
 def _all_keys() -> dict[str, list[str]]:
     out: dict[str, list[str]] = {}
 
@@ -206,9 +254,16 @@ def _line(loc: Key, lines: Mapping[Key, int]) -> int:
 def _dotted(loc: Key) -> str:
     out = ""
     for part in loc:
-        out += f"[{part}]" if isinstance(part, int) else f".{part}"
-    clean = "".join(c if c.isprintable() else f"\\x{ord(c):02x}" for c in out.lstrip("."))
+        out += (
+            f"[{part}]" if isinstance(part, int) else f".{part if _BARE.fullmatch(part) else _quoted(part)}"
+        )
+    clean = visible(out.lstrip("."))
     return clean if len(clean) <= 80 else clean[:79] + "…"
+
+
+def _quoted(part: str) -> str:
+    """As TOML writes a key that is no plain word."""
+    return f'"{part}"'
 
 
 def _unique(problems: list[Problem]) -> list[Problem]:

@@ -1,11 +1,11 @@
 """A measured sweep from a Touchstone file, or why it cannot be used.
 
-The file is read by scikit-rf; what is looked at beforehand is only what a reader would mend or pass over in
-silence: a cut-off last line, frequencies out of order, a missing option line.
+The file is looked over by `sweeptext`, then read by scikit-rf, then judged against the recipe's band.
 """
 
 from __future__ import annotations
 
+import io
 import re
 import warnings
 from dataclasses import dataclass
@@ -14,28 +14,19 @@ from pathlib import Path
 import numpy as np
 from numpy.typing import NDArray
 
+from wavejig.recipe.errors import cut, visible
+from wavejig.tuning.sweeptext import LEAST_POINTS, Looked, look_over, sweep_text
+from wavejig.tuning.sweeptext import SweepError as SweepError
+
 Array = NDArray[np.float64]
 Complex = NDArray[np.complex128]
 
-MOST_BYTES = 20_000_000  # a hundred thousand points of a two-port are less
 LEAST_IN_BAND = 5
-LEAST_POINTS = 15  # in the band and just beside it, where the fit looks
 BESIDE = 0.07  # of the frequency: how far beside the band the fit looks
 TOTAL = 0.97  # reflection at and above which nothing but a short, an open or a broken joint is seen
 NOTHING = 0.02  # reflection below which, over the whole sweep, a matched load is seen
 GAIN = 1.05  # reflection above which the calibration is wrong
-# How many numbers a point has: frequency and two for each parameter.
-_NUMBERS = {".s1p": 3, ".s2p": 9}
-_FEWEST = LEAST_POINTS
-
-
-class SweepError(ValueError):
-    """A sweep that cannot be used: the file, what is wrong, what to do."""
-
-    def __init__(self, path: Path, message: str) -> None:
-        self.path = path
-        self.message = message
-        super().__init__(f"{path}: {message}")
+_LONGEST_SERIAL = 40
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -73,11 +64,9 @@ def read_sweep(path: Path, low_hz: float, high_hz: float, reference_ohm: float) 
 
     Raises SweepError with what is wrong and what to do; OSError when the file cannot be read.
     """
-    text = _text(path)
-    _look_over(path, text)
-    f, s, resistance, comments = _parse(path)
-    _judge_frequencies(path, f, low_hz, high_hz)
-    if not (np.isfinite(s.real).all() and np.isfinite(s.imag).all()):
+    looked = look_over(path, sweep_text(path))
+    f, s, resistance = _parse(path, looked)
+    if not np.isfinite(f).all() or not (np.isfinite(s.real).all() and np.isfinite(s.imag).all()):
         raise SweepError(path, "holds values that are not numbers; export the sweep again")
     if abs(resistance - reference_ohm) > 1e-3 * reference_ohm:
         raise SweepError(
@@ -85,10 +74,11 @@ def read_sweep(path: Path, low_hz: float, high_hz: float, reference_ohm: float) 
             f"is in {resistance:.6g} ohm, the recipe's reference impedance is {reference_ohm:.6g} ohm; export it "
             "in that, or set reference_impedance in [target]",
         )
+    _judge_frequencies(path, f, low_hz, high_hz)
     _judge_reflection(path, s)
     return MeasuredSweep(
         path=path,
-        serial=serial_number(path, comments),
+        serial=serial_number(path, "\n".join(looked.remarks)),
         frequencies_hz=f,
         reflection=s,
         reference_ohm=reference_ohm,
@@ -97,91 +87,33 @@ def read_sweep(path: Path, low_hz: float, high_hz: float, reference_ohm: float) 
 
 def serial_number(path: Path, comments: str) -> str:
     """From a header line like "! serial: 7" or "! S/N 7"; else the last number in the name; else the name."""
+    # every repeat is bounded, so that no remark can keep the search busy
     told = re.search(
-        r"(?im)\b(?:serial(?:\s*(?:no|number))?|s/n|sn)\b\.?\s*[:=#]?\s*([\w-]*\d[\w-]*)", comments
+        r"(?im)\b(?:serial(?:\s{0,9}(?:no|number))?|s/n|sn)\b\.?\s{0,9}[:=#]?\s{0,9}"
+        rf"([\w-]{{0,{_LONGEST_SERIAL}}}\d[\w-]{{0,{_LONGEST_SERIAL}}})",
+        comments,
     )
     if told:
-        return told[1]
+        return cut(visible(told[1]), _LONGEST_SERIAL)
     numbers = re.findall(r"\d+", path.stem)
-    return numbers[-1] if numbers else path.stem
+    return cut(numbers[-1] if numbers else visible(path.stem), _LONGEST_SERIAL)
 
 
-def _text(path: Path) -> str:
-    with path.open("rb") as stream:
-        raw = stream.read(MOST_BYTES + 1)
-    if len(raw) > MOST_BYTES:
-        raise SweepError(path, f"is larger than {MOST_BYTES // 1_000_000} MB; is this the sweep?")
-    if path.suffix.lower() not in _NUMBERS:
-        raise SweepError(path, "is not named .s1p or .s2p; export a one-port (or two-port) Touchstone file")
-    if not raw.strip():
-        raise SweepError(path, "is empty; export the sweep again")
-    if b"\0" in raw:
-        raise SweepError(path, "is no text; export a Touchstone file, not the instrument's own format")
-    return raw.decode("utf-8", errors="replace")
-
-
-def _look_over(path: Path, text: str) -> None:
-    wanted = _NUMBERS[path.suffix.lower()]
-    options, points, before = "", 0, -np.inf
-    for number, line in enumerate(text.splitlines(), start=1):
-        content = line.split("!")[0].strip()
-        if not content or content.startswith("["):
-            continue
-        if content.startswith("#"):
-            options = options or content[1:]
-            continue
-        words = content.split()
-        try:
-            values = [float(w) for w in words]
-        except ValueError as err:
-            raise SweepError(
-                path,
-                f"line {number}: reads {content[:40]!r}, where numbers should stand; export the sweep again",
-            ) from err
-        if not options:
-            raise SweepError(
-                path,
-                "has no option line (# MHz S MA R 50) before its numbers, so their unit is unknown; add it",
-            )
-        if len(values) == 5 and wanted == 9 and points and values[0] <= before:
-            break  # a two-port's noise data, after its sweep
-        if len(values) != wanted:
-            raise SweepError(
-                path,
-                f"line {number} holds {len(values)} number{'' if len(values) == 1 else 's'}, a point of this "
-                f"file has {wanted}: it is cut short or damaged; export it again",
-            )
-        if values[0] <= before:
-            raise SweepError(
-                path,
-                f"line {number}: frequency {words[0]} does not follow {before:.10g}; the points must rise. "
-                "Sort them, or export again",
-            )
-        before, points = values[0], points + 1
-    if not options and not points:
-        raise SweepError(path, "holds no Touchstone data; export the sweep again")
-    kinds = [w.upper() for w in options.split() if w.upper() in ("S", "Y", "Z", "G", "H")]
-    if kinds and kinds[0] != "S":
-        raise SweepError(path, f"holds {kinds[0]} parameters; export S parameters")
-    if points < _FEWEST:
-        raise SweepError(
-            path, f"has {points} points, at least {_FEWEST} are needed; sweep with more (201, say)"
-        )
-
-
-def _parse(path: Path) -> tuple[Array, Complex, float, str]:
+def _parse(path: Path, looked: Looked) -> tuple[Array, Complex, float]:
     from skrf.io.touchstone import Touchstone
 
-    with warnings.catch_warnings():
+    stream = io.StringIO("\n".join(looked.lines) + "\n")
+    stream.name = path.name.lower()
+    with warnings.catch_warnings(), np.errstate(all="ignore"):
         warnings.simplefilter("ignore")  # what it would warn of has been judged, or is judged below
         try:
-            read = Touchstone(str(path))
+            read = Touchstone(stream)
             f, s = read.get_sparameter_arrays()
             resistance = complex(np.asarray(read.resistance).ravel()[0]).real
+            parameters = np.asarray(f, dtype=np.float64), np.asarray(s[:, 0, 0])
         except Exception as err:  # its parser raises whatever it stumbles over
             raise SweepError(path, f"cannot be read as Touchstone: {err}; export it again") from err
-    comments = read.get_comments() or ""
-    return np.asarray(f, dtype=np.float64), np.asarray(s[:, 0, 0]), resistance, comments
+    return *parameters, resistance if looked.reference_ohm is None else looked.reference_ohm
 
 
 def _judge_frequencies(path: Path, f: Array, low: float, high: float) -> None:
