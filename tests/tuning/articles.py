@@ -17,7 +17,7 @@ from wavejig.design import resolve
 from wavejig.pack import inspect_recipe
 from wavejig.recipe.models import Recipe
 from wavejig.tuning.asbuilt import Nominal, nominal
-from wavejig.tuning.found import LIGHT_MM_PER_S
+from wavejig.tuning.fitting import LIGHT_MM_PER_S
 from wavejig.tuning.points import random_articles
 from wavejig.tuning.solving import Job, solve_all
 from wavejig.tuning.spread import spread
@@ -38,6 +38,8 @@ NEAR = {
     "causeway-2g4-double": {"side": 29.5, "standoff": 15.35, "feed_gap": 4.0},
 }  # fmt: skip
 _PLANT_POINTS = 15
+# What a first article is out by at most when something went wrong, of the size: a line mistaken, a washer left out.
+SLIPS = {"side": 0.035, "lobe_diameter": 0.012, "standoff": 0.07, "feed_gap": 0.12}
 
 
 def near(name: str) -> tuple[Recipe, Nominal]:
@@ -83,15 +85,26 @@ class Plants:
 
 
 def plants(
-    recipe: Recipe, article: Nominal, executor: Executor, which: list[tuple[str, ...]], points: int = 201
+    recipe: Recipe,
+    article: Nominal,
+    executor: Executor,
+    which: list[tuple[str, ...]],
+    points: int = 201,
+    slips: bool = False,
 ) -> Plants:
-    """One article for each entry of `which`: the dimensions named there drawn from the spread; "*" is all."""
+    """One article for each entry of `which`: the dimensions named there drawn from the spread; "*" is all.
+
+    slips: those named are off by SLIPS instead, a seeded half to all of it either way, and all others by the spread.
+    """
     known = spread(recipe, article)
     centre = np.array([d.nominal for d in known.dimensions])
     drawn = random_articles(known.dimensions, np.random.default_rng(11).random((len(which), len(centre))))
+    rng = np.random.default_rng(12)
     for row, names in zip(drawn, which, strict=True):
         for i, name in enumerate(known.names):
-            if "*" not in names and name not in names:
+            if slips and name in names:
+                row[i] = centre[i] + rng.choice([-1.0, 1.0]) * rng.uniform(0.5, 1.0) * SLIPS[name] * centre[i]
+            elif not slips and "*" not in names and name not in names:
                 row[i] = centre[i]
     target = article.design.target
     low, high = 0.94 * target.band_low_hz, 1.06 * target.band_high_hz
@@ -115,10 +128,16 @@ def plants(
     )
 
 
-SINGLES = ("side", "standoff", "feed_gap")
+def thirty(size: str = "side") -> list[tuple[str, ...]]:
+    """Thirty plants: six of each dimension alone, six of the three together, six of everything.
+
+    size: "side" or "lobe_diameter", as the family has it.
+    """
+    singles = (size, "standoff", "feed_gap")
+    alone = [(name,) for name in singles for _ in range(6)]
+    return [*alone, *[singles] * 6, *[("*",)] * 6]
 
 
-def thirty() -> list[tuple[str, ...]]:
-    """Thirty plants: six of each dimension alone, six of the three together, six of everything."""
-    alone = [(name,) for name in SINGLES for _ in range(6)]
-    return [*alone, *[SINGLES] * 6, *[("*",)] * 6]
+def twenty(size: str = "side") -> list[tuple[str, ...]]:
+    """Twenty slips: six of the size, eight of the standoff, four of the gap, two of size and standoff."""
+    return [*[(size,)] * 6, *[("standoff",)] * 8, *[("feed_gap",)] * 4, *[(size, "standoff")] * 2]

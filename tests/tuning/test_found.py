@@ -9,7 +9,8 @@ import pytest
 
 from tests.tuning import resonator
 from tests.tuning.articles import near, plants, thirty
-from wavejig.tuning.found import LIGHT_MM_PER_S, OFFSET, Findings, find
+from wavejig.tuning.fitting import LIGHT_MM_PER_S, OFFSET
+from wavejig.tuning.found import Findings, find
 from wavejig.tuning.surface import reflection
 from wavejig.tuning.sweepfile import MeasuredSweep
 from wavejig.tuning.yields import FREQUENCY

@@ -18,7 +18,8 @@ from wavejig.recipe.models import Recipe
 from wavejig.tuning.advice import BENCH_LEVERS, RECIPE_LEVERS, propose
 from wavejig.tuning.correction import NothingToWriteError, puts
 from wavejig.tuning.measured import Measured, measure
-from wavejig.tuning.measuredtext import measured_data, measured_text
+from wavejig.tuning.measureddata import measured_data
+from wavejig.tuning.measuredtext import measured_text
 from wavejig.tuning.record import record_csv, record_text
 from wavejig.tuning.sweepfile import MeasuredSweep
 

@@ -16,7 +16,6 @@ from wavejig.commands.telling import (
     WRONG_INPUT,
     announce,
     input_error,
-    post_share,
     say,
     stop,
     unreadable,
@@ -81,25 +80,16 @@ def _measure(
 
     from wavejig.field.errors import ModelError
     from wavejig.progress import Meter
-    from wavejig.tuning.asbuilt import ArticleError, nominal
-    from wavejig.tuning.measured import measure
-    from wavejig.tuning.measuredtext import measured_data, measured_text
+    from wavejig.tuning.asbuilt import ArticleError
+    from wavejig.tuning.asked import measured_of
+    from wavejig.tuning.measureddata import measured_data
+    from wavejig.tuning.measuredtext import measured_text
     from wavejig.tuning.solving import ClusterError, workers
 
     meter = Meter(args.recipe.name, sys.stderr, quiet=args.json)
-    meter.step("meshing")
     try:
-        article = nominal(recipe_file.recipe, inspection.design).meshed()
         with workers(args.cluster) as executor:
-            found = measure(
-                recipe_file.recipe,
-                article,
-                sweeps,
-                readings,
-                executor,
-                posts=post_share(inspection),
-                told=meter.step,
-            )
+            found = measured_of(recipe_file.recipe, inspection, sweeps, readings, executor, meter.step)
     except (ArticleError, ModelError) as err:
         return stop(CANNOT_BE_MADE, f"{args.recipe}: its neighbours cannot be predicted: {err}")
     except ClusterError as err:

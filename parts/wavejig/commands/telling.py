@@ -30,16 +30,6 @@ def unreadable(path: Path, err: OSError, as_json: bool) -> dict[str, Any]:
     return {"recipe": str(path), "error": message}
 
 
-def post_share(inspection: Any) -> float:
-    """Share by which plastic posts that stay may lower the frequency; 0 without any."""
-    from wavejig.spacer.effect import post_effect
-
-    if inspection.spacer is None or inspection.radiator is None:
-        return 0.0
-    effect = post_effect(inspection.design, inspection.radiator, inspection.spacer.posts)
-    return 0.0 if effect is None else effect.shift
-
-
 def stop(code: int, message: str) -> int:
     """Say why on stderr; returns the code."""
     sys.stderr.write(f"wavejig: {message}\n")

@@ -16,7 +16,6 @@ from wavejig.commands.telling import (
     WRONG_INPUT,
     announce,
     input_error,
-    post_share,
     say,
     stop,
     unreadable,
@@ -71,30 +70,17 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
     if inspection.radiator is None or inspection.tray is None:
         return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
     from wavejig.field.errors import ModelError
-    from wavejig.tuning.asbuilt import ArticleError, nominal
-    from wavejig.tuning.explore import explore
-    from wavejig.tuning.spread import spread
+    from wavejig.tuning.asbuilt import ArticleError
+    from wavejig.tuning.asked import yield_of
     from wavejig.tuning.yielddata import yield_data
-    from wavejig.tuning.yields import find_yield
     from wavejig.tuning.yieldtext import yield_text
 
-    meter.step("meshing")
-    design = inspection.design
     try:
-        article = nominal(recipe_file.recipe, design).meshed()
-        explored = explore(
-            article,
-            spread(recipe_file.recipe, article, post_share(inspection)),
-            executor,
-            told=lambda done, of: meter.step(f"solved {done} of {of}"),
-        )
+        found = yield_of(recipe_file.recipe, inspection, executor, meter.step)
     except (ArticleError, ModelError) as err:
         return CANNOT_BE_MADE, _failed(path, f"its spread cannot be predicted: {err}")
     finally:
         meter.end()
-    meter.step("making virtual articles")
-    found = find_yield(explored, design.quantity, design.target.return_loss_db)
-    meter.end()
     code = OK if found.nominal_passes else CANNOT_BE_MADE
     if not args.json:
         say(yield_text(found))

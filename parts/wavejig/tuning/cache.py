@@ -20,6 +20,7 @@ import sys
 from collections.abc import Mapping
 from functools import cache
 from pathlib import Path
+from typing import Any
 
 from wavejig.recipe.models import Recipe
 
@@ -56,36 +57,47 @@ def key(recipe: Recipe, aim: str, grid_mm: float) -> str:
     asked["measured.frequency"] = recipe.measured.frequency
     if all(value == "auto" for name, value in asked["wire_stock"].items() if name.endswith("length")):
         del asked["wire_stock"]  # lengths that are long enough for everything refuse nothing
-    told = json.dumps([asked, aim, grid_mm, _program()], sort_keys=True)
-    return hashlib.sha256(told.encode()).hexdigest()[:32]
+    return hashed([asked, aim, grid_mm])
 
 
 def load(recipe: Recipe, aim: str, grid_mm: float) -> dict[str, float] | None:
     """The kept values (mm, deg) of this recipe, None when there are none."""
     try:
-        data = json.loads(_file(key(recipe, aim, grid_mm)).read_text(encoding="utf-8"))
-        values = {str(name): float(value) for name, value in data["values"].items()}
-    except (OSError, ValueError, KeyError, TypeError, AttributeError):
+        values = {str(n): float(v) for n, v in read("tuned", key(recipe, aim, grid_mm))["values"].items()}
+    except (ValueError, KeyError, TypeError, AttributeError):
         return None
     return values if all(math.isfinite(v) for v in values.values()) else None
 
 
 def save(recipe: Recipe, aim: str, grid_mm: float, values: Mapping[str, float]) -> None:
-    """Keep an answer. A cache that cannot be written is no reason to stop: the next build solves again."""
-    path = _file(key(recipe, aim, grid_mm))
+    """Keep an answer."""
+    write("tuned", key(recipe, aim, grid_mm), {"recipe": recipe.name, "values": dict(values)})
+
+
+def hashed(told: Any) -> str:
+    """Hash of something that is JSON, and of the program."""
+    return hashlib.sha256(json.dumps([told, _program()], sort_keys=True).encode()).hexdigest()[:32]
+
+
+def read(kind: str, name: str) -> Any:
+    """What is kept under that name; None when nothing is, or it cannot be read."""
+    try:
+        return json.loads((cache_folder() / kind / f"{name}.json").read_text(encoding="utf-8"))
+    except (OSError, ValueError):
+        return None
+
+
+def write(kind: str, name: str, data: Any) -> None:
+    """Keep it. A cache that cannot be written is no reason to stop: the next run solves again."""
+    path = cache_folder() / kind / f"{name}.json"
     beside = path.with_name(f".{path.name}.{os.getpid()}")
-    text = json.dumps({"recipe": recipe.name, "values": dict(values)}) + "\n"
     try:
         path.parent.mkdir(parents=True, exist_ok=True)
-        beside.write_text(text, encoding="utf-8")
+        beside.write_text(json.dumps(data) + "\n", encoding="utf-8")
         beside.replace(path)
     except OSError:
         with contextlib.suppress(OSError):
             beside.unlink()
-
-
-def _file(name: str) -> Path:
-    return cache_folder() / "tuned" / f"{name}.json"
 
 
 @cache

@@ -11,8 +11,9 @@ import numpy as np
 from wavejig.recipe.models import Recipe
 from wavejig.tuning.advice import BENCH_LEVERS, RECIPE_LEVERS, Proposal, new_value, propose
 from wavejig.tuning.asbuilt import Nominal
-from wavejig.tuning.explore import Explored, explore
+from wavejig.tuning.explore import Explored
 from wavejig.tuning.found import Findings, Fit, find
+from wavejig.tuning.keptsurface import explored as explored_article
 from wavejig.tuning.solving import Job, solve_all
 from wavejig.tuning.spread import NORMAL_SIGMAS, spread
 from wavejig.tuning.surface import reflection, worst_return_loss_db
@@ -97,7 +98,7 @@ def measure(
     Raises ArticleError when the articles about the design cannot be drawn.
     """
     known = spread(recipe, article, posts)
-    explored = explore(
+    explored = explored_article(
         article,
         known,
         executor,
@@ -207,9 +208,12 @@ def _solve_again(
     found = axes.centre + np.array([first.right.get(n).value for n in axes.names])
     after = axes.centre + np.array([mean.get(n, 0.0) + moved.get(n, 0.0) for n in axes.names])
     factors = explored.spread.frequency * np.array([1.0, 1.0 + share])
+    article = explored.article
+    if article.plan is None:  # the surface was kept, so nothing has been meshed yet
+        article = article.meshed()
     jobs = [
         Job(
-            nominal=explored.article,
+            nominal=article,
             values={n: float(v) for n, v in zip(axes.names, values, strict=True)},
             frequencies_hz=tuple(float(f) for f in few / factor),
         )

@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-from typing import Any
-
 import numpy as np
 
-from wavejig.tuning.found import MAIN, OFFSET, Deviation, Fit
+from wavejig.tuning.fitting import OFFSET
+from wavejig.tuning.found import MAIN, Fit
 from wavejig.tuning.measured import Article, Measured
-from wavejig.tuning.yielddata import yield_data
 from wavejig.tuning.yields import FREQUENCY
 
 _DIAGNOSED = 3  # of a batch: the worst so many
@@ -52,12 +50,14 @@ def _article(m: Measured, a: Article, *, whole: bool) -> list[str]:
     if a.strange:
         lines.append(_strange(m, right))
     lines += _table(m, right, open_, whole=whole)
+    lines += _slips(m, right)
+    lines += _open(m, right)
     lines += _vague(m, right, "")
     if open_.has(FREQUENCY) and not right.vague:
         lines += _vague(m, open_, "allowing for the model's error, ")
     if a.bench.levers:
         lines.append("  on this article:")
-        lines += [f"    {_bench(lever.key, lever.move)}" for lever in a.bench.levers]
+        lines += [f"    {bench(lever.key, lever.move)}" for lever in a.bench.levers]
         lines.append(f"    then about {a.bench.after_db:.1f} dB in place of {a.bench.before_db:.1f} dB")
     elif not a.passes:
         lines.append(
@@ -76,6 +76,25 @@ def _strange(m: Measured, fit: Fit) -> str:
     )
 
 
+def _slips(m: Measured, fit: Fit) -> list[str]:
+    """What is out by more than the process explains, and what else it may be."""
+    lines = []
+    if fit.slipped:
+        names = " and ".join(title(m, k) for k in fit.slipped)
+        lines.append(
+            f"  {names}: out by more than your tolerances explain, so something slipped. If it did on this article "
+            "only, mend the article and leave the recipe as it is"
+        )
+    for other in fit.or_else:
+        moves = " and ".join(f"{title(m, key)} {value:+.2f} mm" for key, value in other.slipped)
+        lines.append(
+            f"  or else (about {10 * round(10 * other.chance):.0f} in 100): "
+            + (moves or "nothing slipped, all of it a little of everything")
+            + "; a calliper decides it"
+        )
+    return lines
+
+
 def _table(m: Measured, right: Fit, open_: Fit, *, whole: bool) -> list[str]:
     rows = [("deviation", "most plausible", "95 % interval", "beforehand", "allowing for the model's error")]
     for d in right.deviations:
@@ -91,7 +110,7 @@ def _table(m: Measured, right: Fit, open_: Fit, *, whole: bool) -> list[str]:
                 title(m, d.key),
                 f"{d.value:+.2f}{unit}" if d.told else f"cannot tell ({d.value:+.2f}{unit})",
                 f"{low:+.2f} to {high:+.2f}",
-                f"plus or minus {1.96 * d.prior_sigma:.2f}",
+                f"plus or minus {d.before:.2f}",
                 f"{other.value:+.2f}, {other.interval[0]:+.2f} to {other.interval[1]:+.2f}",
             )
         )
@@ -111,6 +130,18 @@ def _table(m: Measured, right: Fit, open_: Fit, *, whole: bool) -> list[str]:
     return ["  " + "  ".join(c.ljust(w) for c, w in zip(r, widths, strict=True)).rstrip() for r in rows]
 
 
+def _open(m: Measured, fit: Fit) -> list[str]:
+    """What "cannot tell" means, and what helps."""
+    keys = [k for k in MAIN if fit.has(k) and fit.cannot_tell(k) and k != OFFSET]
+    if not keys:
+        return []
+    readings = " ".join(f"--reading {k}=...mm" for k in keys)
+    return [
+        "  cannot tell: the sweep leaves it hardly narrower than a first article may be off anyway, or wider than "
+        f"its tolerance. A calliper can: {readings}"
+    ]
+
+
 def _vague(m: Measured, fit: Fit, before: str) -> list[str]:
     lines = []
     for one, other, r in fit.vague:
@@ -128,7 +159,7 @@ def _mend(one: str, other: str) -> str:
     return "take them together"
 
 
-def _bench(key: str, move: float) -> str:
+def bench(key: str, move: float) -> str:
     if key == "standoff":
         if move > 0:
             return (
@@ -201,57 +232,3 @@ def _batch(m: Measured) -> list[str]:
 
 def _natural(serial: str) -> tuple[int, str]:
     return (int(serial) if serial.isdigit() else 10**9, serial)
-
-
-def measured_data(m: Measured) -> dict[str, Any]:
-    """For programs."""
-    predicted = None if m.predicted is None else yield_data(m.predicted)
-    return {
-        "name": m.explored.article.design.name,
-        "return_loss_db": m.wanted_db,
-        "passing": m.passing,
-        "articles": [_article_data(a) for a in m.articles],
-        "recipe_changes": [{"key": c.key, "now_mm": c.now, "new_mm": c.new} for c in m.changes],
-        "after_worst_return_loss_db": round(m.after_db, 2),
-        "frequency": round(m.frequency, 6),
-        "frequency_error": round(m.frequency_error, 6),
-        "solves": m.explored.solves + 2,
-        "surface_error_db": round(m.check_db, 4),
-        "predicted_yield": predicted,
-    }
-
-
-def _article_data(a: Article) -> dict[str, Any]:
-    return {
-        "serial": a.sweep.serial,
-        "sweep": a.sweep.path.name,
-        "passes": a.passes,
-        "worst_return_loss_db": round(a.worst_db, 2),
-        "worst_at_hz": a.worst_hz,
-        "predicted_db": round(a.predicted_db, 2),
-        "as_found_db": round(a.as_found_db, 2),
-        "explained": not a.strange,
-        "misfit": round(a.findings.right.misfit, 2),
-        "deviations": [_deviation_data(d) for d in a.findings.right.deviations],
-        "deviations_allowing_for_the_models_error": [_deviation_data(d) for d in a.findings.open.deviations],
-        "cannot_tell_apart": [[one, other, round(r, 3)] for one, other, r in a.findings.right.vague],
-        "cannot_tell_apart_allowing_for_the_models_error": [
-            [one, other, round(r, 3)] for one, other, r in a.findings.open.vague
-        ],
-        "on_this_article": [
-            {"key": lever.key, "move": lever.move, "unit": lever.unit, "how": _bench(lever.key, lever.move)}
-            for lever in a.bench.levers
-        ],
-    }
-
-
-def _deviation_data(d: Deviation) -> dict[str, Any]:
-    low, high = d.interval
-    return {
-        "key": d.key,
-        "unit": d.unit,
-        "value": round(d.value, 4) + 0.0,
-        "low": round(low, 4) + 0.0,
-        "high": round(high, 4) + 0.0,
-        "cannot_tell": not d.told,
-    }

@@ -6,6 +6,8 @@ import csv
 import io
 from pathlib import Path
 
+from wavejig.recipe.cells import safe_cell
+from wavejig.recipe.errors import visible
 from wavejig.tuning.found import MAIN
 from wavejig.tuning.measured import Measured
 from wavejig.tuning.measuredtext import title
@@ -30,8 +32,8 @@ def record_csv(m: Measured) -> str:
     writer.writerow(header)
     for a in m.articles:
         row = [
-            _safe(a.sweep.serial),
-            _safe(a.sweep.path.name),
+            safe_cell(a.sweep.serial),
+            safe_cell(a.sweep.path.name),
             "passes" if a.passes else "fails",
             f"{a.worst_db:.2f}",
             f"{a.worst_hz / 1e6:.3f}",
@@ -59,7 +61,7 @@ def record_text(m: Measured) -> str:
     ]
     lines += [
         f"{a.sweep.serial:<10} {'passes' if a.passes else 'FAILS':<8} {a.worst_db:>5.1f} dB "
-        f"{a.worst_hz / 1e6:>8.2f} MHz   {a.sweep.path.name}"
+        f"{a.worst_hz / 1e6:>8.2f} MHz   {visible(a.sweep.path.name)}"
         for a in m.articles
     ]
     lines += ["", f"{m.passing} of {len(m.articles)} pass"]
@@ -68,13 +70,8 @@ def record_text(m: Measured) -> str:
         moved = [
             f"{title(m, d.key)} {d.value:+.2f} {d.unit}".rstrip()
             for d in a.findings.right.deviations
-            if d.key in MAIN and d.told and abs(d.value) > 1.96 * d.sigma
+            if d.key in MAIN and d.told and not d.interval[0] <= 0.0 <= d.interval[1]
         ]
         lines.append(f"  serial {a.sweep.serial}: {', '.join(moved) or 'no deviation stands out'}")
     lines += ["", "signed ______________________", ""]
     return "\n".join(lines)
-
-
-def _safe(text: str) -> str:
-    """No cell that a spreadsheet would take for a formula."""
-    return "'" + text if text[:1] in "=+-@\t\r" else text
