@@ -228,7 +228,7 @@ def test_the_cut_list_is_enough_wire() -> None:
 def test_there_is_a_picture_of_every_bend(name: str) -> None:
     made = inspected(name)
     assert made.radiator and made.fixture
-    shown = bending.frames(made.radiator, made.fixture, None)
+    shown = bending.frames(made.design, made.radiator, made.fixture, None)
     wanted = sum(len(p.bends) for p in made.radiator.pieces if p.role != "inner")
     assert len(shown) == wanted
     assert all(f.seen.startswith("from ") for f in shown)
@@ -280,10 +280,11 @@ def test_pictures_follow_the_planned_order(held: str) -> None:
     made = inspected("ridge-868")
     assert made.radiator and made.fixture
     numbers = (1, 2, 3, 4, 5, 6, 7) if held == "start" else (7, 6, 5, 4, 3, 2, 1)
-    shown = bending.frames(made.radiator, made.fixture, planned(numbers, held))
+    shown = bending.frames(made.design, made.radiator, made.fixture, planned(numbers, held))
     assert [f.title.split()[-1] for f in shown] == [str(n) for n in numbers]
-    assert all(f"Put in pin {n}." in f.text for f, n in zip(shown, numbers, strict=True))
-    assert all(("the start side swings" in f.text) is (held == "end") for f in shown)
+    assert all(f"Put pin {n} in." in f.text for f, n in zip(shown, numbers, strict=True))
+    free = "END" if held == "start" else "START"
+    assert all(f"Swing the {free} side" in f.text for f in shown)
 
 
 def test_a_wire_held_at_its_end_is_bent_from_there() -> None:

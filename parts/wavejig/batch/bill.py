@@ -63,6 +63,8 @@ def _metal(design: Design, nest: Nest | None, wires: tuple[WirePlan, ...]) -> It
     r = design.reflector
     if nest is None:
         size = f"{r.base_x_mm:g} x {r.base_y_mm:g} mm floor"
+        if r.own is not None and r.own.shape == "round":
+            size = f"{r.base_x_mm:g} mm diameter of the floor"
         yield _pieces("own", "dish, box or lid of your own", r.metal.name, size, 1, n)
         return
     w, h = nest.stock_mm

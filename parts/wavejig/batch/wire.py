@@ -13,7 +13,7 @@ from collections.abc import Sequence
 from wavejig.batch.model import CutPattern, WirePlan
 from wavejig.design.model import Design
 from wavejig.radiator.model import Piece, Radiator
-from wavejig.radiator.stock import Stock, stock_of
+from wavejig.radiator.stock import Stock, bought_length_mm, stock_of
 
 _DUST_MM = 1e-9
 _ROUND_MM = 10.0  # a total is told to the centimetre, upwards
@@ -30,12 +30,12 @@ def wire_plans(design: Design, radiator: Radiator) -> tuple[WirePlan, ...]:
         stock = stock_of(design, piece)
         if stock is not None:
             groups.setdefault((stock.kind, round(piece.diameter_mm, 3)), (stock, []))[1].append(piece)
-    return tuple(_plan(design, stock, pieces) for stock, pieces in groups.values())
+    return tuple(_plan(design, radiator, stock, pieces) for stock, pieces in groups.values())
 
 
-def _plan(design: Design, stock: Stock, pieces: list[Piece]) -> WirePlan:
+def _plan(design: Design, radiator: Radiator, stock: Stock, pieces: list[Piece]) -> WirePlan:
     w = design.wire_stock
-    wanted = [(p.role, p.cut_length_mm, design.quantity) for p in pieces]
+    wanted = [(p.role, bought_length_mm(radiator, p), design.quantity) for p in pieces]
     total = sum((length + w.cut_loss_mm) * count for _, length, count in wanted) + w.end_waste_mm
     needed = math.ceil(total / _ROUND_MM - 1e-9) * _ROUND_MM
     tube = design.feed.tube

@@ -6,7 +6,7 @@ import math
 from dataclasses import dataclass
 
 from wavejig.design.model import Design
-from wavejig.radiator.model import Piece
+from wavejig.radiator.model import Piece, Radiator
 
 SAME_MM = 0.005
 """Diameters this near are one wire."""
@@ -19,6 +19,13 @@ class Stock:
     kind: str
     key: str
     length_mm: float | None
+
+
+def bought_length_mm(radiator: Radiator, piece: Piece) -> float:
+    """Length to cut of its stock: a tube is longer than its wall by the inner conductor that is bared."""
+    if piece.role != "tube":
+        return piece.cut_length_mm
+    return piece.cut_length_mm + sum(p.cut_length_mm for p in radiator.pieces if p.role == "inner")
 
 
 def stock_of(design: Design, piece: Piece) -> Stock | None:

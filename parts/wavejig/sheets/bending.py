@@ -1,6 +1,7 @@
 """Pictures of the bending: the wire on the board after each step, in the order it is done.
 
-On the board a wire is drawn in the board's plan. A bend off the board is drawn from its side, on its block.
+On the board a wire is drawn in the board's plan. A bend off the board is drawn from its side, on its block; one
+on the stop block from above. What is told to do are the words of the planned order, as in fixture/steps.svg.
 Lengths in mm.
 """
 
@@ -13,8 +14,10 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from wavejig.fixture.bending.model import BLOCK, BendOrder, BendStep
-from wavejig.fixture.bending.scene import CLAMP, STOP
+from wavejig.design.model import Design
+from wavejig.fixture.bending.forming import stock_wire
+from wavejig.fixture.bending.model import AT_MARK, BLOCK, BOARD, BendOrder, BendStep
+from wavejig.fixture.bending.words import instruction
 from wavejig.fixture.model import Fixture, Station
 from wavejig.geometry.path import PathBend, path_from_bends
 from wavejig.geometry.plane import Circle, Contour
@@ -26,6 +29,8 @@ from wavejig.sheets.project import outlines_of
 
 _TURNED = np.array([-1.0, 1.0, -1.0])
 _BLOCK_SHOWN_MM = 16.0  # how much straight wire a block's picture shows on either side
+# The swing's arrow stands off the former by so much, or by this share of the board's width. Taste, no source.
+_SWING_MM, _SWING_SHARE = 8.0, 0.07
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -39,7 +44,9 @@ class Frame:
     seen: str
 
 
-def frames(radiator: Radiator, fixture: Fixture, order: BendOrder | None) -> tuple[Frame, ...]:
+def frames(
+    design: Design, radiator: Radiator, fixture: Fixture, order: BendOrder | None
+) -> tuple[Frame, ...]:
     """A frame for each bend of every bent piece, in the planned order, or in the table's without one."""
     out: list[Frame] = []
     stations = {s.number: s for s in fixture.stations}
@@ -55,15 +62,47 @@ def frames(radiator: Radiator, fixture: Fixture, order: BendOrder | None) -> tup
         done: list[int] = []
         for count, (bend, step) in enumerate(steps, start=1):
             station = stations.get(bend.number) if piece is radiator.main else None
-            on_block = step.place == BLOCK if step is not None else station is None
-            before = tuple(done)
-            done.append(bend.number)
             title = f"{NAMES[piece.role]}, step {count} of {len(steps)}: bend {bend.number}"
-            if on_block or station is None:
-                out.append(_block_frame(piece, bend, step, fixture, title))
+            if step is None:
+                text = _unplanned(bend, station)
             else:
-                out.append(_board_frame(piece, bend, step, fixture, station, before, title))
+                text = instruction(step, stock_wire(design, piece), fixture, done).replace(" deg", "\u00b0")
+            if station is not None and (step is None or step.place == BOARD):
+                out.append(_board_frame(piece, bend, step, fixture, station, tuple(done), title, text))
+            else:
+                out.append(_block_frame(piece, bend, step, station, title, text))
+            done.append(bend.number)
     return tuple(out)
+
+
+def marks_to_draw(order: BendOrder | None) -> tuple[str, ...]:
+    """What is drawn on each wire before it is bent: which end is START, and marks counted from there."""
+    out = []
+    for piece in order.pieces if order is not None else ():
+        if not piece.found or not piece.steps:
+            continue
+        marks = sorted((s.mark_mm, s.number) for s in piece.steps if s.located == AT_MARK)
+        listed = ", ".join(f"{number(mm, 1)} (bend {n})" for mm, n in marks)
+        drawn = f"; draw marks at these distances from it, in mm: {listed}" if marks else ""
+        out.append(f"{NAMES[piece.piece].capitalize()}: call one cut end START, the other END{drawn}.")
+    return tuple(out)
+
+
+def _unplanned(bend: Bend, station: Station | None) -> str:
+    """What the table says of a bend, when no order has been planned."""
+    turned = ""
+    if station is not None:
+        turned = f"Turn {station.turn}. "
+    elif bend.number > 1 and abs(bend.rotation_deg) > 0.05:
+        way = "clockwise" if bend.rotation_deg > 0 else "counter-clockwise"
+        turned = (
+            f"Plane turned {number(abs(bend.rotation_deg), 1)}\u00b0 {way} from bend {bend.number - 1}'s, looking "
+            "along the wire from its start. "
+        )
+    return (
+        f"{turned}Begins {number(bend.from_start_mm, 1)} mm from the start. Bend to "
+        f"{number(bend.loaded_angle_deg, 1)}\u00b0; it springs back to {number(bend.angle_deg, 1)}\u00b0."
+    )
 
 
 def _board_frame(
@@ -74,6 +113,7 @@ def _board_frame(
     station: Station,
     before: tuple[int, ...],
     title: str,
+    text: str,
 ) -> Frame:
     from_end = step is not None and step.held == "end"
     now = laid(piece, {*before, bend.number}, bend.number, from_end=from_end)
@@ -92,51 +132,13 @@ def _board_frame(
             items.append(Text(at=s.at, text=str(s.number), height_mm=1.6, anchor="centre", shift=(0.0, -0.8)))
     items += _wire(was, piece.diameter_mm, "grey")
     items += _wire(now, piece.diameter_mm, "wire")
-    items += _swing(station)
-    clip = (x0 - 4.0, y0 - 4.0, x1 + 4.0, y1 + 4.0)
     # a long straight tail would make the board tiny: what leaves the board is shown cut off
-    text = [
-        f"Turn {station.turn}{' (the start side swings)' if from_end else ''} to "
-        f"{number(bend.loaded_angle_deg, 1)}\u00b0, "
-        f"springs back to {number(bend.angle_deg, 1)}\u00b0."
-    ]
-    if step is not None:
-        if step.pins_in or step.pins_out:
-            text.append(
-                "; ".join(
-                    f"{word} {_many(pins)}"
-                    for word, pins in (("put in", step.pins_in), ("take out", step.pins_out))
-                    if pins
-                ).capitalize()
-                + "."
-            )
-        if step.trim_first:
-            text.append("Cut the extra length off first.")
-        text.append(_located(step))
-        if step.lift_deg > 0.5:
-            text.append(f"Lift the swinging side {number(step.lift_deg, 0)}\u00b0 over what lies there.")
-    else:
-        text.append(f"Begins {number(bend.from_start_mm, 1)} mm from the start.")
+    clip = (x0 - 4.0, y0 - 4.0, x1 + 4.0, y1 + 4.0)
+    items += _swing(station, clip, from_end=from_end)
     return Frame(
-        title=title, text=" ".join(t for t in text if t), items=tuple(_cut_off(items, clip)), box=clip,
+        title=title, text=text, items=tuple(_cut_off(items, clip)), box=clip,
         seen="from above the board, the radiator face down" if fixture.face_down else "from above the board",
     )  # fmt: skip
-
-
-def _located(step: BendStep) -> str:
-    if step.located == "stop":
-        return "Cut end at the stop."
-    if step.located == "mark":
-        return f"Mark on the wire, {number(step.mark_mm, 1)} mm from the cut start, at the bend's begin."
-    return "Formed bend in its place."
-
-
-def _many(labels: tuple[int, ...]) -> str:
-    """Pins by number; labels below 1 are the stop and the clamp."""
-    pins = [str(p) for p in labels if p > 0]
-    named = [word for label, word in ((STOP, "the stop"), (CLAMP, "the clamp")) if label in labels]
-    numbered = [("pins " if len(pins) > 1 else "pin ") + ", ".join(pins)] if pins else []
-    return " and ".join(numbered + named)
 
 
 def _wire(points: np.ndarray, diameter: float, pen: Pen) -> Iterator[Item]:
@@ -144,20 +146,35 @@ def _wire(points: np.ndarray, diameter: float, pen: Pen) -> Iterator[Item]:
         yield Shape(contour=contour, holes=holes, pen=pen, filled=pen == "wire")
 
 
-def _swing(station: Station) -> Iterator[Item]:
-    """An arrow from where the free side lay to where it is pulled, along the arc about the pin."""
+def swing_rad(station: Station, *, from_end: bool) -> tuple[float, float]:
+    """Directions, seen from the pin, in which the free side runs before the bend and when it is loaded.
+
+    With the start held the end swings the way the bend turns; with the end held the start swings the other way.
+    """
+    heading, loaded = math.radians(station.heading_deg), math.radians(station.loaded_angle_deg)
+    turn = loaded if station.turn == "left" else -loaded
+    if from_end:
+        return heading + turn + math.pi, heading + math.pi
+    return heading, heading + turn
+
+
+def _swing(station: Station, box: tuple[float, float, float, float], *, from_end: bool) -> Iterator[Item]:
+    """An arrow about the pin from where the free side lay to where it is pulled, as far as it is in the box."""
     at = np.array(station.at)
-    radius = station.tool_diameter_mm / 2.0 + 12.0
-    t = math.radians(station.heading_deg)
-    left = station.turn == "left"
-    start = t + (-math.pi / 2 if left else math.pi / 2)
-    # beginning where the straight wire leaves the pin, towards the loaded side
-    first = start + (math.radians(25.0) if left else -math.radians(25.0))
-    last = start + (1.0 if left else -1.0) * math.radians(max(station.loaded_angle_deg, 40.0))
-    points = [at + radius * np.array([math.cos(a), math.sin(a)]) for a in np.linspace(first, last, 12)]
-    for a, b in itertools.pairwise(points[:-1]):
+    radius = station.tool_diameter_mm / 2.0 + max(_SWING_MM, _SWING_SHARE * (box[2] - box[0]))
+    first, last = swing_rad(station, from_end=from_end)
+    angles = np.linspace(first, last, 25)
+    points = at + radius * np.column_stack([np.cos(angles), np.sin(angles)])
+    low, high = np.array(box[:2]), np.array(box[2:])
+    inside = np.flatnonzero(((points >= low) & (points <= high)).all(axis=1))
+    # the last unbroken run in the box: the arrow's head is what matters
+    run = inside[np.flatnonzero(np.diff(inside, prepend=-9) > 1)[-1] :] if len(inside) else inside
+    if len(run) < 3:
+        return
+    shown = points[run]
+    for a, b in itertools.pairwise(shown[:-1]):
         yield Line(a=_pt(a), b=_pt(b))
-    yield Arrow(tail=_pt(points[-3]), tip=_pt(points[-1]))
+    yield Arrow(tail=_pt(shown[-3]), tip=_pt(shown[-1]))
 
 
 def _cut_off(items: list[Item], box: tuple[float, float, float, float]) -> Iterator[Item]:
@@ -180,16 +197,13 @@ def _cut_off(items: list[Item], box: tuple[float, float, float, float]) -> Itera
                 yield Shape(contour=contour, holes=tuple(holes), pen=item.pen, filled=item.filled)
 
 
-def _block_frame(piece: Piece, bend: Bend, step: BendStep | None, fixture: Fixture, title: str) -> Frame:
-    """A bend over a block's dowel: seen from the block's side, the held wire level, the free end bent down."""
-    block = None
-    if step is not None:
-        block = next((b for b in fixture.blocks if b.name == step.tool), None)
-    if block is None:
-        block = next(
-            (b for b in fixture.blocks if abs(b.loaded_angle_deg - bend.loaded_angle_deg) < 0.05), None
-        )
+def _block_frame(
+    piece: Piece, bend: Bend, step: BendStep | None, station: Station | None, title: str, text: str
+) -> Frame:
+    """A bend over a dowel: the held wire level, the free end bent down (or up, where a stop block turns left)."""
     d, r = piece.diameter_mm, bend.inside_radius_mm + piece.diameter_mm / 2.0
+    stops = step is not None and step.place not in (BOARD, BLOCK)
+    up = stops and station is not None and station.turn == "left"
     angle = math.radians(bend.angle_deg)
     path = path_from_bends(
         [PathBend(feed_mm=_BLOCK_SHOWN_MM, rotation_deg=0.0, angle_deg=bend.angle_deg, radius_mm=r)],
@@ -200,6 +214,8 @@ def _block_frame(piece: Piece, bend: Bend, step: BendStep | None, fixture: Fixtu
     )
     now = path.sample(chord_error_mm=0.02)[:, :2]
     was = np.array([[-_BLOCK_SHOWN_MM, r], [_BLOCK_SHOWN_MM + r * angle, r]])
+    if up:
+        now, was = now * (1.0, -1.0), was * (1.0, -1.0)
     items: list[Item] = [
         Ring(circle=Circle(x_mm=0.0, y_mm=0.0, diameter_mm=2.0 * bend.loaded_inside_radius_mm))
     ]
@@ -208,33 +224,19 @@ def _block_frame(piece: Piece, bend: Bend, step: BendStep | None, fixture: Fixtu
     items.append(
         Text(at=(0.0, 0.0), text=str(bend.number), height_mm=1.6, anchor="centre", shift=(0.0, -0.8))
     )
-    items.append(Text(at=(-_BLOCK_SHOWN_MM, r + d), text="held", height_mm=SMALL_TEXT_MM, shift=(0.0, 0.8)))
-    text = [
-        f"On {block.name if block else 'pliers or a pin'}: to {number(bend.loaded_angle_deg, 1)}\u00b0, "
-        "springs back to "
-        f"{number(bend.angle_deg, 1)}\u00b0. Begins {number(bend.from_start_mm, 1)} mm from the start."
-    ]
-    if bend.number > 1 and abs(bend.rotation_deg) > 0.05:
-        text.append(
-            f"Plane turned {number(abs(bend.rotation_deg), 1)}\u00b0 "
-            + ("clockwise" if bend.rotation_deg > 0 else "counter-clockwise")
-            + " from the bend before, looking along the wire from its start."
-        )
-    if step is not None:
-        if step.held == "end":
-            text.append("The start side is bent; hold the far side.")
-        if step.trim_first:
-            text.append("Cut the extra length off first.")
-        text.append(_located(step))
-    x = _BLOCK_SHOWN_MM + 3.0
-    low = min(float(now[:, 1].min()) - d, -bend.loaded_inside_radius_mm) - 1.0
-    return Frame(
-        title=title,
-        text=" ".join(text),
-        items=tuple(items),
-        box=(-x, low, x + r, r + d + 5.0),
-        seen="from the side of the block",
+    side = "" if step is None else " END side" if step.held == "end" else " START side"
+    level = -r - 2.0 * d if up else r + d
+    items.append(
+        Text(at=(-_BLOCK_SHOWN_MM, level), text=f"held{side}", height_mm=SMALL_TEXT_MM, shift=(0.0, 0.8))
     )
+    x = _BLOCK_SHOWN_MM + 3.0
+    far = bend.loaded_inside_radius_mm
+    low = min(float(now[:, 1].min()), level, -far) - d - 1.0
+    high = max(float(now[:, 1].max()), level, far) + d + 4.0
+    return Frame(
+        title=title, text=text, items=tuple(items), box=(-x, low, x + r, high),
+        seen="from above the stop block" if stops else "from the side of the block",
+    )  # fmt: skip
 
 
 def _pt(v: np.ndarray) -> tuple[float, float]:

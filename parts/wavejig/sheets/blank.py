@@ -25,6 +25,7 @@ from wavejig.sheets.blankholes import (
     crowd,
     feed_detail,
     hole_labels,
+    placed_labels,
     tables_of,
     window_of,
 )
@@ -85,7 +86,8 @@ def blank_drawing(design: Design, tray: Tray, pattern: FlatPattern) -> Sheet:
     if mitred:
         views.append(corner_detail(tray, pattern, table_left + wide_mm, below, y0, TABLES_WIDE_MM - wide_mm))
     notes = (
-        "All bends fold UP, towards the viewer. The face shown is the face that looks at the radiator.",
+        ("All bends fold UP, towards the viewer. " if tray.lips else "The blank stays flat. ")
+        + "The face shown is the face that looks at the radiator.",
         "Holes: x to the right, y upwards from the datum (crossing of the centre lines = middle of the "
         "base).",
         "Blank is symmetrical about both centre lines but for its holes and marks."
@@ -135,13 +137,12 @@ def _main(
     yield Line(a=(0.0, y0 - over), b=(0.0, y1 + over), pen="centre")
     for bend in pattern.bends:
         yield Line(a=bend.line[0], b=bend.line[1], pen="bend")
-    for hole, label in zip(tray.holes, labels, strict=True):
+    for hole in tray.holes:
         c = Circle(x_mm=hole.x_mm, y_mm=hole.y_mm, diameter_mm=hole.diameter_mm)
         small = id(hole) in in_detail
         yield Ring(circle=c, cross=not small)
-        if not small:
-            r = hole.diameter_mm / 2.0 + 1.2 / scale
-            yield Text(at=(hole.x_mm + r * 0.75, hole.y_mm + r * 0.75), text=label, height_mm=DIM_TEXT_MM)
+    named = [(h, label) for h, label in zip(tray.holes, labels, strict=True) if id(h) not in in_detail]
+    yield from placed_labels(named, tray.holes, scale)
     if in_detail:
         half, cx, cy = window_of([h for h in tray.holes if id(h) in in_detail])
         yield Chain(
@@ -166,7 +167,7 @@ def _main(
 def _lip_words(tray: Tray, scale: float) -> Iterator[Item]:
     for lip in tray.lips:
         turned = lip.edge[0] == "x"
-        text = f"{lip.edge}: fold UP {number(lip.angle_deg)}\u00b0, R{number(tray.inside_radius_mm)} inside"
+        text = f"{lip.edge}: fold UP {number(lip.angle_deg)}\u00b0"  # its radius stands in the table
         # off the centre line where there is room beside it
         half = min(lip.left.half_mm, lip.right.half_mm)
         aside = half / 2.0 if width_mm(text, SMALL_TEXT_MM) + 4.0 <= half * scale else 0.0
@@ -185,9 +186,14 @@ def _lip_words(tray: Tray, scale: float) -> Iterator[Item]:
     side = along(tray.up) * 0.45 * tray.base_reach_mm("x+" if tray.up[0] == "y" else "y+")
     tail, tip = up * (reach - 14.0 / scale) + side, up * (reach - 3.0 / scale) + side
     yield Arrow(tail=(float(tail[0]), float(tail[1])), tip=(float(tip[0]), float(tip[1])), pen="outline")
+    words = f"hangs UP ({tray.up})"
+    if tray.up[0] == "y":  # beside the centre line, not across it
+        tail[0] = np.copysign(
+            max(abs(tail[0]), (width_mm(words, SMALL_TEXT_MM) / 2.0 + 1.5) / scale), side[0]
+        )
     yield Text(
         at=(float(tail[0]), float(tail[1])),
-        text=f"UP when mounted ({tray.up})",
+        text=words,
         anchor="centre" if tray.up[0] == "y" else "right",
         shift=(0.0, -3.0) if tray.up[0] == "y" else (-1.0, -0.9),
     )

@@ -110,8 +110,8 @@ def corner_detail(
     for count, dim in enumerate(corner_sizes(pattern.outline, window, within=True)):
         assert isinstance(dim, RadiusDim)
         centre = (dim.centre[0] - cx, dim.centre[1] - cy)
-        items.append(replace(dim, centre=centre, reach_mm=(8.0, 16.0, 24.0)[count % 3]))
-    at = (left + wide / 2.0 - 3.0, (top + bottom) / 2.0 + 4.0)
+        items.append(replace(dim, centre=centre, reach_mm=(5.0, 11.5, 18.0)[count % 3]))
+    at = (left + wide / 2.0 + 2.5, (top + bottom) / 2.0 + 4.0)
     return View(
         title=f"K ({scale_text(scale)})",
         items=tuple(items),

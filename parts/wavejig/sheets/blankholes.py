@@ -2,7 +2,8 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+import math
+from collections.abc import Iterator, Sequence
 
 from wavejig.design.model import Hole
 from wavejig.geometry.plane import Circle
@@ -11,6 +12,7 @@ from wavejig.sheets.blankcorners import (
     SEEN,
 )
 from wavejig.sheets.fit import best_scale
+from wavejig.sheets.fonts import width_mm
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
     Chain,
@@ -46,6 +48,57 @@ def crowd(tray: Tray) -> list[Hole]:
     """Holes of the feed, which stand too close for labels at a small scale."""
     feed = [h for h in tray.holes if h.purpose in ("connector", "flange", "foot", "tube")]
     return feed if len(feed) > 1 else []
+
+
+def placed_labels(
+    named: Sequence[tuple[Hole, str]],
+    holes: Sequence[Hole],
+    scale: float,
+    *,
+    origin: tuple[float, float] = (0.0, 0.0),
+    half: float = math.inf,
+) -> Iterator[Text]:
+    """Labels of holes, each on that side of its hole where it meets no other hole, label or the frame.
+
+    Upper right where that is free, else the freest side. holes: all that are in the view, which has this scale;
+    origin: what the view calls (0, 0), in mm from the datum, half: of the square it shows.
+    """
+    taken: list[_Box] = []
+    for hole, label in named:
+        wide, high = width_mm(label, DIM_TEXT_MM) / scale, DIM_TEXT_MM / scale
+        rim = hole.diameter_mm / 2.0 + 1.2 / scale
+        spots: list[_Box] = []
+        for right, up in ((1, 1), (1, -1), (-1, 1), (-1, -1), (1, 0), (-1, 0), (0, 1), (0, -1)):
+            r = rim * (0.75 if right and up else 1.0)
+            x = hole.x_mm + (-wide / 2.0, r, -r - wide)[right]
+            y = hole.y_mm + (-high / 2.0, r, -r - high)[up]
+            spots.append((x, y, x + wide, y + high))
+        enough = 0.25 / scale
+
+        def air(spot: _Box, enough: float = enough) -> float:
+            far = max(abs(v - origin[i % 2]) for i, v in enumerate(spot))
+            return min(
+                enough, half - far, *(_to_rim(spot, h) for h in holes), *(_apart(spot, t) for t in taken)
+            )
+
+        best = max(spots, key=air)
+        taken.append(best)
+        yield Text(at=(best[0] - origin[0], best[1] - origin[1]), text=label, height_mm=DIM_TEXT_MM)
+
+
+_Box = tuple[float, float, float, float]
+
+
+def _to_rim(box: _Box, hole: Hole) -> float:
+    """Distance from a box to the rim of a hole; negative inside it."""
+    dx = max(box[0] - hole.x_mm, hole.x_mm - box[2], 0.0)
+    dy = max(box[1] - hole.y_mm, hole.y_mm - box[3], 0.0)
+    return math.hypot(dx, dy) - hole.diameter_mm / 2.0
+
+
+def _apart(a: _Box, b: _Box) -> float:
+    """Gap between two boxes along the axis where it is larger; negative when they overlap."""
+    return max(a[0] - b[2], b[0] - a[2], a[1] - b[3], b[1] - a[3])
 
 
 def tables_of(tray: Tray, labels: tuple[str, ...], left: float, top: float) -> Iterator[Table]:
@@ -128,10 +181,8 @@ def feed_detail(
     for hole in holes:
         c = Circle(x_mm=hole.x_mm - cx, y_mm=hole.y_mm - cy, diameter_mm=hole.diameter_mm)
         items.append(Ring(circle=c, cross=True))
-        r = hole.diameter_mm / 2.0 + 0.8 / scale
-        items.append(
-            Text(at=(c.x_mm + r * 0.72, c.y_mm + r * 0.72), text=names[id(hole)], height_mm=DIM_TEXT_MM)
-        )
+    named = [(hole, names[id(hole)]) for hole in holes]
+    items += placed_labels(named, holes, scale, origin=(cx, cy), half=half)
     at = (left + wide / 2.0 - 1.0, (top + bottom) / 2.0 + 2.5)
     title = f"F ({scale_text(scale)}): {SEEN}" if wide > 60.0 else f"F ({scale_text(scale)})"
     return View(title=title, items=tuple(items), at=at, scale=scale, title_at=(at[0], bottom + 0.8))

@@ -17,6 +17,9 @@ from wavejig.sheets.model import number
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction  # the solver is not needed to set its figures
 
+LIES = {"legs": "face down, legs up", "tube": "face down"}
+"""How the bent wire lies in the check nest, by style of feed; with a tube it has no legs."""
+
 Rows = tuple[tuple[str, ...], ...]
 
 
@@ -102,7 +105,7 @@ def first_article(design: Design, radiator: Radiator, tray: Tray, pattern: FlatP
     out.append(
         Check(
             what="radiator in the check nest",
-            how="drops in by itself, legs up",
+            how=f"drops in by itself, {LIES[feed.style]}",
             nominal="yes",
             low=None,
             high=None,
@@ -115,10 +118,9 @@ def first_article(design: Design, radiator: Radiator, tray: Tray, pattern: FlatP
     gap = r.feed_gap_mm
     out.append(_around("feed gap", "wire to wire at the terminals, centres", gap, min(tol.side_mm, 0.2)))
     top = r.standoff_mm + d / 2.0
+    far = "every far corner" if not r.lobe_diameter_mm else "the far side of each lobe"
     out.append(
-        _around(
-            "standoff, to the wire's top", "sheet to top of wire, at every far corner", top, tol.standoff_mm
-        )
+        _around("standoff, to the wire's top", f"sheet to top of wire, at {far}", top, tol.standoff_mm)
     )
     if feed.style == "tube":
         out.append(_around("tube's wall above the sheet", "depth gauge", feed.tube_top_mm, tol.standoff_mm))

@@ -8,6 +8,7 @@ from collections.abc import Iterator
 from wavejig.design.model import Design
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import bought_length_mm
 from wavejig.sheets.model import number
 from wavejig.shop.bench import joint_heat_w
 from wavejig.spacer.model import Spacer
@@ -203,10 +204,8 @@ def tube_steps(design: Design, radiator: Radiator, spacer: Spacer) -> Iterator[s
     inner = next(p for p in radiator.pieces if p.role == "inner")
     rise = number(inner.developed_length_mm, 1)
     yield (
-        f"Tube {tube.name}: cut {number(outer.cut_length_mm + inner.developed_length_mm, 1)} mm (longer "
-        "if the connector "
-        f"sits elsewhere), then take wall and insulation off the last {rise} mm without nicking the "
-        "inner conductor."
+        f"Tube {tube.name}, {number(bought_length_mm(radiator, outer), 1)} mm long (more if its connector sits further "
+        f"away): take wall and insulation off the last {rise} mm without nicking the inner conductor."
     )
     yield (
         f"Put the tube through its hole in the sheet so that its wall ends {number(feed.tube_top_mm)} "
@@ -225,10 +224,7 @@ def tube_steps(design: Design, radiator: Radiator, spacer: Spacer) -> Iterator[s
     if butt is not None:
         yield f"Bring the main wire's two ends together: {butt.note}."
     if hook is not None:
-        yield (
-            f"Bend the inner conductor over the first side ({hook.note}) and solder; nothing of "
-            "it may touch the wall."
-        )
+        yield ("Bend the inner conductor over the first side and solder; nothing of it may touch the wall.")
     yield _spacer_off(spacer)
 
 

@@ -13,6 +13,7 @@ from wavejig.geometry.plane import Circle
 from wavejig.radiator.model import Radiator
 from wavejig.sheets.common import block
 from wavejig.sheets.fit import best_scale
+from wavejig.sheets.fonts import width_mm
 from wavejig.sheets.frame import landscape, room
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
@@ -30,6 +31,7 @@ from wavejig.sheets.model import (
     scale_text,
 )
 
+_LEAST_TEXT_MM = 1.2  # of a station's number; what a laser printer still prints clearly, common practice
 _TABLES_WIDE_MM = 92.0
 
 
@@ -46,6 +48,7 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
     rest = field_high - board_high * scale - 40.0
     nest_scale = best_scale(nest[2] - nest[0], nest_high, field_wide, rest, most=scale)
     centre = x0 + (left - x0) / 2.0 + 4.0
+    legs = ", legs up" if design.feed.style == "legs" else ""
     nest_base = y0 + 9.0
     nest_at = (centre - (nest[0] + nest[2]) / 2.0 * nest_scale, nest_base - nest[1] * nest_scale)
     board_base = y1 - 14.0 - board_high * scale
@@ -53,15 +56,14 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
     views = [
         View(
             title="BENDING BOARD: seen from above, "
-            + ("radiator face DOWN, legs up (mirror image)" if fixture.face_down else "radiator face up"),
+            + (f"radiator face DOWN{legs} (mirror image)" if fixture.face_down else "radiator face up"),
             items=tuple(_board(fixture, scale)),
             at=board_at,
             scale=scale,
             title_at=(centre, board_base - 6.0),
         ),
         View(
-            title=f"CHECK NEST ({scale_text(nest_scale)}): from above, radiator face DOWN, legs up "
-            "(mirror image)",
+            title=f"CHECK NEST ({scale_text(nest_scale)}): from above, radiator face DOWN{legs} (mirror image)",
             items=tuple(_nest(fixture.nest)),
             at=nest_at,
             scale=nest_scale,
@@ -78,6 +80,9 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
             "reached: a later pin is in the way.",
             "Pull the wire round until its inner edge reaches the tick (loaded angle), let go, compare "
             "in the nest.",
+            "Plain circles near the start: the pin at which the cut end stops, and the clamp's two screws."
+            if fixture.clamp is not None
+            else "Plain circle near the start: the pin at which the cut end stops.",
             "Wire ends spring: wear eye protection.",
         ),
         notes_at=(x0, y0 - 5.0),
@@ -102,12 +107,16 @@ def _board(fixture: Fixture, scale: float) -> Iterator[Item]:
         circle = Circle(x_mm=station.at[0], y_mm=station.at[1], diameter_mm=station.tool_diameter_mm)
         yield Ring(circle=circle, pen="outline")
         yield Chain(points=station.tick.points, pen="mark")
+        # two figures in a small pin: smaller letters
+        label, wide = str(station.number), 0.85 * station.tool_diameter_mm * scale
+        high = DIM_TEXT_MM * min(1.0, wide / width_mm(label, DIM_TEXT_MM, bold=True))
+        high = max(high, _LEAST_TEXT_MM)
         yield Text(
             at=station.at,
-            text=str(station.number),
-            height_mm=DIM_TEXT_MM,
+            text=label,
+            height_mm=high,
             anchor="centre",
-            shift=(0.0, -DIM_TEXT_MM / 2.0),
+            shift=(0.0, -high / 2.0),
             bold=True,
         )
     if fixture.stations:
@@ -118,7 +127,8 @@ def _board(fixture: Fixture, scale: float) -> Iterator[Item]:
         tip = np.array(first.tangent) + side - u * 2.0 / scale
         tail = tip - u * 12.0 / scale
         yield Arrow(tail=(float(tail[0]), float(tail[1])), tip=(float(tip[0]), float(tip[1])), pen="outline")
-        yield Text(at=(float(tail[0]), float(tail[1])), text="start", anchor="right", shift=(-0.8, -0.9))
+        beside = (tip + tail) / 2.0 + side * 0.8
+        yield Text(at=(float(beside[0]), float(beside[1])), text="start", anchor="centre", shift=(0.0, -0.9))
     x0, y0, x1, y1 = board.outline.bounds()
     yield LinearDim(a=(x0, y1), b=(x1, y1), offset_mm=6.0, reference=True)
     yield LinearDim(a=(x0, y0), b=(x0, y1), offset_mm=6.0, angle_deg=90.0, reference=True)
@@ -126,7 +136,8 @@ def _board(fixture: Fixture, scale: float) -> Iterator[Item]:
 
 def _nest(nest: Plate) -> Iterator[Item]:
     yield from _plate(nest)
-    x0, y0, _, y1 = nest.outline.bounds()
+    x0, y0, x1, y1 = nest.outline.bounds()
+    yield LinearDim(a=(x0, y1), b=(x1, y1), offset_mm=6.0, reference=True)
     yield LinearDim(a=(x0, y0), b=(x0, y1), offset_mm=6.0, angle_deg=90.0, reference=True)
 
 

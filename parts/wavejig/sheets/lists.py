@@ -8,8 +8,10 @@ from wavejig.batch.bill import fixture_pins
 from wavejig.batch.model import Batch
 from wavejig.batch.plates import spacer_sets
 from wavejig.design.model import Design
+from wavejig.fixture.bending.model import BendOrder
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import bought_length_mm
 from wavejig.reflector.flat import FlatPattern
 from wavejig.sheets.checks import (
     Rows,
@@ -32,8 +34,9 @@ def materials(design: Design, radiator: Radiator, pattern: FlatPattern, spacer: 
         metal = (
             f"{tube.name}, semi-rigid" if p.role == "tube" and tube else wire_text(design).rsplit(",", 1)[0]
         )
-        size = f"\u00d8{number(p.diameter_mm, 3)} \u00d7 {number(p.cut_length_mm, 1)} mm"
-        rows.append((NAMES[p.role], metal, size, "1", f"{n} = {number(n * p.cut_length_mm / 1000.0, 2)} m"))
+        length = bought_length_mm(radiator, p)
+        size = f"\u00d8{number(p.diameter_mm, 3)} \u00d7 {number(length, 1)} mm"
+        rows.append((NAMES[p.role], metal, size, "1", f"{n} = {number(n * length / 1000.0, 2)} m"))
     w, h = pattern.size_mm
     if design.reflector.own is not None:
         rows.append(("your own dish", sheet_text(design), size_text(design), "1", f"{n}"))
@@ -154,7 +157,9 @@ def batch(made: Batch) -> Rows:
 BEND_HEAD = ("no.", "from start", "feed", "rotation", "angle", "bend to", "R inside", "R loaded", "on")
 
 
-def bends(radiator: Radiator, fixture: Fixture) -> tuple[tuple[str, Rows], ...]:
+def bends(
+    radiator: Radiator, fixture: Fixture, order: BendOrder | None = None
+) -> tuple[tuple[str, Rows], ...]:
     """The bend table of each piece that has bends: its heading and rows (see `BEND_HEAD`)."""
     stations = {s.number: s for s in fixture.stations}
     out = []
@@ -166,7 +171,8 @@ def bends(radiator: Radiator, fixture: Fixture) -> tuple[tuple[str, Rows], ...]:
             on = "by hand"
             if p is radiator.main and b.number in stations:
                 s = stations[b.number]
-                on = f"board, {s.tool} \u00d8{number(s.tool_diameter_mm)}, {s.turn}"
+                where = "board" if fixture.style == "board" else "stop block"
+                on = f"{where}, {s.tool} \u00d8{number(s.tool_diameter_mm)}, {s.turn}"
             elif p.role != "inner":
                 on = next(
                     (k.name for k in fixture.blocks if abs(k.loaded_angle_deg - b.loaded_angle_deg) < 0.05),
@@ -175,9 +181,11 @@ def bends(radiator: Radiator, fixture: Fixture) -> tuple[tuple[str, Rows], ...]:
             angles = (f"{number(a, 1)}\u00b0" for a in (b.rotation_deg, b.angle_deg, b.loaded_angle_deg))
             radii = (number(b.inside_radius_mm), number(b.loaded_inside_radius_mm))
             rows.append((str(b.number), number(b.from_start_mm), number(b.feed_mm), *angles, *radii, on))
-        trim = (
-            f", of which {number(p.trim_mm)} mm at the far end are cut off after bending" if p.trim_mm else ""
-        )
+        trim = ""
+        if p.trim_mm:
+            first = trimmed_before(order, p.role)
+            when = "after bending" if first is None else f"before bend {first}"
+            trim = f", of which {number(p.trim_mm)} mm at the far end are cut off {when}"
         title = (
             f"{NAMES[p.role]}: \u00d8{number(p.diameter_mm, 3)} mm, cut {number(p.cut_length_mm, 1)} "
             f"mm{trim}; "
@@ -185,3 +193,11 @@ def bends(radiator: Radiator, fixture: Fixture) -> tuple[tuple[str, Rows], ...]:
         )
         out.append((title[0].upper() + title[1:], tuple(rows)))
     return tuple(out)
+
+
+def trimmed_before(order: BendOrder | None, role: str) -> int | None:
+    """The bend before which a piece's extra length is cut off; None when it stays on until all are made."""
+    steps = [
+        s for p in (order.pieces if order is not None else ()) if p.piece == role and p.found for s in p.steps
+    ]
+    return next((s.number for s in steps if s.trim_first), None)

@@ -146,12 +146,12 @@ def _findings(sheet: BuildSheet) -> Iterator[Any]:
     if found:
         yield heading("Warnings: read before you start")
         for f in found:
-            yield lead(f"{f.severity} {f.code}:", f"{f.message}. {f.remedy}")
+            yield lead(f"{f.severity} {f.code}:", f"{f.message.rstrip('.')}. {f.remedy}")
     notes = [f for f in sheet.inspection.findings if f.severity == "note"]
     if notes:
         yield heading("Notes on this design")
         for f in notes:
-            yield lead(f"{f.code}:", f"{f.message}. {f.remedy}", small=True, after=0.8)
+            yield lead(f"{f.code}:", f"{f.message.rstrip('.')}. {f.remedy}", small=True, after=0.8)
 
 
 def _materials(sheet: BuildSheet, wide: float) -> Iterator[Any]:
@@ -171,7 +171,7 @@ def _materials(sheet: BuildSheet, wide: float) -> Iterator[Any]:
         yield table(lists.BATCH_HEAD, lists.batch(sheet.batch), four)
     yield Spacer(1, 1.0 * mm)
     yield para(
-        "And: solder, flux, alcohol, a calliper, eye protection, gloves, the heat clip, a mating plug.",
+        "And: solder, flux, alcohol, a calliper, eye protection, gloves, the heat clip.",
         small=True,
     )
 
@@ -184,7 +184,7 @@ def _bend_tables(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     before: list[Any] = [
         heading("Bend table of the wire"),
         para(
-            "Lengths in mm from the cut start. From start: to where the bend begins. Feed: straight "
+            "Lengths in mm from the cut end called START. From start: to where the bend begins. Feed: straight "
             "before it. "
             "Rotation: turn of the bend's plane from the bend before, clockwise looking along the wire "
             "from its "
@@ -192,7 +192,7 @@ def _bend_tables(sheet: BuildSheet, wide: float) -> Iterator[Any]:
             small=True,
         ),
     ]
-    for name, rows in lists.bends(i.radiator, i.fixture):
+    for name, rows in lists.bends(i.radiator, i.fixture, sheet.order):
         made = table(lists.BEND_HEAD, rows, widths)
         yield KeepTogether([*before, para(name, bold=True, after=0.8), made, Spacer(1, 2.0 * mm)])
         before = []
@@ -245,16 +245,18 @@ def _frames(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     assert i.radiator and i.fixture
     yield heading("Bending, step by step")
     yield para(
-        "Full circles: pins that stand in this step. Grey wire: before the bend; outlined wire: after "
-        "it has sprung back. "
-        "What reaches past the board is cut off in the picture.",
+        "Black circles: pins and discs that stand in this step; the arrow: which way the free side is swung. Grey "
+        "wire: before the bend; filled wire: after it has sprung back. What reaches past the board is cut off in "
+        "the picture. The same steps in colour: fixture/steps.svg.",
         small=True,
     )
+    for told in bending.marks_to_draw(sheet.order):
+        yield para(told, small=True)
     for remark in _order_remarks(sheet):
         yield para(remark, small=True)
     cell = wide / _FRAME_COLUMNS
     cells = []
-    for frame in bending.frames(i.radiator, i.fixture, sheet.order):
+    for frame in bending.frames(sheet.design, i.radiator, i.fixture, sheet.order):
         x0, y0, x1, y1 = frame.box
         room = (cell - 6.0) / (x1 - x0)
         scale = min(room, 52.0 / (y1 - y0), 2.0)
@@ -291,4 +293,4 @@ def _assembly(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     i = sheet.inspection
     assert i.radiator and i.spacer and i.fixture
     yield heading("Soldering and assembly, in order")
-    yield numbered(assembly_steps(sheet.design, i.radiator, i.spacer, i.fixture), wide)
+    yield numbered(assembly_steps(sheet.design, i.radiator, i.spacer, i.fixture, sheet.order), wide)

@@ -17,6 +17,7 @@ from wavejig.sheets.blankholes import (
     crowd,
     feed_detail,
     hole_labels,
+    placed_labels,
     tables_of,
     window_of,
 )
@@ -156,13 +157,12 @@ def _plan(
     over = 4.0 / scale
     yield Line(a=(x0 - over, 0.0), b=(x1 + over, 0.0), pen="centre")
     yield Line(a=(0.0, y0 - over), b=(0.0, y1 + over), pen="centre")
-    for hole, label in zip(tray.holes, labels, strict=True):
+    for hole in tray.holes:
         small = id(hole) in hidden
         circle = Circle(x_mm=hole.x_mm, y_mm=hole.y_mm, diameter_mm=hole.diameter_mm)
         yield Ring(circle=circle, cross=not small)
-        if not small:
-            r = hole.diameter_mm / 2.0 + 1.2 / scale
-            yield Text(at=(hole.x_mm + r * 0.75, hole.y_mm + r * 0.75), text=label, height_mm=DIM_TEXT_MM)
+    named = [(h, label) for h, label in zip(tray.holes, labels, strict=True) if id(h) not in hidden]
+    yield from placed_labels(named, tray.holes, scale)
     if hidden:
         half, cx, cy = window_of([h for h in tray.holes if id(h) in hidden])
         corners = ((-half, -half), (half, -half), (half, half), (-half, half))
@@ -173,7 +173,7 @@ def _plan(
     side = along(tray.up) * 0.35 * reach
     tail, tip = up * (0.62 * reach) + side, up * (0.82 * reach) + side
     yield Arrow(tail=_pt(tail), tip=_pt(tip), pen="outline")
-    yield Text(at=_pt(tail), text="UP when mounted", anchor="centre", shift=(0.0, -3.2))
+    yield Text(at=_pt(tail), text="hangs UP", anchor="centre", shift=(0.0, -3.2))
     yield LinearDim(
         a=(x0, 0.0), b=(x1, 0.0), offset_mm=(y0 * scale) - 12.0, before="" if not _round(tray) else "\u00d8"
     )
@@ -196,8 +196,10 @@ def _section(tray: Tray) -> Iterator[Item]:
         )
     if own.rim_mm > 0.0:
         yield LinearDim(a=(top, depth), b=(top + own.rim_mm, depth), offset_mm=6.0)
-    said = f"R{number(own.radius_mm)} between floor and wall; {number(t)} mm thick"
-    yield Text(at=(0.0, 0.0), text=said, anchor="centre", shift=(0.0, 2.0))
+    # one on either side of the centre line
+    said = f"R{number(own.radius_mm)} between floor and wall"
+    yield Text(at=(0.0, 0.0), text=said, anchor="right", shift=(-2.0, 2.0))
+    yield Text(at=(0.0, 0.0), text=f"{number(t)} mm thick", anchor="left", shift=(2.0, 2.0))
 
 
 def _round(tray: Tray) -> bool:

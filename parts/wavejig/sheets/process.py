@@ -9,24 +9,30 @@ from __future__ import annotations
 from collections.abc import Iterator
 
 from wavejig.design.model import Design
+from wavejig.fixture.bending.model import BendOrder
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import bought_length_mm
+from wavejig.sheets.checks import LIES
 from wavejig.sheets.feedsteps import (
     NAMES,
     leg_steps,
     tube_steps,
 )
+from wavejig.sheets.lists import trimmed_before
 from wavejig.sheets.model import number
 from wavejig.sheets.own import own_drilling, own_measuring
 from wavejig.spacer.model import Spacer
 
 
-def assembly_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: Fixture) -> tuple[str, ...]:
-    """Every step from the cut wire to the sealed antenna, in order."""
+def assembly_steps(
+    design: Design, radiator: Radiator, spacer: Spacer, fixture: Fixture, order: BendOrder | None = None
+) -> tuple[str, ...]:
+    """Every step from the cut wire to the sealed antenna, in order; order: of the bends, None where unplanned."""
     return tuple(
         (
             *(() if design.reflector.own is None else own_measuring(design)),
-            *_wire(design, radiator, fixture),
+            *_wire(design, radiator, fixture, order),
             *_reflector(design, fixture),
             *(
                 leg_steps(design, radiator, spacer, fixture)
@@ -38,10 +44,12 @@ def assembly_steps(design: Design, radiator: Radiator, spacer: Spacer, fixture: 
     )
 
 
-def _wire(design: Design, radiator: Radiator, fixture: Fixture) -> Iterator[str]:
+def _wire(design: Design, radiator: Radiator, fixture: Fixture, order: BendOrder | None) -> Iterator[str]:
     r = design.radiator
     cuts = "; ".join(
-        f"{NAMES[p.role]} {number(p.cut_length_mm, 1)} mm" for p in radiator.pieces if p.role != "inner"
+        f"{NAMES[p.role]} {number(bought_length_mm(radiator, p), 1)} mm"
+        for p in radiator.pieces
+        if p.role != "inner"
     )
     yield (
         f"Cut: {cuts}. Straighten the wire (clamp one end, pull it a little), cut its ends "
@@ -65,14 +73,19 @@ def _wire(design: Design, radiator: Radiator, fixture: Fixture) -> Iterator[str]
             "not bend the batch."
         )
     yield (
-        "Bend as the bend table and pictures say. Wire ends spring: eye protection, and nobody in "
-        "front of the end."
+        "Bend as the pictures say, in their order; the bend table has the figures. Wire ends spring: eye "
+        "protection, and nobody in front of the end."
     )
     yield (
-        "Lay the radiator in the check nest, face down and legs up. It must drop in by itself; if not, "
-        "correct it by "
-        "hand or cut another, do not press."
+        f"Lay the radiator in the check nest, {LIES[design.feed.style]}. It must drop in by itself; if not, correct "
+        "it by hand or cut another, do not press."
     )
+    spare = radiator.main.trim_mm
+    if spare and trimmed_before(order, "main") is None:
+        yield (
+            f"Cut the extra {number(spare)} mm off the main wire's END: at the nest's mark, or "
+            f"{number(radiator.main.developed_length_mm, 1)} mm from START along the wire."
+        )
 
 
 def _reflector(design: Design, fixture: Fixture) -> Iterator[str]:
@@ -111,6 +124,8 @@ def _finish(design: Design) -> Iterator[str]:
         "Measure the match on the bench (table below), radiator pointing at free space, nothing "
         "within 1 m in front."
     )
+    drained = any(h.purpose == "drain" for h in design.reflector.holes)
     yield (
-        "Seal: clear lacquer thinly on the joints, sealant round the feed on the back, drain holes left open."
+        "Seal: clear lacquer thinly on the joints, sealant round the feed on the back"
+        + (", drain holes left open." if drained else ".")
     )

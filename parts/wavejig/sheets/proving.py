@@ -36,7 +36,7 @@ def _first_article(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     yield heading("First article: measure the first one before making the rest")
     wanted = checks.first_article(sheet.design, i.radiator, i.tray, sheet.pattern)
     rows = [(str(k), c.what, c.how, c.nominal, c.limits, "", "") for k, c in enumerate(wanted, start=1)]
-    widths = tuple(wide * w for w in (0.045, 0.19, 0.285, 0.105, 0.165, 0.12, 0.09))
+    widths = tuple(wide * w for w in (0.045, 0.185, 0.275, 0.105, 0.185, 0.12, 0.085))
     yield table(
         ("no.", "what", "how", "nominal", "limits", "measured", "in order"),
         rows,
@@ -168,9 +168,10 @@ def _mounting(sheet: BuildSheet) -> Iterator[Any]:
         yield lead("Drain:", f"no drain holes; water must be free to run off at the low edge ({low}).")
     yield lead(
         "Sealing:",
-        "self-amalgamating tape over the mated plug, wound upwards; cable with a drip loop below the "
-        "connector; sealant on "
-        "the back of the feed, none over the drain holes.",
+        "self-amalgamating tape over the mated plug, wound upwards; cable with a drip loop below "
+        + ("the connector" if design.feed.style == "legs" else "the tube's connector")
+        + "; sealant on the back of the feed"
+        + (", none over the drain holes." if drains else "."),
     )
     w = wind(design, tray)
     yield lead(

@@ -15,6 +15,7 @@ from wavejig.design.model import Design
 from wavejig.geometry.plane import Circle, Contour
 from wavejig.radiator.drawing import views as plan_views
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import bought_length_mm
 from wavejig.sheets.common import block, plus_minus, wire_text
 from wavejig.sheets.feedview import TABLES_WIDE_MM, end_view
 from wavejig.sheets.fit import best_scale
@@ -250,7 +251,15 @@ def _pieces(radiator: Radiator, left: float, top: float) -> Table:
         title="PIECES, mm",
         head=("piece", "wire", "cut length", "bends"),
         rows=tuple(
-            (p.role, f"\u00d8{number(p.diameter_mm, 3)}", number(p.cut_length_mm, 1), str(len(p.bends)))
+            (
+                "inner, bared" if p.role == "inner" else p.role,
+                f"\u00d8{number(p.diameter_mm, 3)}",
+                # the inner conductor is part of the tube's length
+                f"({number(p.cut_length_mm, 1)})"
+                if p.role == "inner"
+                else number(bought_length_mm(radiator, p), 1),
+                str(len(p.bends)),
+            )
             for p in radiator.pieces
         ),
         widths_mm=(26.0, 18.0, 20.0, 14.0),

@@ -35,10 +35,12 @@ def templates(
 ) -> Iterator[Tile]:
     """The radiator's and the blank's template for pages with a frame of that width and height."""
     half = radiator.main.diameter_mm / 2.0
+    legs = all(p.role != "tube" for p in radiator.pieces)
     low, high = radiator.main.path.bounds()
     box = (low[0] - half - 1.0, low[1] - half - 1.0, high[0] + half + 1.0, high[1] + half + 1.0)
     yield from _tiled(
-        "RADIATOR, seen from the radiator side: lay it on face up, legs through a hole cut in the middle",
+        "RADIATOR, seen from the radiator side: lay it on face up"
+        + (", legs through a hole cut in the middle" if legs else ", before it is soldered to the tube"),
         tuple(_radiator(radiator)), box, frame_mm,
     )  # fmt: skip
     if tray.own is not None:
@@ -46,7 +48,7 @@ def templates(
         return
     x0, y0, x1, y1 = pattern.outline.bounds()
     yield from _tiled(
-        "REFLECTOR BLANK before folding, seen from the radiator side",
+        f"REFLECTOR BLANK{' before folding' if tray.lips else ''}, seen from the radiator side",
         tuple(_blank(tray, pattern)), (x0 - 1.0, y0 - 1.0, x1 + 1.0, y1 + 1.0), frame_mm,
     )  # fmt: skip
 

@@ -39,7 +39,7 @@ def tray_drawing(design: Design, tray: Tray) -> Sheet:
     x0, y0, x1, y1 = room(paper)
     sections = [s for s in ("x", "y") if tray.lip(s + "+") or tray.lip(s + "-")]
     outer = {a: 2.0 * max(_reach(tray, a + "+"), _reach(tray, a + "-")) for a in "xy"}
-    plan_wide = (x1 - x0) * 0.45
+    plan_wide = (x1 - x0) * 0.488
     scale = best_scale(outer["x"], outer["y"], plan_wide - 34.0, y1 - y0 - 40.0, most=1.0)
     middle = (x0 + plan_wide / 2.0, (y0 + y1) / 2.0 + 4.0)
     views = [
@@ -59,7 +59,7 @@ def tray_drawing(design: Design, tray: Tray) -> Sheet:
         tall = (
             max((lip.height_mm for lip in tray.lips if lip.edge[0] == axis), default=0.0) + tray.thickness_mm
         )
-        zoom = best_scale(outer[axis], tall, right[1] - right[0] - 44.0, high - 34.0, most=2.0)
+        zoom = best_scale(outer[axis], tall, right[1] - right[0] - 40.0, high - 34.0, most=2.0)
         mark, side = ("A", "x+") if axis == "y" else ("B", "y-")
         views.append(
             View(
@@ -70,7 +70,9 @@ def tray_drawing(design: Design, tray: Tray) -> Sheet:
                 title_at=(centre, top - high + 1.0),
             )
         )
-    style = "corners mitred: see the blank" if tray.corner_style == "mitre" else "corners open: see the blank"
+    style = ""
+    if len(sections) == 2:
+        style = f"; corners {'mitred' if tray.corner_style == 'mitre' else 'open'}: see the blank"
     return Sheet(
         name="tray",
         paper_mm=paper,
@@ -81,7 +83,7 @@ def tray_drawing(design: Design, tray: Tray) -> Sheet:
             "meet sharp).",
             "All lips fold towards the radiator. Check the first one against this sheet before folding "
             "the rest.",
-            f"Reflector {sheet_text(design)}; {style}. Holes: see the blank.",
+            f"Reflector {sheet_text(design)}{style}. Holes: see the blank.",
         ),
         notes_at=(x0, y0 - 5.0),
         block=block(
@@ -148,7 +150,7 @@ def _plan(tray: Tray, sections: list[str], scale: float) -> Iterator[Item]:
     yield Arrow(tail=(float(tail[0]), float(tail[1])), tip=(float(tip[0]), float(tip[1])), pen="outline")
     yield Text(
         at=(float(tail[0]), float(tail[1])),
-        text="UP when mounted",
+        text="hangs UP",
         anchor="centre" if tray.up[0] == "y" else "right",
         shift=(0.0, -3.0) if tray.up[0] == "y" else (-1.0, -0.9),
     )

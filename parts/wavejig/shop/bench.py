@@ -54,8 +54,8 @@ def _heat(design: Design) -> Iterator[Finding]:
     yield Finding(
         code="sheet-draws-heat",
         severity=WARNING,
-        message=f"{sheet.thickness_mm:g} mm {sheet.metal.name}, {sheet.base_x_mm:g} x {sheet.base_y_mm:g} mm, carries "
-        f"some {watts:.0f} W away from the soldered joint; an ordinary iron gives {IRON_W:g} W",
+        message=f"{sheet.thickness_mm:.3g} mm {sheet.metal.name}, {sheet.base_x_mm:g} x {sheet.base_y_mm:g} mm, "
+        f"carries some {watts:.0f} W away from the soldered joint; an ordinary iron gives {IRON_W:g} W",
         remedy="Warm the sheet from below first (hot plate, hot air), use a strong iron or a small torch, or take "
         'ground = "lug" and solder the leg to its lug beforehand.',
         where="reflector.thickness",

@@ -22,8 +22,8 @@ def spacer_findings(design: Design, spacer: Spacer) -> Iterator[Finding]:
         yield Finding(
             code="spacer-note",
             severity=NOTE,
-            message=note,
-            remedy="See the spacer's own remarks.",
+            message=note.rstrip("."),
+            remedy="Nothing to change: keep it in mind while soldering.",
             where="spacer",
         )
     material = plastic(spacer.plastic)
@@ -58,8 +58,8 @@ def fixture_findings(design: Design, fixture: Fixture) -> Iterator[Finding]:
         yield Finding(
             code="fixture-note",
             severity=NOTE,
-            message=note,
-            remedy="Write or hold it by hand.",
+            message=note.rstrip("."),
+            remedy="Nothing to change: do by hand what it says.",
             where="fixture",
         )
     for load in fixture.pins.too_weak[:1]:

@@ -7,7 +7,7 @@ from collections.abc import Iterator
 from wavejig.design.model import Design
 from wavejig.radiator.clearance import clearances
 from wavejig.radiator.model import Radiator
-from wavejig.radiator.stock import stock_of
+from wavejig.radiator.stock import bought_length_mm, stock_of
 from wavejig.shop.finding import ERROR, NOTE, WARNING, Finding
 
 # Air below which two wires of an antenna are as good as joined once a bend is a degree off.
@@ -107,11 +107,12 @@ def _stock(design: Design, radiator: Radiator) -> Iterator[Finding]:
         if bought is None or bought.length_mm is None:
             continue
         room = bought.length_mm - design.wire_stock.end_waste_mm - design.wire_stock.cut_loss_mm
-        if piece.cut_length_mm > room + 1e-9:
+        length = bought_length_mm(radiator, piece)
+        if length > room + 1e-9:
             yield Finding(
                 code="wire-over-stock",
                 severity=ERROR,
-                message=f"{piece.role}: {piece.cut_length_mm:.1f} mm to cut; a length of {bought.length_mm:g} mm gives "
+                message=f"{piece.role}: {length:.1f} mm to cut; a length of {bought.length_mm:g} mm gives "
                 f"{max(room, 0.0):.1f} mm after {design.wire_stock.end_waste_mm:g} mm of end waste and "
                 f"{design.wire_stock.cut_loss_mm:g} mm lost in the cut",
                 remedy=f"Buy longer lengths (wire_stock.{bought.key}), or waste less at the end if you can.",

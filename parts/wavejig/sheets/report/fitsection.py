@@ -28,14 +28,16 @@ def fit_section(r: Report) -> Iterator[Element]:
     own = r.design.reflector.kind == "own"
     if r.batch is not None:
         files = {e.path for e, _ in r.files}
-        made = [(*row[:3], _link(row[3], files)) for row in lists.batch(r.batch)]
-        yield table("For the whole batch", lists.BATCH_HEAD, made)
-    yield el("div", parts_of((_own(r.pattern) if own else _sheet(r), _plate(r) or _bed(r))), class_="pair")
+        whole = [(*row[:3], _link(row[3], files)) for row in lists.batch(r.batch)]
+        yield table("For the whole batch", lists.BATCH_HEAD, whole)
+    yield el("div", parts_of((_own(r) if own else _sheet(r), _plate(r) or _bed(r))), class_="pair")
+    prints = None if r.batch is None else r.batch.prints
+    made = {} if prints is None else {p.name: p.count for p in prints.pieces}
     rows = [
         (
             p.name,
             part,
-            str(count),
+            str(made.get(p.name, count)),
             " \u00d7 ".join(number(s, 1) for s in p.size_mm) + " mm",
             f"{number(p.overhang_deg, 0)}\u00b0"
             + (f", bridges {number(p.bridge_mm, 1)} mm" if p.bridge_mm else ""),
@@ -99,11 +101,17 @@ def _placed(pattern: FlatPattern, place: Placement, move: Move) -> Iterator[Elem
     yield word((at[0], at[1] + 4.0), f"{place.number}", class_="t small", anchor="middle")
 
 
-def _own(pattern: FlatPattern) -> Element:
+def _own(r: Report) -> Element:
     """A reflector that is there already: its floor and what is drilled in it."""
+    pattern, own = r.pattern, r.design.reflector.own
     w, h = pattern.size_mm
+    size = (
+        f"\u00d8{number(w, 1)}"
+        if own is not None and own.shape == "round"
+        else f"{number(w, 1)} by {number(h, 1)}"
+    )
     text = (
-        f"Your own reflector, {number(w, 1)} by {number(h, 1)} mm inside on its floor: nothing is cut, "
+        f"Your own reflector, {size} mm inside on its floor: nothing is cut, "
         f"{count_of(len(pattern.holes), 'hole')} to be drilled by the template. From the radiator side."
     )
     tall = 2.0 * _EDGE + _ALONE * h / max(w, h)

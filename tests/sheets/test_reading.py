@@ -1,0 +1,253 @@
+"""The sheets read as by whoever must act on them: one number for one thing, words that can be done, nothing across
+the lettering. Each test stands for a mistake once found by reading."""
+
+from __future__ import annotations
+
+import math
+import re
+from functools import cache
+
+import numpy as np
+import pytest
+import shapely
+
+from tests.designs import design
+from tests.sheets.conftest import CUT, DEMOS, inspected, pattern_of
+from wavejig.batch.plan import plan as plan_batch
+from wavejig.fixture.bending.model import BendOrder
+from wavejig.fixture.bending.order import plan_order
+from wavejig.sheets import bending, checks, lists
+from wavejig.sheets.fonts import width_mm
+from wavejig.sheets.laid import laid
+from wavejig.sheets.layout import lay_out
+from wavejig.sheets.marks import Stroke, Word
+from wavejig.sheets.model import Ring, Sheet, View, number
+from wavejig.sheets.process import assembly_steps
+from wavejig.sheets.sheetfiles import drawings
+from wavejig.sheets.template import templates
+from wavejig.shop import Inspection, inspect
+
+
+@cache
+def order_of(name: str) -> BendOrder:
+    made = inspected(name)
+    assert made.radiator and made.fixture
+    return plan_order(made.design, made.radiator, made.fixture)
+
+
+def steps_of(name: str) -> tuple[str, ...]:
+    made = inspected(name)
+    assert made.radiator and made.spacer and made.fixture
+    return assembly_steps(made.design, made.radiator, made.spacer, made.fixture, order_of(name))
+
+
+def paper_of(made: Inspection) -> dict[str, Sheet]:
+    return {sheet.name: sheet for _, sheet in drawings(made, pattern_of(made))}
+
+
+# -- bending ------------------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("name", DEMOS)
+def test_a_step_speaks_only_of_bends_that_are_there(name: str) -> None:
+    """Where a bend's plane is told by another bend, that one has been made before."""
+    made = inspected(name)
+    assert made.radiator and made.fixture
+    shown = bending.frames(made.design, made.radiator, made.fixture, order_of(name))
+    done: dict[str, set[str]] = {}
+    for frame in shown:
+        piece, bend = re.match(r"(.*), step .* bend (\d+)", frame.title).groups()  # type: ignore[union-attr]
+        told = set(re.findall(r"bend (\d+)", frame.text))
+        assert told <= done.setdefault(piece, set()), (frame.title, frame.text)
+        done[piece].add(bend)
+        assert "deg" not in frame.text
+
+
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "ridge-868"])
+def test_marks_are_drawn_before_they_are_used(name: str) -> None:
+    made = inspected(name)
+    assert made.radiator and made.fixture
+    told = " ".join(bending.marks_to_draw(order_of(name)))
+    assert "START" in told
+    for frame in bending.frames(made.design, made.radiator, made.fixture, order_of(name)):
+        for mark in re.findall(r"mark at ([\d.]+) mm", frame.text):
+            assert number(float(mark), 1) in told
+
+
+@pytest.mark.parametrize("from_end", [False, True])
+def test_the_arrow_goes_where_the_free_side_goes(from_end: bool) -> None:
+    """From the side still straight to the side bent, whichever is held: measured on the drawn wire near the pin."""
+    made = inspected("ridge-868")
+    assert made.radiator and made.fixture
+    piece = made.radiator.main
+    every = {b.number for b in piece.bends}
+    turned = np.array([-1.0, 1.0]) if made.fixture.face_down else np.array([1.0, 1.0])
+    seen = set()
+    for station in made.fixture.stations:
+        others = {n for n in every if (n > station.number) == from_end and n != station.number}
+        pin = np.array(station.at)
+
+        def side(done: set[int], n: int = station.number, pin: np.ndarray = pin) -> float:
+            wire = laid(piece, done, n, from_end=from_end) * turned
+            away = np.linalg.norm(wire - pin, axis=1)
+            ring = np.flatnonzero((away > 20.0) & (away < 45.0))
+            free = wire[ring[0] if from_end else ring[-1]] - pin
+            return math.atan2(free[1], free[0])
+
+        before, after = side(others), side(others | {station.number})
+        first, last = bending.swing_rad(station, from_end=from_end)
+        moved = math.remainder(after - before, 2.0 * math.pi)
+        assert math.copysign(1.0, last - first) == math.copysign(1.0, moved)
+        assert abs(math.remainder(first - before, 2.0 * math.pi)) < math.radians(25.0)
+        seen.add(station.turn)
+    assert seen == {"left", "right"}
+
+
+def test_a_stop_block_s_bends_are_not_drawn_on_a_board() -> None:
+    made = inspect(design(fixture={"style": "stop-block"}))
+    assert made.radiator and made.fixture
+    order = plan_order(made.design, made.radiator, made.fixture)
+    shown = bending.frames(made.design, made.radiator, made.fixture, order)
+    assert any("stop block" in f.seen for f in shown)
+    assert not any("board" in f.seen for f in shown)
+
+
+def test_the_extra_length_is_cut_off_once_and_it_is_said_when() -> None:
+    for name in ("ridge-868", "saltmarsh-2g4"):
+        made = inspected(name)
+        assert made.radiator and made.fixture
+        first = lists.trimmed_before(order_of(name), "main")
+        ((title, _), *_) = lists.bends(made.radiator, made.fixture, order_of(name))
+        in_steps = [s for s in steps_of(name) if "Cut the extra" in s]
+        pictures = bending.frames(made.design, made.radiator, made.fixture, order_of(name))
+        in_pictures = [f for f in pictures if "Cut off the extra" in f.text]
+        assert (f"cut off before bend {first}" in title) is (first is not None)
+        assert ("cut off after bending" in title) is (first is None)
+        assert (len(in_steps), len(in_pictures)) == ((1, 0) if first is None else (0, 1))
+
+
+# -- one number for one thing -------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("name", ["ridge-868", "boatshed-5g8"])
+def test_the_tube_is_cut_to_one_length_everywhere(name: str) -> None:
+    """Its wall and the inner conductor that is bared: in the cut list, the steps, the drawing and the plan to buy."""
+    made = inspected(name)
+    assert made.radiator and made.tray and made.spacer and made.fixture
+    pieces = {p.role: p for p in made.radiator.pieces}
+    length = number(pieces["tube"].developed_length_mm + pieces["inner"].developed_length_mm, 1)
+    pattern = pattern_of(made)
+    (row,) = [r for r in lists.materials(made.design, made.radiator, pattern, made.spacer) if "tube" in r[0]]
+    assert f"\u00d7 {length} mm" in row[2]
+    assert len([s for s in steps_of(name) if f"{length} mm" in s]) == 2
+    (drawn,) = [r for t in paper_of(made)["radiator"].tables for r in t.rows if r[0] == "tube"]
+    assert drawn[2] == length
+    batch = plan_batch(made.design, made.radiator, made.tray, pattern, made.spacer, made.fixture)
+    (plan,) = [w for w in batch.wires if w.kind == "tube"]
+    assert number(plan.pieces[0][1], 1) == length
+    assert plan.needed_mm > made.design.quantity * plan.pieces[0][1]
+
+
+def test_a_round_dish_has_a_diameter() -> None:
+    made = inspected("landing-2g4-own")
+    assert made.radiator and made.tray and made.spacer and made.fixture
+    batch = plan_batch(made.design, made.radiator, made.tray, pattern_of(made), made.spacer, made.fixture)
+    (line,) = [b for b in batch.bill.lines if b.key == "own"]
+    assert "160 mm diameter" in line.size and " x " not in line.size
+
+
+# -- words that fit the design ------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize("name", DEMOS)
+def test_legs_are_spoken_of_only_where_there_are_some(name: str) -> None:
+    made = inspected(name)
+    assert made.radiator and made.tray and made.fixture
+    legs = made.design.feed.style == "legs"
+    pattern = pattern_of(made)
+    (lay,) = [s for s in steps_of(name) if "Lay the radiator in the check nest" in s]
+    said = [
+        lay,
+        next(t.caption for t in templates(made.radiator, made.tray, pattern, (190.0, 270.0))),
+        *(v.title for v in paper_of(made)["fixture"].views if "face DOWN" in v.title),
+        next(
+            c.how
+            for c in checks.first_article(made.design, made.radiator, made.tray, pattern)
+            if "nest" in c.what
+        ),
+    ]
+    assert len(said) >= 4
+    assert all(("legs" in text) is legs for text in said), said
+
+
+@pytest.mark.parametrize("name", CUT)
+def test_folds_and_drains_are_spoken_of_only_where_there_are_some(name: str) -> None:
+    made = inspected(name)
+    assert made.radiator and made.tray
+    folded = bool(made.tray.lips)
+    notes = " ".join(paper_of(made)["blank"].notes)
+    captions = [t.caption for t in templates(made.radiator, made.tray, pattern_of(made), (190.0, 270.0))]
+    assert ("fold UP" in notes) is folded
+    assert any("before folding" in c for c in captions) is folded
+    drained = any(h.purpose == "drain" for h in made.tray.holes)
+    assert any("drain holes left open" in s for s in steps_of(name)) is drained
+
+
+def test_round_lobes_have_no_corner_to_measure_at() -> None:
+    for name, words in (("creek-915-round", "far side of each lobe"), ("saltmarsh-2g4", "every far corner")):
+        made = inspected(name)
+        assert made.radiator and made.tray
+        (top,) = [
+            c
+            for c in checks.first_article(made.design, made.radiator, made.tray, pattern_of(made))
+            if c.what.startswith("standoff")
+        ]
+        assert words in top.how
+
+
+@pytest.mark.parametrize("name", DEMOS)
+def test_a_finding_ends_with_one_full_stop(name: str) -> None:
+    for f in inspected(name).findings:
+        assert not f.message.endswith(".")
+        assert not re.search(r"\d\.\d{4,}", f.message), f.message
+
+
+# -- nothing across the lettering ---------------------------------------------------------------------
+
+
+def _box(word: Word) -> shapely.Polygon:
+    """What a line of lettering covers on paper, a little less than its capitals, so that touching is none."""
+    wide = width_mm(word.text, word.height_mm, bold=word.bold)
+    left = {"left": 0.0, "centre": -wide / 2.0, "right": -wide}[word.anchor]
+    flat = shapely.box(left, 0.0, left + wide, word.height_mm).buffer(-0.2)
+    turned = shapely.affinity.rotate(flat, word.rotation_deg, origin=(0.0, 0.0))
+    return shapely.affinity.translate(turned, *word.at)
+
+
+def _lines(view: View, pens: tuple[str, ...]) -> list[shapely.LineString]:
+    found = []
+    for thing in lay_out(view):
+        if isinstance(thing, Stroke) and thing.pen in pens and thing.points:
+            found.append(shapely.LineString(thing.points))
+    for item in view.items:
+        if isinstance(item, Ring):
+            x, y = view.at[0] + item.circle.x_mm * view.scale, view.at[1] + item.circle.y_mm * view.scale
+            found.append(shapely.Point(x, y).buffer(item.circle.diameter_mm / 2.0 * view.scale).exterior)
+    return found
+
+
+@pytest.mark.parametrize("name", DEMOS)
+def test_no_line_of_the_sheet_metal_drawings_runs_through_their_lettering(name: str) -> None:
+    """Centre lines, bend lines and rims of holes against every word of the blank's (or dish's) views."""
+    made = inspected(name)
+    sheet = paper_of(made)["blank" if made.tray is not None and made.tray.own is None else "own-dish"]
+    for view in sheet.views:
+        lines = _lines(view, ("centre", "bend"))
+        words = [w for w in lay_out(view) if isinstance(w, Word)]
+        assert lines and words
+        for word in words:
+            box = _box(word)
+            assert not any(box.intersects(line) for line in lines), (view.title, word.text)
+        boxes = [_box(w) for w in words]
+        pairs = shapely.STRtree(boxes).query(boxes, predicate="intersects").T.tolist()
+        assert all(a == b for a, b in pairs), view.title
