@@ -159,7 +159,11 @@ def _parser() -> argparse.ArgumentParser:
         "--from-scratch", action="store_true", help="take nothing over from earlier builds or tunings"
     )
     build.add_argument(
-        "-j", "--jobs", type=int, metavar="N", help="recipes built side by side (as many as cores and memory allow)"
+        "-j",
+        "--jobs",
+        type=int,
+        metavar="N",
+        help="recipes built side by side (as many as cores and memory allow)",
     )
     build.add_argument(
         "--no-wait", action="store_true", help="refuse where another process is building the same pack"
@@ -204,6 +208,12 @@ def _parser() -> argparse.ArgumentParser:
     measured.add_argument("--write", action="store_true", help="put what follows into the recipe")
     measured.add_argument("--record", type=Path, metavar="FILE", help="write a test record (.csv or .txt)")
     measured.add_argument("--plot", type=Path, metavar="FILE", help="draw it (png, svg, pdf)")
+    measured.add_argument(
+        "--report",
+        type=Path,
+        metavar="FILE",
+        help="write a page: sweeps over the prediction, what to do (.html)",
+    )
     measured.add_argument(
         "--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])"
     )

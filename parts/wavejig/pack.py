@@ -25,6 +25,8 @@ from wavejig.tuning.settle import Settled, kept, settle
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction
     from wavejig.files.kept import Kept
+    from wavejig.recipe.models import Recipe
+    from wavejig.tuning.yields import Yield
 
 Progress = Callable[[str], None]
 Free = Literal["tuned", "start", "kept"]  # what becomes of values left "auto"
@@ -117,12 +119,16 @@ def build(
         inspection = inspect(settled.design)
         if not inspection.can_be_made:
             raise CannotBeMadeError(inspection)
+        yields = _yields(recipe_file.recipe, inspection, progress, announce) if predict else None
         progress("loading the CAD kernel")
+        from wavejig.files.beside import Beside
         from wavejig.files.fingerprint import fingerprint
         from wavejig.files.packfiles import PackFiles
 
-        with staging(out, inspection.design.name) as stage:
-            files = PackFiles(inspection, stage, predict=predict, announce=announce, kept=memory)
+        with staging(out, inspection.design.name) as stage, Beside() as beside:
+            files = PackFiles(
+                inspection, stage, predict=predict, announce=announce, kept=memory, beside=beside
+            )
             for step in files.steps():
                 progress(step.title)
                 files.do(step)
@@ -149,6 +155,7 @@ def build(
                 entries=files.entries,
                 batch=files.batch,
                 prediction=files.prediction,
+                yields=yields,
             )
             progress("checking the pack")
             origin = made_from(
@@ -173,6 +180,23 @@ def _read(path: Path) -> tuple[RecipeFile, bytes]:
         recipe_file, text = read_recipe(path), path.read_bytes()
         if read_recipe(path) == recipe_file:
             return recipe_file, text
+
+
+def _yields(recipe: Recipe, inspection: Inspection, progress: Progress, announce: Progress) -> Yield | None:
+    """Where the recipe asks for it: a page follows from its recipe, not from what happens to be kept."""
+    if recipe.sheet.expected_yield != "yes" or inspection.radiator is None or inspection.tray is None:
+        return None
+    from wavejig.field.errors import ModelError
+    from wavejig.tuning.asbuilt import ArticleError
+    from wavejig.tuning.asked import yield_of
+    from wavejig.tuning.solving import workers
+
+    try:
+        with workers() as executor:
+            return yield_of(recipe, inspection, executor, lambda step: progress(f"yield, {step}"))
+    except (ArticleError, ModelError) as err:
+        announce(f"{inspection.design.name}: its spread cannot be predicted: {err}")
+        return None
 
 
 def _settled(

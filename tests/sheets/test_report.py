@@ -34,6 +34,7 @@ from wavejig.files.mesh import Mesh
 from wavejig.files.printable import Printability
 from wavejig.sheets.report.axes import ticks
 from wavejig.sheets.report.check import check_report
+from wavejig.sheets.report.frompack import write_sweeps_report
 from wavejig.sheets.report.markup import Own, data, el, write
 from wavejig.sheets.report.meshes import Shown, chosen, packed
 from wavejig.sheets.report.model import Report
@@ -202,6 +203,22 @@ def test_yield_and_measured_sweeps_are_told_and_drawn(tmp_path: Path) -> None:
     assert curves == ["curve m1", "curve m2", "curve m3", "curve predicted"]
     bars = tree.xpath("//*[@id='yield-plot']//*[@class='bar' or @class='barfail']")
     assert len(bars) == len(y.counts)
+
+
+def test_sweeps_have_a_page_of_their_own_with_no_pack_round_it(tmp_path: Path) -> None:
+    path = tmp_path / "spare.html"
+    m = proven()["measured"]
+    write_sweeps_report(inspected("boatshed-5g8"), path, prediction(), m)
+    tree = parsed(path.read_text(encoding="utf-8"))
+    assert [h.text_content() for h in tree.iter("h2")] == [
+        "In short", "Will it match, and where does it point?", "How many will pass?", "What do I change?",
+    ]  # fmt: skip
+    assert not tree.xpath("//*[@id='files']") and not tree.xpath("//canvas")
+    words = " ".join(tree.text_content().split())
+    assert "serial 5, worst" in words and "fails by" in words
+    assert f"About {m.predicted.expected:.1f} of 3" in words
+    curves = tree.xpath("//*[@id='match-plot']//*[contains(@class,'curve')]/@class")
+    assert curves == ["curve m1", "curve m2", "curve m3", "curve predicted"]
 
 
 def test_the_same_bytes_twice() -> None:

@@ -42,7 +42,7 @@ OTHER = {
     "name": "a-name-so-long-that-no-mark-has-room-for-it",
     "quantity": 99,
     "station": {"transmitter_power": "5 W", "cable_loss": "3 dB", "wind_speed": "60 m/s"},
-    "sheet": {"paper": "Letter", "projection": "third"},
+    "sheet": {"paper": "Letter", "projection": "third", "expected_yield": "yes"},
     "prices": {"currency": "EUR", "wire": 3.0, "sheet": 20.0, "blank": 4.0, "plug": 2.0},
     "tolerances": {
         "distribution": "uniform", "feed_gap": "0.1 mm", "wire": "0.1 mm", "bend_radius": "0.9 mm",

@@ -78,6 +78,7 @@ def write_sweep(path: Path, f: np.ndarray, s: np.ndarray) -> Path:
         (["measured", "RECIPE", "a.s1p", "b.s1p", "--reading", "side=11.4mm"], "one article"),
         (["measured", "RECIPE", "a.s1p", "--record", "r.pdf"], ".csv or .txt"),
         (["measured", "RECIPE", "a.s1p", "--plot", "m.bmp"], ".png"),
+        (["measured", "RECIPE", "a.s1p", "--report", "m.pdf"], ".html"),
     ],
     ids=lambda a: " ".join(a) if isinstance(a, list) else "",
 )
@@ -135,8 +136,10 @@ def test_measured_writes_what_mends_the_next(recipe: Path, tmp_path: Path) -> No
     sweep = planted.sweep(worst, np.random.default_rng(3), noise_db=0.2)
     path = write_sweep(tmp_path / "first-1.s1p", sweep.frequencies_hz, sweep.reflection)
     picture, record = tmp_path / "m.png", tmp_path / "r.csv"
+    page = tmp_path / "p.html"
     done = run(
-        "measured", str(recipe), str(path), "--json", "--write", "--plot", str(picture), "--record", str(record)
+        "measured", str(recipe), str(path), "--json", "--write", "--plot", str(picture), "--record", str(record),
+        "--report", str(page),
     )  # fmt: skip
     assert done.returncode == 1, done.stderr  # it fails, and says so
     data = json.loads(done.stdout)
@@ -149,5 +152,6 @@ def test_measured_writes_what_mends_the_next(recipe: Path, tmp_path: Path) -> No
     change = next(c for c in data["recipe_changes"] if c["key"] == "side")
     assert f'side = "{change["new_mm"]:g} mm"' in after
     assert picture.stat().st_size > 10_000
+    assert "serial 1, worst" in page.read_text(encoding="utf-8")
     assert record.read_text(encoding="utf-8").splitlines()[1].startswith("1,first-1.s1p,fails,")
     assert main(["check", str(recipe)]) == 0

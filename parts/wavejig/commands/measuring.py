@@ -5,7 +5,7 @@ from __future__ import annotations
 import argparse
 import json
 import sys
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -27,6 +27,7 @@ if TYPE_CHECKING:
     from wavejig.tuning.measured import Measured
     from wavejig.tuning.sweepfile import MeasuredSweep
 
+PAGES = (".html", ".htm")
 FAR_READING = 0.2  # of the drawn size: then something else was measured, or over something else
 
 
@@ -53,7 +54,7 @@ def run(args: argparse.Namespace) -> int:
         return _end(args, WRONG_INPUT, unreadable(path, err, args.json))
     if inspection.radiator is None or inspection.tray is None:
         return stop(CANNOT_BE_MADE, f"{path}: cannot be made, so nothing is predicted; see `wavejig check`")
-    sweeps, bad = _sweeps(args, inspection)
+    sweeps, bad = _sweeps(args.sweeps, inspection)
     if not sweeps:
         return _end(args, WRONG_INPUT, {"recipe": str(path), "refused": bad})
     meter = Meter(path.name, sys.stderr, quiet=args.json)
@@ -103,19 +104,19 @@ def _measure(
         code = WRONG_INPUT
     if not args.json:
         say(measured_text(found))
-    code = max(code, _keep(args, recipe_file, found))
+    code = max(code, _keep(args, recipe_file, inspection, found))
     return _end(args, code, {"recipe": str(args.recipe), **measured_data(found), "refused": bad})
 
 
-def _keep(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) -> int:
-    """Record, picture, recipe: what was asked to be written."""
+def _keep(args: argparse.Namespace, recipe_file: RecipeFile, inspection: Inspection, found: Measured) -> int:
+    """Record, picture, page, recipe: what was asked to be written."""
     code = OK
     if args.record is not None:
         from wavejig.tuning.record import write_record
 
         try:
             write_record(found, args.record)
-            sys.stderr.write(f"{args.record} written\n")
+            announce(f"{args.record} written")
         except OSError as err:
             code = stop(MACHINE, f"{args.record}: record not written: {err.strerror or err}")
     if args.plot is not None:
@@ -123,12 +124,29 @@ def _keep(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) ->
 
         try:
             plot_measured(found, args.plot)
-            sys.stderr.write(f"{args.plot} written\n")
+            announce(f"{args.plot} written")
         except OSError as err:
             code = stop(MACHINE, f"{args.plot}: picture not written: {err.strerror or err}")
+    if args.report is not None:
+        code = max(code, _report(args.report, inspection, found))
     if args.write:
         code = max(code, _write(args, recipe_file, found))
     return code
+
+
+def _report(path: Path, inspection: Inspection, found: Measured) -> int:
+    from wavejig.field.errors import ModelError
+    from wavejig.field.prediction import predict
+    from wavejig.sheets.report.frompack import write_sweeps_report
+
+    try:
+        write_sweeps_report(inspection, path, predict(inspection.design, announce=announce), found)
+    except ModelError as err:
+        return stop(CANNOT_BE_MADE, f"{path}: page not written, the match cannot be predicted: {err}")
+    except OSError as err:
+        return stop(MACHINE, f"{path}: page not written: {err.strerror or err}")
+    announce(f"{path} written")
+    return OK
 
 
 def _write(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) -> int:
@@ -145,15 +163,13 @@ def _write(args: argparse.Namespace, recipe_file: RecipeFile, found: Measured) -
             )
         edit_file(args.recipe, wanted)
     except NothingToWriteError as err:
-        sys.stderr.write(f"{args.recipe}: left as it is: {err}\n")
+        announce(f"{args.recipe}: left as it is: {err}")
         return OK
     except EditError as err:
         return stop(WRONG_INPUT, f"{args.recipe}: {err}")
     except OSError as err:
         return stop(MACHINE, f"{args.recipe}: not written: {err.strerror or err}; it is as it was")
-    sys.stderr.write(
-        f"{args.recipe} written: {', '.join(f'{p.table}.{p.key} = {p.value}' for p in wanted)}\n"
-    )
+    announce(f"{args.recipe} written: {', '.join(f'{p.table}.{p.key} = {p.value}' for p in wanted)}")
     return OK
 
 
@@ -163,6 +179,8 @@ def _refuse_names(args: argparse.Namespace) -> int | None:
 
     if args.record is not None and args.record.suffix.lower() not in KINDS:
         return stop(WRONG_INPUT, f"{args.record}: a record's name must end in {' or '.join(KINDS)}")
+    if args.report is not None and args.report.suffix.lower() not in PAGES:
+        return stop(WRONG_INPUT, f"{args.report}: a report's name must end in {' or '.join(PAGES)}")
     if args.plot is not None:
         from wavejig.field.plot import PlotError, check_path
 
@@ -219,23 +237,24 @@ def _readings(
 
 
 def _sweeps(
-    args: argparse.Namespace, inspection: Inspection
+    paths: Sequence[Path], inspection: Inspection
 ) -> tuple[list[MeasuredSweep], list[dict[str, str]]]:
+    """The sweeps that can be used, and why the others cannot, which is told on stderr too."""
     from wavejig.tuning.sweepfile import SweepError, read_sweep
 
     target = inspection.design.target
     good: list[MeasuredSweep] = []
     bad: list[dict[str, str]] = []
-    for path in args.sweeps:
+    for path in paths:
         try:
             good.append(read_sweep(path, target.band_low_hz, target.band_high_hz, target.reference_ohm))
         except SweepError as err:
             bad.append({"sweep": str(path), "error": err.message})
-            sys.stderr.write(f"{err}\n")
+            announce(f"{err}")
         except OSError as err:
             message = f"cannot be read: {err.strerror or err}"
             bad.append({"sweep": str(path), "error": message})
-            sys.stderr.write(f"{path}: {message}\n")
+            announce(f"{path}: {message}")
     return good, bad
 
 

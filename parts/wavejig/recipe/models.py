@@ -546,11 +546,16 @@ class Station(_Table):
 
 
 class Sheet(_Table):
-    """The paper of the build sheet and drawings."""
+    """The paper of the build sheet and drawings, and what the page tells besides."""
 
     paper: Annotated[str, choice("A4", "Letter")] = Field("A4", description="paper the sheets are printed on")
     projection: Annotated[str, choice("first", "third")] = Field(
         "first", description="where drawings put side views: first-angle (ISO) or third-angle projection"
+    )
+    expected_yield: Annotated[str, choice("no", "yes")] = Field(
+        "no",
+        description="yes: report.html tells how many of the batch will pass, as `wavejig yield` does; its solves are "
+        "kept, but the first build takes them on",
     )
 
 

@@ -10,10 +10,10 @@ from wavejig.batch.model import Batch
 from wavejig.files.glb import ColouredMesh
 from wavejig.files.manifest import Entry
 from wavejig.files.printable import Printability
-from wavejig.reflector.flat import FlatPattern
+from wavejig.reflector.flat import FlatPattern, flat_pattern
 from wavejig.sheets.report.meshes import Shown
 from wavejig.sheets.report.model import Report
-from wavejig.sheets.report.page import write_report
+from wavejig.sheets.report.page import write_report, write_sweeps
 from wavejig.shop import Inspection
 
 if TYPE_CHECKING:
@@ -33,7 +33,6 @@ def write_pack_report(
     batch: Batch | None = None,
     prediction: Prediction | None = None,
     yields: Yield | None = None,
-    measured: Measured | None = None,
 ) -> tuple[Entry, ...]:
     """Write report.html into a pack's folder, beside the files of `entries`; the manifest's entries.
 
@@ -49,6 +48,26 @@ def write_pack_report(
         batch=batch,
         prediction=prediction,
         yields=yields,
-        measured=measured,
     )
     return write_report(report, root)
+
+
+def write_sweeps_report(
+    inspection: Inspection, path: Path, prediction: Prediction, measured: Measured
+) -> None:
+    """What sweeps say, as a page of its own at `path`: they are no part of the recipe that a pack follows from.
+
+    Raises FileCheckError, and OSError when it cannot be written.
+    """
+    assert inspection.tray is not None
+    report = Report(
+        inspection=inspection,
+        pattern=flat_pattern(inspection.tray, inspection.design.name),
+        pieces=(),
+        prints=(),
+        files=(),
+        prediction=prediction,
+        yields=measured.predicted,
+        measured=measured,
+    )
+    write_sweeps(report, path)

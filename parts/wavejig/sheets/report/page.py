@@ -37,6 +37,8 @@ _SECTIONS: tuple[Section, ...] = (
     ("change", "What do I change?", change_answer, change_section),
 )
 
+_ON_SWEEPS = ("match", "yield", "change")
+
 
 def write_report(report: Report, root: Path) -> tuple[Entry, ...]:
     """Write report.html into a pack's folder and read it back; the manifest's entries.
@@ -49,8 +51,17 @@ def write_report(report: Report, root: Path) -> tuple[Entry, ...]:
     return (Entry(path=NAME, kind="html", part="design", units=""),)
 
 
-def page(r: Report) -> str:
-    """The page as text."""
+def write_sweeps(report: Report, path: Path) -> None:
+    """A page of measured sweeps alone, standing where the user wants it, with no pack round it.
+
+    Raises FileCheckError, and OSError when it cannot be written.
+    """
+    path.write_text(page(report, _ON_SWEEPS), encoding="utf-8", newline="\n")
+    check_report(path, report.design.name)
+
+
+def page(r: Report, keys: tuple[str, ...] | None = None) -> str:
+    """The page as text; keys: of the only sections it is to have, without the pack's files."""
     style, script = _own("report.css"), _own("viewer.js")
     # nothing is fetched and no other script runs, wherever the page is opened
     policy = (
@@ -68,11 +79,12 @@ def page(r: Report) -> str:
         el("link", rel="icon", href="data:,"),
         el("style", style),
     )
-    body = el("body", _body(r), el("script", script))
+    body = el("body", _body(r, keys), el("script", script))
     return "<!DOCTYPE html>\n" + write(el("html", head, body, lang="en")) + "\n"
 
 
-def _body(r: Report) -> Iterable[Element]:
+def _body(r: Report, keys: tuple[str, ...] | None) -> Iterable[Element]:
+    sections = [s for s in _SECTIONS if keys is None or s[0] in keys]
     yield el("a", "To the answers", href="#main", class_="skip")
     d, t = r.design, r.design.target
     yield el(
@@ -87,8 +99,8 @@ def _body(r: Report) -> Iterable[Element]:
         ),
         el(
             "nav",
-            el("ul", [el("li", el("a", title, href=f"#{key}")) for key, title, _, _ in _SECTIONS],
-               el("li", el("a", "Files", href="#files"))),
+            el("ul", [el("li", el("a", title, href=f"#{key}")) for key, title, _, _ in sections],
+               el("li", el("a", "Files", href="#files")) if keys is None else []),
             aria_label="questions",
         ),
     )  # fmt: skip
@@ -99,17 +111,17 @@ def _body(r: Report) -> Iterable[Element]:
             "ul",
             [
                 el("li", el("a", title, href=f"#{key}"), el("span", answer(r)), class_=_tone(key, r))
-                for key, title, answer, _ in _SECTIONS
+                for key, title, answer, _ in sections
             ],
             class_="answers",
         ),
         [
             el("section", el("h2", title, id=f"{key}-head"), inside(r), id=key, aria_labelledby=f"{key}-head")
-            for key, title, _, inside in _SECTIONS
+            for key, title, _, inside in sections
         ],
-        el(
-            "section", el("h2", "Files", id="files-head"), _files(r), id="files", aria_labelledby="files-head"
-        ),
+        el("section", el("h2", "Files", id="files-head"), _files(r), id="files", aria_labelledby="files-head")
+        if keys is None
+        else [],
         id="main",
     )
     yield el(
