@@ -8,9 +8,8 @@ import numpy as np
 import pytest
 
 from tests.tuning import resonator
-from tests.tuning.articles import near, plants, thirty
 from wavejig.tuning.fitting import LIGHT_MM_PER_S, OFFSET
-from wavejig.tuning.found import Findings, find
+from wavejig.tuning.found import find
 from wavejig.tuning.surface import reflection
 from wavejig.tuning.sweepfile import MeasuredSweep
 from wavejig.tuning.yields import FREQUENCY
@@ -112,33 +111,3 @@ def test_what_no_dimension_explains_is_strange(circuit: resonator.Explored) -> N
     loose = sweep.reflection + 0.25 * np.exp(-1j * f / 4e7)
     odd = MeasuredSweep(path=sweep.path, serial="1", frequencies_hz=f, reflection=loose, reference_ohm=50.0)
     assert find(circuit, odd).right.misfit > 3.0
-
-
-def recovered(found: list[Findings], planted: object, key: str, limit: float) -> tuple[int, int, int]:
-    names, truth = planted.names, planted.deviations  # type: ignore[attr-defined]
-    got = [f.right.get(key) for f in found]
-    true = truth[:, names.index(key)]
-    near_enough = sum(abs(d.value - t) <= limit for d, t in zip(got, true, strict=True))
-    held = sum(d.interval[0] <= t <= d.interval[1] for d, t in zip(got, true, strict=True))
-    return near_enough, held, sum(not d.told for d in got)
-
-
-@pytest.mark.slow
-@pytest.mark.parametrize("kind", ["point", "sweep"])
-def test_thirty_plants(kind: str) -> None:
-    from wavejig.tuning.explore import explore
-    from wavejig.tuning.solving import workers
-    from wavejig.tuning.spread import spread
-    from wavejig.tuning.sweepfile import BESIDE
-
-    recipe, article = near("boatshed-5g8")
-    with workers() as executor:
-        explored = explore(article, spread(recipe, article), executor, wide=True, least_margin=BESIDE)
-        planted = plants(recipe, article, executor, thirty())
-    rng = np.random.default_rng(2)
-    found = [find(explored, planted.sweep(i, rng, kind=kind)) for i in range(30)]
-    for key, limit in (("side", 0.15), ("standoff", 0.3)):
-        near_enough, held, open_ones = recovered(found, planted, key, limit)
-        assert near_enough >= 24
-        assert held >= 27
-        assert open_ones <= 6
