@@ -29,7 +29,7 @@ from wavejig.files.making_json import Made
 from wavejig.files.manifest import Entry, check_manifest, write_manifest
 from wavejig.files.mesh import Measure, Mesh, measure, tessellate
 from wavejig.files.origin import RECIPE
-from wavejig.files.printable import BED_MARGIN_MM, Printability, require_printable
+from wavejig.files.printable import BED_MARGIN_MM, LONGEST_BRIDGE_MM, Printability, require_printable
 from wavejig.files.steady import SteadySolid, steady
 from wavejig.files.step import write_step
 from wavejig.files.stepcheck import check_step
@@ -51,6 +51,7 @@ from wavejig.reflector.solid import tray_solid
 from wavejig.shop import Inspection
 from wavejig.shop.bending import order_findings
 from wavejig.shop.finding import Finding
+from wavejig.shop.printing import span_findings
 from wavejig.shop.ways import way_findings
 from wavejig.spacer.effect import post_effect
 from wavejig.spacer.solid import hold_downs as spacer_hold_downs
@@ -343,7 +344,9 @@ class PackFiles:
         mesh, figures = tessellate(shape, name=name), measure(shape)
         printer = self.design.printer
         bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
-        self.prints.append((part, count, require_printable(mesh, bed, BED_MARGIN_MM)))
+        judged = require_printable(mesh, bed, BED_MARGIN_MM)
+        self._found(span_findings(name, judged.bridge_mm, LONGEST_BRIDGE_MM))
+        self.prints.append((part, count, judged))
         if shown or part != "spacer":  # whose pieces are shown in their places in the assembly
             self.pictured.append((ColouredMesh(mesh=mesh, colour=_PLASTIC), part))
         self._for_batch(name, part, count, mesh, figures)

@@ -21,6 +21,7 @@ from wavejig.shop.feed import conflict_findings, feed_findings, value_findings
 from wavejig.shop.finding import ERROR, Finding
 from wavejig.shop.outdoors import outdoor_findings
 from wavejig.shop.own import own_findings
+from wavejig.shop.printing import nozzle_findings
 from wavejig.shop.prints import fixture_findings, spacer_findings
 from wavejig.shop.sheet import fold_material_findings, hole_findings, sheet_findings
 from wavejig.shop.wire import wire_findings
@@ -81,6 +82,7 @@ def inspect(design: Design) -> Inspection:
         found += spacer_findings(design, spacer)
         fixture = plan_fixture(design, radiator, None if tray is None else tray.outline)
         found += fixture_findings(design, fixture)
+        found += nozzle_findings(design, spacer, fixture)
         found += springback_findings(design, radiator, fixture)
     return Inspection(
         design=design,

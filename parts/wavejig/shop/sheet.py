@@ -11,6 +11,7 @@ from wavejig.forming.sheet import minimum_hole_edge_to_bend_mm
 from wavejig.reflector.flat import flat_pattern
 from wavejig.reflector.model import Tray
 from wavejig.reflector.tray import hole_edge_to_bend_mm
+from wavejig.shop.corners import corner_findings
 from wavejig.shop.finding import ERROR, NOTE, WARNING, Finding
 from wavejig.stock.processes import cutter
 from wavejig.stock.sheet import minimum_inside_radius_mm
@@ -25,6 +26,7 @@ def sheet_findings(design: Design, tray: Tray) -> Iterator[Finding]:
     yield from _cutting(design)
     yield from _stock(design, tray)
     yield from _marks(design, tray)
+    yield from corner_findings(design, tray)
 
 
 def fold_material_findings(design: Design) -> Iterator[Finding]:
@@ -150,16 +152,8 @@ def _holes(design: Design, tray: Tray) -> Iterator[Finding]:
     need = minimum_hole_edge_to_bend_mm(r.inside_radius_mm, r.thickness_mm)
     setbacks = {lip.edge: lip.setback_mm for lip in tray.lips}
     for hole, edge, distance in hole_edge_to_bend_mm(tray):
-        if distance < 0.0:
-            yield Finding(
-                code="hole-in-bend",
-                severity=ERROR,
-                message=f"the {hole.purpose} hole of {hole.diameter_mm:g} mm at ({hole.x_mm:.2f}, {hole.y_mm:.2f}) mm "
-                f"runs {-distance:.1f} mm into the bend at {edge}",
-                remedy="Move it inwards or make the base larger.",
-                where="reflector.holes",
-            )
-        elif distance + setbacks[edge] < need - 1e-9:
+        # one that reaches into the bend itself is a conflict of the design, and there is no tray
+        if distance + setbacks[edge] < need - 1e-9:
             yield Finding(
                 code="hole-near-bend",
                 severity=WARNING,
