@@ -6,6 +6,8 @@ import shutil
 import time
 from typing import TextIO
 
+from wavejig.recipe.errors import visible
+
 
 class Meter:
     """Shows which step a long job is at, and for how long it has been running."""
@@ -21,7 +23,7 @@ class Meter:
         """Say what happens next."""
         if not self.shown:
             return
-        text = f"{self.title}: {name} ({time.monotonic() - self.began:.0f} s)"
+        text = f"{visible(self.title)}: {visible(name)} ({time.monotonic() - self.began:.0f} s)"
         room = shutil.get_terminal_size().columns - 1  # a line that wraps could not be rewritten
         text = text if len(text) <= room else text[: room - 3] + "..."
         self.stream.write("\r" + text.ljust(self.width))

@@ -10,7 +10,7 @@ from pathlib import Path
 
 from wavejig.commands.buildone import Options, Outcome, build_one, unchanged
 from wavejig.commands.stopping import stoppable
-from wavejig.commands.telling import OK, WRONG_INPUT, announce, stop
+from wavejig.commands.telling import OK, WRONG_INPUT, announce, shown, stop
 
 
 def run(args: argparse.Namespace) -> int:
@@ -65,9 +65,9 @@ def _tell(outcomes: Iterable[Outcome], as_json: bool) -> int:
         code = max(code, outcome.code)
         data.append(outcome.data)
         if not as_json:
-            sys.stdout.write(outcome.out)
+            sys.stdout.write(shown(outcome.out))
             sys.stdout.flush()
-            sys.stderr.write(outcome.err)
+            sys.stderr.write(shown(outcome.err))
     if as_json:
         sys.stdout.write(json.dumps(data, indent=1) + "\n")
     return code

@@ -21,6 +21,7 @@ from pathlib import Path
 
 from wavejig.commands.buildone import Options, Outcome, build_one, failed
 from wavejig.commands.stopping import Stopped, stoppable
+from wavejig.commands.telling import announce
 from wavejig.progress import Meter
 
 WORKER_BYTES = 2 << 30  # a large build with its field solve, measured on the demo recipes, with room
@@ -67,7 +68,7 @@ def build_many(
                     if text not in told:  # each worker that has to compile the solver says so
                         told.add(text)
                         meter.end()
-                        sys.stderr.write(f"{text}\n")
+                        announce(text)
                 if one.outcome is not None:
                     one.process.join()
                     running.remove(one)

@@ -13,11 +13,13 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    Refused,
     announce,
-    input_error,
+    failed,
     say,
     stop,
-    unreadable,
+    to_predict,
+    unfit_picture,
 )
 
 
@@ -27,13 +29,9 @@ def run(args: argparse.Namespace) -> int:
 
     if args.plot is not None and len(args.recipes) > 1:
         return stop(WRONG_INPUT, "match: --plot takes one recipe at a time")
-    if args.plot is not None:
-        from wavejig.field.plot import PlotError, check_path
-
-        try:
-            check_path(args.plot)
-        except PlotError as err:
-            return stop(WRONG_INPUT, str(err))
+    unfit = unfit_picture(args.plot)
+    if unfit is not None:
+        return unfit
     code, results = OK, []
     for path in args.recipes:
         meter = Meter(path.name, sys.stderr, quiet=args.json)
@@ -46,20 +44,10 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[str, Any]]:
-    from wavejig.pack import inspect_recipe, settle_recipe
-    from wavejig.recipe import RecipeError
-
-    try:
-        if args.as_is:
-            _, inspection = inspect_recipe(path)
-        else:
-            _, inspection, _ = settle_recipe(path, meter.step, announce)
-    except RecipeError as err:
-        return WRONG_INPUT, input_error(path, err, args.json)
-    except OSError as err:
-        return WRONG_INPUT, unreadable(path, err, args.json)
-    if inspection.radiator is None or inspection.tray is None:
-        return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
+    ready = to_predict(path, meter.step, args.json, as_is=args.as_is)
+    if isinstance(ready, Refused):
+        return ready.code, ready.data
+    _, inspection = ready
     from wavejig.field.errors import ModelError
     from wavejig.field.figures import prediction_data, prediction_text
     from wavejig.field.prediction import predict
@@ -69,7 +57,7 @@ def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[st
         prediction = predict(inspection.design, announce=announce)
     except ModelError as err:
         meter.end()
-        return CANNOT_BE_MADE, _failed(path, f"cannot be predicted: {err}")
+        return CANNOT_BE_MADE, failed(path, f"cannot be predicted: {err}")
     meter.end()
     code = OK if prediction.meets_target else CANNOT_BE_MADE
     result = {"recipe": str(path), "name": inspection.design.name, **prediction_data(prediction)}
@@ -77,7 +65,7 @@ def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[st
         say(prediction_text(prediction))
     if not inspection.can_be_made:
         code = CANNOT_BE_MADE
-        sys.stderr.write(f"{path}: has errors and cannot be made as it stands; see `wavejig check`\n")
+        announce(f"{path}: has errors and cannot be made as it stands; see `wavejig check`")
     if args.plot is not None:
         code = max(code, _plot(prediction, args.plot))
     return code, result
@@ -90,10 +78,5 @@ def _plot(prediction: Any, path: Path) -> int:
         plot_prediction(prediction, path)
     except OSError as err:
         return stop(MACHINE, f"{path}: picture not written: {err.strerror or err}")
-    sys.stderr.write(f"{path} written\n")
+    announce(f"{path} written")
     return OK
-
-
-def _failed(path: Path, message: str) -> dict[str, Any]:
-    sys.stderr.write(f"{path}: {message}\n")
-    return {"recipe": str(path), "error": message}

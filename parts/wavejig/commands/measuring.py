@@ -14,11 +14,12 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    Refused,
     announce,
-    input_error,
     say,
     stop,
-    unreadable,
+    to_predict,
+    unfit_picture,
 )
 
 if TYPE_CHECKING:
@@ -33,9 +34,7 @@ FAR_READING = 0.2  # of the drawn size: then something else was measured, or ove
 
 def run(args: argparse.Namespace) -> int:
     """Exit code: 0 all pass; 1 an article fails; 2 a recipe, sweep or reading that cannot be used."""
-    from wavejig.pack import inspect_recipe, settle_recipe
     from wavejig.progress import Meter
-    from wavejig.recipe import RecipeError
 
     refused = _refuse_names(args)
     if refused is not None:
@@ -45,23 +44,20 @@ def run(args: argparse.Namespace) -> int:
         given = _given(args)
     except ValueError as err:
         return stop(WRONG_INPUT, f"measured: {err}")
-    try:
-        recipe_file, inspection = inspect_recipe(path)
-    except RecipeError as err:
-        result = input_error(path, err, args.json)
-        return _end(args, WRONG_INPUT, result)
-    except OSError as err:
-        return _end(args, WRONG_INPUT, unreadable(path, err, args.json))
-    if inspection.radiator is None or inspection.tray is None:
-        return stop(CANNOT_BE_MADE, f"{path}: cannot be made, so nothing is predicted; see `wavejig check`")
-    sweeps, bad = _sweeps(args.sweeps, inspection)
+    ready = to_predict(path, lambda step: None, args.json, as_is=True)
+    if isinstance(ready, Refused):
+        return _end(args, ready.code, ready.data)
+    sweeps, bad = _sweeps(args.sweeps, ready[1])
     if not sweeps:
         return _end(args, WRONG_INPUT, {"recipe": str(path), "refused": bad})
     meter = Meter(path.name, sys.stderr, quiet=args.json)
     try:  # what is left free was worked out when the article was built: the same again, from the cache
-        recipe_file, inspection, _ = settle_recipe(path, meter.step, announce)
+        ready = to_predict(path, meter.step, args.json)
     finally:
         meter.end()
+    if isinstance(ready, Refused):
+        return _end(args, ready.code, ready.data)
+    recipe_file, inspection = ready
     try:
         readings = _readings(given, len(args.sweeps) == 1, recipe_file, inspection)
     except ValueError as err:
@@ -181,14 +177,7 @@ def _refuse_names(args: argparse.Namespace) -> int | None:
         return stop(WRONG_INPUT, f"{args.record}: a record's name must end in {' or '.join(KINDS)}")
     if args.report is not None and args.report.suffix.lower() not in PAGES:
         return stop(WRONG_INPUT, f"{args.report}: a report's name must end in {' or '.join(PAGES)}")
-    if args.plot is not None:
-        from wavejig.field.plot import PlotError, check_path
-
-        try:
-            check_path(args.plot)
-        except PlotError as err:
-            return stop(WRONG_INPUT, str(err))
-    return None
+    return unfit_picture(args.plot)
 
 
 def _given(args: argparse.Namespace) -> dict[str, float]:

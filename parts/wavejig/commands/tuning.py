@@ -102,11 +102,11 @@ def _write(path: Path, recipe: Any, answer: Any) -> int:
         return stop(WRONG_INPUT, f"{path}: left as it is: {err}")
     except OSError as err:
         return stop(MACHINE, f"{path}: cannot be written: {err.strerror or err}; left as it is")
-    sys.stderr.write(f"{path}: tuned values written\n")
+    announce(f"{path}: tuned values written")
     return OK
 
 
 def _told(path: Path, message: str, args: argparse.Namespace) -> dict[str, Any]:
     if not args.json:
-        sys.stderr.write(f"{path}: {message}\n")
+        announce(f"{path}: {message}")
     return {"recipe": str(path), "error": message}

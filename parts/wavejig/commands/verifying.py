@@ -67,7 +67,7 @@ def run(args: argparse.Namespace) -> int:
         if verdict.code == OK:
             say(text)
         else:
-            sys.stderr.write(f"{text}\n")
+            announce(f"{text}")
     if args.json:
         say(json.dumps(data, indent=1))
     return code

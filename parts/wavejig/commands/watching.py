@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import argparse
 import hashlib
-import sys
 import threading
 import time
 import traceback
@@ -48,7 +47,7 @@ def run(args: argparse.Namespace) -> int:
             time.sleep(POLL_S)
     except KeyboardInterrupt:
         last = f"the last good pack is {watch.pack}" if watch.pack else "no pack was built"
-        sys.stderr.write(f"\nwatch ended; {last}\n")
+        announce(f"\nwatch ended; {last}")
         return OK
     finally:
         if serving.is_alive():
@@ -176,7 +175,7 @@ class Watch:
         count = f"{len(troubles)} thing{'' if len(troubles) == 1 else 's'} to mend"
         self.board.tell("broken", f"not built, {count}{kept}", troubles)
         for t in troubles:
-            sys.stderr.write(f"{t.where}: {t.message} {t.fix}\n")
+            announce(f"{t.where}: {t.message} {t.fix}")
 
 
 def _errors(inspection: Inspection) -> list[Trouble]:

@@ -14,11 +14,13 @@ from wavejig.commands.telling import (
     MACHINE,
     OK,
     WRONG_INPUT,
+    Refused,
     announce,
-    input_error,
+    failed,
     say,
     stop,
-    unreadable,
+    to_predict,
+    unfit_picture,
 )
 
 
@@ -28,15 +30,11 @@ def run(args: argparse.Namespace) -> int:
 
     from wavejig.tuning.solving import ClusterError, workers
 
-    if args.plot is not None:
-        if len(args.recipes) > 1:
-            return stop(WRONG_INPUT, "yield: --plot takes one recipe at a time")
-        from wavejig.field.plot import PlotError, check_path
-
-        try:
-            check_path(args.plot)
-        except PlotError as err:
-            return stop(WRONG_INPUT, str(err))
+    if args.plot is not None and len(args.recipes) > 1:
+        return stop(WRONG_INPUT, "yield: --plot takes one recipe at a time")
+    unfit = unfit_picture(args.plot)
+    if unfit is not None:
+        return unfit
     code, results = OK, []
     try:
         with workers(args.cluster) as executor:
@@ -54,21 +52,16 @@ def run(args: argparse.Namespace) -> int:
 
 
 def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int, dict[str, Any]]:
-    from wavejig.pack import settle_recipe
     from wavejig.progress import Meter
-    from wavejig.recipe import RecipeError
 
     meter = Meter(path.name, sys.stderr, quiet=args.json)
     try:
-        recipe_file, inspection, _ = settle_recipe(path, meter.step, announce)
-    except RecipeError as err:
-        return WRONG_INPUT, input_error(path, err, args.json)
-    except OSError as err:
-        return WRONG_INPUT, unreadable(path, err, args.json)
+        ready = to_predict(path, meter.step, args.json)
     finally:
         meter.end()
-    if inspection.radiator is None or inspection.tray is None:
-        return CANNOT_BE_MADE, _failed(path, "cannot be made, so nothing is predicted; see `wavejig check`")
+    if isinstance(ready, Refused):
+        return ready.code, ready.data
+    recipe_file, inspection = ready
     from wavejig.field.errors import ModelError
     from wavejig.tuning.asbuilt import ArticleError
     from wavejig.tuning.asked import yield_of
@@ -78,7 +71,7 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
     try:
         found = yield_of(recipe_file.recipe, inspection, executor, meter.step)
     except (ArticleError, ModelError) as err:
-        return CANNOT_BE_MADE, _failed(path, f"its spread cannot be predicted: {err}")
+        return CANNOT_BE_MADE, failed(path, f"its spread cannot be predicted: {err}")
     finally:
         meter.end()
     code = OK if found.nominal_passes else CANNOT_BE_MADE
@@ -86,7 +79,7 @@ def _one(args: argparse.Namespace, path: Path, executor: Executor) -> tuple[int,
         say(yield_text(found))
     if not inspection.can_be_made:
         code = CANNOT_BE_MADE
-        sys.stderr.write(f"{path}: has errors and cannot be made as it stands; see `wavejig check`\n")
+        announce(f"{path}: has errors and cannot be made as it stands; see `wavejig check`")
     if args.plot is not None:
         code = max(code, _plot(found, args.plot))
     return code, {"recipe": str(path), **yield_data(found)}
@@ -99,10 +92,5 @@ def _plot(found: Any, path: Path) -> int:
         plot_yield(found, path)
     except OSError as err:
         return stop(MACHINE, f"{path}: picture not written: {err.strerror or err}")
-    sys.stderr.write(f"{path} written\n")
+    announce(f"{path} written")
     return OK
-
-
-def _failed(path: Path, message: str) -> dict[str, Any]:
-    sys.stderr.write(f"{path}: {message}\n")
-    return {"recipe": str(path), "error": message}

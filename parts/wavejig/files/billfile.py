@@ -1,7 +1,6 @@
 """bill-of-materials.csv: what a batch takes, for a spreadsheet; and its reading back.
 
-A spreadsheet runs a cell that begins like a formula, and texts here come from recipes: such a cell gets an
-apostrophe in front (common advice against formula injection, from memory).
+A spreadsheet runs a cell that begins like a formula, and texts here come from recipes: none is left like that.
 """
 
 from __future__ import annotations
@@ -11,6 +10,8 @@ from pathlib import Path
 
 from wavejig.batch.model import Bill, BillLine
 from wavejig.files.errors import FileCheckError
+from wavejig.recipe.cells import FORMULA
+from wavejig.recipe.cells import safe_cell as safe_cell
 
 COLUMNS = (
     "line",
@@ -27,13 +28,6 @@ COLUMNS = (
     "remark",
 )
 TOTAL = "total"
-# with their full-width forms, which some spreadsheets take for the plain ones
-_FORMULA = ("=", "+", "-", "@", "\t", "\r", "\n", "\uff1d", "\uff0b", "\uff0d", "\uff20")
-
-
-def safe_cell(text: str) -> str:
-    """The text as no spreadsheet will run it; only texts that begin like a formula change."""
-    return f"'{text}" if text.lstrip(" ").startswith(_FORMULA) or text.startswith(_FORMULA) else text
 
 
 def write_bill(bill: Bill, path: Path) -> None:
@@ -61,7 +55,7 @@ def check_bill(path: Path, bill: Bill) -> None:
         if (row["item"], float(row["count"])) != (safe_cell(line.item), line.count):
             raise FileCheckError(path, f"{row['item']}, {row['count']}", f"{line.item}, {line.count:g}")
         for cell in row.values():
-            if cell.startswith(_FORMULA):
+            if cell.startswith(FORMULA):
                 raise FileCheckError(path, f"a cell {cell!r}", "none that a spreadsheet runs")
     costs = [float(row["cost"]) for row in lines if row["cost"]]
     if (total is None) != (not costs) or (total and abs(float(total["cost"]) - sum(costs)) > 0.005):

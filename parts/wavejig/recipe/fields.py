@@ -173,7 +173,7 @@ def word(what: str, see: str) -> Reads:
 # A folder and file name on every common system: printable ASCII without separators, no leading dot,
 # none of the device names that one desktop system reserves (common practice, no source).
 _NAME = re.compile(r"[A-Za-z0-9](?:[A-Za-z0-9._-]{0,46}[A-Za-z0-9_-])?")
-_RESERVED = {"con", "prn", "aux", "nul", *(f"{d}{n}" for d in ("com", "lpt") for n in range(1, 10))}
+RESERVED = {"con", "prn", "aux", "nul", *(f"{d}{n}" for d in ("com", "lpt") for n in range(1, 10))}
 
 
 def _read_name(value: Any) -> str:
@@ -184,7 +184,7 @@ def _read_name(value: Any) -> str:
         plain = re.sub(r"[^A-Za-z0-9_-]+", "-", value).strip("-._")[:48].strip("-._")
         fix = f'"{plain}" would do.' if plain else 'Write something like "saltmarsh-2g4".'
         raise refuse(value, f"{allowed}; it becomes the pack's folder", fix)
-    if value.split(".")[0].lower() in _RESERVED:
+    if value.split(".")[0].lower() in RESERVED:
         raise refuse(value, allowed, "Some systems keep this name for a device; choose another.")
     return value
 

@@ -13,6 +13,7 @@ from __future__ import annotations
 
 import io
 import math
+import re
 from collections.abc import Iterable
 from pathlib import Path
 from typing import Any
@@ -231,8 +232,12 @@ class _Writer:
 
 
 def coded(text: str) -> str:
-    """Text as a TEXT entity carries it: the three signs every reader knows as codes, "%%" never by accident."""
-    plain = text.replace("%%", "% %")
+    """Text as a TEXT entity carries it: the three signs every reader knows as codes, and no code by accident.
+
+    Codes begin with "%%", with "^", or with a backslash and U+ or M+ (a character by its number).
+    """
+    plain = re.sub("%(?=%)", "% ", text)
+    plain = re.sub(r"\\(?=[UuMm]\+)", r"\\ ", plain)
     for sign, code in (("\u00d8", "%%c"), ("\u00b0", "%%d"), ("\u00b1", "%%p")):
         plain = plain.replace(sign, code)
     return "".join(c if c.isprintable() else " " for c in plain).replace("^", "^ ")

@@ -32,9 +32,8 @@ def plot_measured(m: Measured, path: Path) -> None:
     )
     for i, a in enumerate(m.articles):
         g, s = a.sweep.near(low, high)
-        label = (
-            f"serial {a.sweep.serial} measured" if len(m.articles) == 1 else ("measured" if i == 0 else None)
-        )
+        serial = a.sweep.serial.replace("$", r"\$")  # between two of them the plotter reads a formula
+        label = f"serial {serial} measured" if len(m.articles) == 1 else ("measured" if i == 0 else None)
         ax.plot(g / 1e9, _loss(s), color=_INK if a.passes else _WANTED, linewidth=1.2, alpha=0.8, label=label)
     if len(m.articles) == 1:
         right = m.articles[0].findings.right
