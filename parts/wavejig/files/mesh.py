@@ -158,10 +158,16 @@ def _triangles(
 
 def measure(shape: Any) -> Measure:
     """Volume, surface and tight box of a cadquery Shape, from its exact faces and not from triangles."""
-    solid, skin = GProp_GProps(), GProp_GProps()
-    BRepGProp.VolumeProperties_s(shape.wrapped, solid)
+    skin = GProp_GProps()
     BRepGProp.SurfaceProperties_s(shape.wrapped, skin)
-    return Measure(volume_mm3=solid.Mass(), area_mm2=skin.Mass(), bounds_mm=tight_box(shape))
+    return Measure(volume_mm3=volume_mm3(shape), area_mm2=skin.Mass(), bounds_mm=tight_box(shape))
+
+
+def volume_mm3(shape: Any) -> float:
+    """Volume of a cadquery Shape, from its exact faces."""
+    solid = GProp_GProps()
+    BRepGProp.VolumeProperties_s(shape.wrapped, solid)
+    return float(solid.Mass())
 
 
 def _face_triangles(name: str, face: Any) -> tuple[np.ndarray, np.ndarray]:

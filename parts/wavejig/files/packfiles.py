@@ -19,6 +19,7 @@ from wavejig.batch.plates import spacer_sets
 from wavejig.files.batch_json import batch_data
 from wavejig.files.batchfiles import write_batch
 from wavejig.files.bending_json import bending_data
+from wavejig.files.beside import Beside
 from wavejig.files.design_json import check_design_json, design_data, write_design_json
 from wavejig.files.drilldxf import drill_layers
 from wavejig.files.dxf import BendLine, Drawing, Layer, write_dxf
@@ -32,13 +33,13 @@ from wavejig.files.origin import RECIPE
 from wavejig.files.printable import BED_MARGIN_MM, LONGEST_BRIDGE_MM, Printability, require_printable
 from wavejig.files.steady import SteadySolid, steady
 from wavejig.files.step import write_step
-from wavejig.files.stepcheck import check_step
+from wavejig.files.stepcheck import check_step, expectation
 from wavejig.files.steps import check_steps, write_steps
 from wavejig.files.stl import check_stl, write_stl
 from wavejig.files.tables import check_bend_table, write_bend_table
 from wavejig.files.threemf import check_3mf, write_3mf
 from wavejig.fixture.bending.model import BendOrder
-from wavejig.fixture.bending.order import plan_order
+from wavejig.fixture.bending.order import fitted, plan_order
 from wavejig.fixture.bending.strip import steps_svg
 from wavejig.fixture.bending.tolerance import tolerance
 from wavejig.fixture.liftout import lift_outs
@@ -94,6 +95,7 @@ class PackFiles:
         predict: bool = True,
         announce: Callable[[str], None] = lambda _: None,
         kept: Kept | None = None,
+        beside: Beside | None = None,
     ) -> None:
         assert inspection.radiator and inspection.tray and inspection.spacer and inspection.fixture
         self.inspection = inspection
@@ -106,6 +108,7 @@ class PackFiles:
         self.predict = predict
         self.announce = announce
         self.kept = kept
+        self.beside = beside or Beside(processes=1)
         self.prediction: Prediction | None = None
         self.bend_order = BendOrder(pieces=())
         self.entries: list[Entry] = []
@@ -156,9 +159,11 @@ class PackFiles:
             of.extend(left[name])
         self._found(left["findings"])
         self.bend_order = left["bend_order"]
+        self.fixture = fitted(self.fixture, self.bend_order)
 
     def finish(self, recipe: bytes, versions: dict[str, str], made: dict[str, Any]) -> None:
         """The recipe's own text, the manifest, and the last look at the whole folder."""
+        self.beside.settle()
         (self.root / RECIPE).write_bytes(recipe)
         self._note(RECIPE, "toml", "design", "")
         write_manifest(self.root, self.entries, versions, made)
@@ -243,12 +248,13 @@ class PackFiles:
 
     def write_fixture(self) -> None:
         """The bending fixture and the check nest, a file a printed piece."""
+        self.bend_order = plan_order(self.design, self.radiator, self.fixture)
+        self.fixture = fitted(self.fixture, self.bend_order)
         for part in fixture_printables(self.fixture):
             self._printable(part.name, part.solid, "fixture", part.count)
         cut = nest_cut(self.design, self.fixture.nest)
         layers = Drawing(cut=cut.cut, marks=cut.marks).layers()
         self._dxf(layers, "fixture/check-nest-cut.dxf", "fixture", blanks=cut.parts)
-        self.bend_order = plan_order(self.design, self.radiator, self.fixture)
         self._found(order_findings(self.bend_order))
         path = self._path("fixture/steps.svg")
         write_steps(steps_svg(self.design, self.radiator, self.fixture, self.bend_order), path)
@@ -268,15 +274,15 @@ class PackFiles:
 
     def write_assembly(self) -> None:
         """The antenna put together, for the eye: STEP and GLB."""
-        self._step(self.assembly, "assembly.step", "assembly")
         pieces: list[tuple[ColouredMesh, Measure]] = []
         for solid in (s.named() for s in self.assembly):
             mesh = tessellate(solid.shape, name=solid.name)
             pieces.append((ColouredMesh(mesh=mesh, colour=solid.colour), measure(solid.shape)))
+        self._step(self.assembly, "assembly.step", "assembly", [m for _, m in pieces], proven=True)
         self.pictured += [(piece, "antenna") for piece, _ in pieces]
         path = self._path("assembly.glb")
         write_glb([piece for piece, _ in pieces], path)
-        check_glb(path, [(piece.mesh.name, m, piece.colour) for piece, m in pieces])
+        self.beside.check(check_glb, path, [(piece.mesh.name, m, piece.colour) for piece, m in pieces])
         self._note("assembly.glb", "glb", "assembly", "m")
 
     def write_field(self) -> None:
@@ -339,9 +345,9 @@ class PackFiles:
     def _printable(self, name: str, shape: Any, part: str, count: int = 1, *, shown: bool = False) -> None:
         """STEP, STL and 3MF of one printed piece, which must print without support on the given bed."""
         solid = steady(name, shape, _PLASTIC)
-        self._step([solid], f"{part}/{name}.step", part)
         shape = solid.named().shape
         mesh, figures = tessellate(shape, name=name), measure(shape)
+        self._step([solid], f"{part}/{name}.step", part, [figures])
         printer = self.design.printer
         bed = (printer.bed_x_mm, printer.bed_y_mm, printer.bed_z_mm)
         judged = require_printable(mesh, bed, BED_MARGIN_MM)
@@ -353,10 +359,10 @@ class PackFiles:
         title = f"{self.design.name} {name}"
         stl, threemf = self._path(f"{part}/{name}.stl"), self._path(f"{part}/{name}.3mf")
         write_stl(mesh, stl, title)
-        check_stl(stl, figures)
+        self.beside.check(check_stl, stl, figures)
         self._note(f"{part}/{name}.stl", "stl", part, "mm")
         write_3mf([mesh], threemf, title)
-        check_3mf(threemf, {name: figures})
+        self.beside.check(check_3mf, threemf, {name: figures})
         self._note(f"{part}/{name}.3mf", "3mf", part, "mm")
 
     def _for_batch(self, name: str, part: str, count: int, mesh: Mesh, figures: Measure) -> None:
@@ -374,10 +380,20 @@ class PackFiles:
         )
         self.printed.append((piece, mesh, figures))
 
-    def _step(self, made: list[SteadySolid], name: str, part: str) -> None:
+    def _step(
+        self,
+        made: list[SteadySolid],
+        name: str,
+        part: str,
+        figures: list[Measure] | None = None,
+        *,
+        proven: bool = False,
+    ) -> None:
         path, solids = self._path(name), [solid.named() for solid in made]
-        write_step(solids, path, f"{self.design.name} {part}")
-        check_step(path, solids)
+        write_step(solids, path, f"{self.design.name} {part}", proven=proven)
+        known = figures or [measure(solid.shape) for solid in solids]
+        wanted = [expectation(solid, m) for solid, m in zip(solids, known, strict=True)]
+        self.beside.check(check_step, path, wanted)
         self._note(name, "step", part, "mm")
 
     def _dxf(
@@ -394,9 +410,9 @@ class PackFiles:
         path = self._path(name)
         write_dxf(layers, path, version=version, title=f"{self.design.name} {part}")
         if cut:
-            check_dxf(path, layers, version=version, cut_area_mm2=area, blanks=blanks)
+            self.beside.check(check_dxf, path, layers, version=version, cut_area_mm2=area, blanks=blanks)
         else:
-            check_dxf(path, layers, version=version)
+            self.beside.check(check_dxf, path, layers, version=version)
         self._note(name, "dxf", part, "mm")
 
     def _path(self, name: str) -> Path:

@@ -156,22 +156,19 @@ def _bridge_mm(
         low, high = min(pa.min(), pb.min()), max(pa.max(), pb.max())
         if high - low < 1e-9:
             continue
-        worst = 0.0
         # odd places, so that no thread runs along an edge or through a corner
-        for level in low + (high - low) * (np.arange(_THREADS) + 0.4713) / _THREADS:
-            cut = (pa < level) != (pb < level)
-            t = (level - pa[cut]) / (pb[cut] - pa[cut])
-            at = (a[cut] @ along) * (1.0 - t) + (b[cut] @ along) * t
-            order = np.argsort(at)
-            at, ends = at[order], held[cut][order]
-            if at.size % 2:
-                continue  # grazes a corner
-            lengths = at[1::2] - at[::2]
-            loose = (~ends[::2] | ~ends[1::2]) & (lengths > _LEDGE_MM)
-            if np.any(loose):
-                worst = np.inf
-                break
-            worst = max(worst, float(lengths.max(initial=0.0)))
+        levels = low + (high - low) * (np.arange(_THREADS) + 0.4713) / _THREADS
+        thread, edge = np.nonzero((pa < levels[:, None]) != (pb < levels[:, None]))
+        crossings = np.bincount(thread, minlength=_THREADS)
+        sound = crossings[thread] % 2 == 0  # a thread that grazes a corner says nothing
+        thread, edge = thread[sound], edge[sound]
+        t = (levels[thread] - pa[edge]) / (pb[edge] - pa[edge])
+        at = (a @ along)[edge] * (1.0 - t) + (b @ along)[edge] * t
+        order = np.lexsort((at, thread))
+        at, ends = at[order], held[edge[order]]
+        lengths = at[1::2] - at[::2]
+        loose = (~ends[::2] | ~ends[1::2]) & (lengths > _LEDGE_MM)
+        worst = np.inf if np.any(loose) else float(lengths.max(initial=0.0))
         best = min(best, worst)
     return best
 

@@ -77,7 +77,9 @@ def _round(shape: Any) -> None:
         face = TopoDS.Face_s(found)
         surface = BRep_Tool.Surface_s(face, here)
         for at in _each(face, TopAbs_EDGE):
-            for edge in (TopoDS.Edge_s(at), TopoDS.Edge_s(at.Reversed())):  # a seam has a line for each way
+            # a seam has a line for each way; a plane has no seam
+            for way in (at,) if isinstance(surface, Geom_Plane) else (at, at.Reversed()):
+                edge = TopoDS.Edge_s(way)
                 _flat(BRep_Tool.CurveOnSurface_s(edge, surface, here, 0.0, 0.0))
         if isinstance(surface, _SURFACES):
             surface.SetPosition(_axes(surface.Position()))

@@ -43,7 +43,9 @@ _SETTINGS = {
     "write.step.unit": "MM",
     "xstep.cascade.unit": "MM",
     "write.step.schema": "AP214IS",
-    "write.surfacecurve.mode": "On",
+    # Every curve of ours lies exactly on its plane, cylinder or torus: readers find its course in the surface's
+    # own parameters by themselves, and a second course for each would be more than half of the file.
+    "write.surfacecurve.mode": "Off",
     "write.precision.mode": "Average",
     "read.step.codepage": "UTF8",
 }
@@ -58,15 +60,16 @@ class NamedSolid:
     colour: Colour
 
 
-def write_step(solids: Sequence[NamedSolid], path: Path, title: str) -> None:
+def write_step(solids: Sequence[NamedSolid], path: Path, title: str, *, proven: bool = False) -> None:
     """Write one solid as a part, or several as an assembly called `title`, in mm.
 
+    proven: these solids have been written to files of their own before, so their validity is known.
     Raises ValueError when there is no solid, two share a name, one is not a valid closed solid or a colour is
     off its scale; OSError when the file cannot be written; RuntimeError when the kernel cannot translate it.
     """
     names = clean_unique_names((step_name(solid.name) for solid in solids), path.name)
     for solid in solids:
-        _require_solid(path.name, solid)
+        _require_solid(path.name, solid, proven=proven)
     with kernel_settings():
         document, placed = _document(names, [solid.shape.wrapped for solid in solids], title)
         writer = STEPCAFControl_Writer()
@@ -77,7 +80,8 @@ def write_step(solids: Sequence[NamedSolid], path: Path, title: str) -> None:
         session, model = writer.ChangeWriter().WS(), writer.ChangeWriter().Model()
         for name, solid, shape in zip(names, solids, placed, strict=True):
             _paint(session, model, name, shape, solid.colour)
-        _number_links(model)
+        if len(solids) > 1:
+            _number_links(model)
         _fixed_header(model, title)
         buffer = io.BytesIO()
         status = writer.WriteStream(buffer)
@@ -124,7 +128,12 @@ def _document(names: Sequence[str], shapes: Sequence[Any], title: str) -> tuple[
     if len(shapes) > 1:
         assembly = tool.NewShape()
         _set_name(assembly, title)
-    placed = [_placed_copy(shape) for shape in shapes]
+    placed = [
+        shape
+        if shape.Location().IsIdentity() and not any(shape.IsPartner(other) for other in shapes[:number])
+        else _placed_copy(shape)
+        for number, shape in enumerate(shapes)
+    ]
     for name, shape in zip(names, placed, strict=True):
         label = tool.AddShape(shape, False)
         _set_name(label, name)
@@ -159,11 +168,10 @@ def _placed_copy(shape: Any) -> Any:
 
     Two solids that share a body would otherwise share one name, and a colour would have no solid of its own.
     """
-    place = shape.Location()
-    bare = BRepBuilderAPI_Copy(shape.Located(TopLoc_Location()), True, False).Shape()
-    return (
-        bare if place.IsIdentity() else BRepBuilderAPI_Transform(bare, place.Transformation(), True).Shape()
-    )
+    place, bare = shape.Location(), shape.Located(TopLoc_Location())
+    if place.IsIdentity():
+        return BRepBuilderAPI_Copy(bare, True, False).Shape()
+    return BRepBuilderAPI_Transform(bare, place.Transformation(), True).Shape()
 
 
 def _set_name(label: Any, name: str) -> None:
@@ -192,12 +200,12 @@ def _fixed_header(model: Any, title: str) -> None:
     header.SetDescriptionValue(1, TCollection_HAsciiString("Lengths in mm"))
 
 
-def _require_solid(file: str, solid: NamedSolid) -> None:
+def _require_solid(file: str, solid: NamedSolid, *, proven: bool) -> None:
     if not all(0.0 <= value <= 1.0 for value in solid.colour):
         raise ValueError(f"{file}: {solid.name}: got colour {solid.colour}, need three numbers from 0 to 1.")
     if not TopExp_Explorer(solid.shape.wrapped, TopAbs_SOLID).More():
         raise ValueError(
             f"{file}: {solid.name}: got a {solid.shape.ShapeType()}, need at least one closed solid."
         )
-    if not BRepCheck_Analyzer(solid.shape.wrapped).IsValid():
+    if not proven and not BRepCheck_Analyzer(solid.shape.wrapped).IsValid():
         raise ValueError(f"{file}: {solid.name}: got a solid the kernel finds faults in, need a valid one.")
