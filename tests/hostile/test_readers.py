@@ -37,7 +37,7 @@ def test_the_kept_corpus_is_refused_or_read(kind: str, tmp_path: Path) -> None:
         began = time.process_time()
         told.append(reader(tmp_path / name))
         assert time.process_time() - began < SLOW_S, data
-    assert told.count("read") >= 3  # or the corpus never came past the first refusal
+    assert "read" in told  # or the corpus never came past the refusals
     assert len(set(told)) > LEAST_KEPT[kind] / 3
 
 
