@@ -28,7 +28,7 @@ PAPER = (
     'quantity = 6', 'quantity = 9\n[sheet]\npaper = "Letter"\n[station]\ntransmitter_power = "50 mW"',
 )  # fmt: skip
 CHANGES = [
-    pytest.param(PAPER, {"radiator", "reflector", "spacer", "fixture", "assembly", "field solve"}, id="paper"),
+    pytest.param(PAPER, {"radiator", "reflector", "spacer", "fixture", "assembly", "field solve"}, id="paper", marks=pytest.mark.slow),
     pytest.param(
         ('"14 dB"', '"13 dB"'), {"radiator", "fixture", "field solve"}, id="wanted", marks=pytest.mark.slow
     ),
