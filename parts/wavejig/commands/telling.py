@@ -12,8 +12,6 @@ if TYPE_CHECKING:
     from wavejig.recipe import RecipeFile
     from wavejig.shop import Inspection
 
-from wavejig.recipe.errors import visible
-
 _LAYOUT = (
     "\n\t"  # of control characters, the only ones of ours: those of a file's name or a recipe are written out
 )
@@ -101,6 +99,8 @@ def stop(code: int, message: str) -> int:
 
 def shown(text: str) -> str:
     """The text as a terminal may have it: what it would obey is written out."""
+    from wavejig.recipe.errors import visible  # its room loads more than --help may
+
     return visible(text, keep=_LAYOUT)
 
 
