@@ -291,6 +291,28 @@ def test_saving_rebuilds_and_breaking_keeps_the_last_good_pack(running: Running)
     assert "no number changed" in state["text"] and state["problems"] == []
 
 
+# Turns the parts, leaves the reflector out, closes what is open and opens what is closed, and scrolls.
+_FOLDS = "return [...document.getElementById('pack').contentDocument.querySelectorAll('details')].map((d) => d.open)"
+_SEEN = """
+const page = document.getElementById('pack').contentDocument, view = page.getElementById('stage')?.dataset.view;
+const seen = view && { ...JSON.parse(view), folds: [...page.querySelectorAll('details')].map((d) => d.open) };
+"""
+_LOOK_AROUND = """
+const inside = document.getElementById('pack').contentWindow, page = inside.document;
+const canvas = page.getElementById('parts-canvas');
+for (const key of ['ArrowLeft', 'ArrowLeft', 'ArrowUp', '+'])
+  canvas.dispatchEvent(new inside.KeyboardEvent('keydown', { key, bubbles: true, cancelable: true }));
+for (const label of page.querySelectorAll('#parts-boxes label'))
+  if (label.textContent === 'reflector') label.querySelector('input').click();
+for (const fold of page.querySelectorAll('details')) fold.open = !fold.open;
+inside.scrollTo(0, 700);
+return new Promise((done) => inside.requestAnimationFrame(() => inside.requestAnimationFrame(() => {
+  const seen = JSON.parse(page.getElementById('stage').dataset.view);
+  done({ ...seen, folds: [...page.querySelectorAll('details')].map((d) => d.open) });
+})));
+"""
+
+
 @needs_browser
 def test_the_page_follows_the_recipe(running: Running) -> None:
     counted = (
@@ -301,10 +323,19 @@ def test_the_page_follows_the_recipe(running: Running) -> None:
     with browser() as page:
         page.open(f"http://127.0.0.1:{running.port}/")
         page.until(f"return (() => {{ {counted} }})() === '6'", 60)
-        page.run("document.getElementById('pack').contentWindow.scrollTo(0, 700)")
+        looked_at = page.run(_LOOK_AROUND)
+        assert (
+            looked_at["yaw"] != pytest.approx(-0.56)
+            and looked_at["off"] == ["reflector"]
+            and looked_at["folds"]
+        )
         running.recipe.write_text(YARD.replace("quantity = 6", "quantity = 7"), encoding="utf-8")
         page.until(f"return (() => {{ {counted} }})() === '7'", 60)
         page.until("return document.getElementById('pack').contentWindow.scrollY === 700")
+        page.until(f"{_SEEN} return seen && seen.yaw !== -0.56")
+        again = page.run(f"{_SEEN} return seen")
+        assert again == looked_at
+        assert page.run(_FOLDS) == looked_at["folds"]
         running.recipe.write_text(YARD.replace('name = "yard-5g8"', "name = 5"), encoding="utf-8")
         page.until("return document.body.className === 'broken'")
         told = page.run("return document.querySelector('header').innerText")
@@ -314,6 +345,24 @@ def test_the_page_follows_the_recipe(running: Running) -> None:
         page.until("return document.body.className === 'ready'", 60)
         assert page.run("return document.querySelectorAll('#problems li').length") == 0
         assert page.log() == []
+
+
+def test_a_signal_to_stop_ends_it_as_ctrl_c_does(tmp_path: Path) -> None:
+    """In the middle of a build that never comes to its end."""
+    recipe = tmp_path / "yard.toml"
+    recipe.write_text(YARD, encoding="utf-8")
+    watch = start(recipe, tmp_path / "packs", tmp_path / "cache")
+    try:
+        watch.until("building")
+        watch.process.send_signal(signal.SIGTERM)
+        _, err = watch.process.communicate(timeout=30)
+    finally:
+        watch.process.kill()
+    assert watch.process.returncode == 0
+    assert "watch ended; no pack was built" in err and "Traceback" not in err
+    assert not (tmp_path / "packs").exists() or not [*(tmp_path / "packs").iterdir()]
+    with pytest.raises(OSError):
+        get(watch.port, "/")
 
 
 def test_ctrl_c_ends_it_with_exit_code_0(running: Running) -> None:

@@ -10,6 +10,29 @@
     p.append(b, text);
     return p;
   };
+  // sections that open and close, told by where they stand: their words may change with a rebuild
+  const folds = (page) => {
+    const count = new Map();
+    return [...page.querySelectorAll("details")].map((fold) => {
+      const where = fold.closest("section")?.id ?? "", n = (count.get(where) ?? 0) + 1;
+      count.set(where, n);
+      return [`${where} ${n}`, fold];
+    });
+  };
+  const looked = () => {
+    const page = frame.contentDocument;
+    return {
+      at: frame.contentWindow.scrollY,
+      view: page.getElementById("stage")?.dataset.view,
+      open: new Map(folds(page).map(([key, fold]) => [key, fold.open])),
+    };
+  };
+  const lookAgain = (was) => {
+    const page = frame.contentDocument;
+    for (const [key, fold] of folds(page)) if (was.open.has(key)) fold.open = was.open.get(key);
+    if (was.view) page.getElementById("stage")?.dispatchEvent(new CustomEvent("restore-view", { detail: was.view }));
+    frame.contentWindow.scrollTo(0, was.at);
+  };
   const show = (state) => {
     const text = JSON.stringify(state);
     if (text === told) return;
@@ -24,11 +47,11 @@
       return item;
     }));
     if (state.pack !== shown) {
-      const first = shown < 0, at = first ? 0 : frame.contentWindow.scrollY;
+      const was = shown < 0 ? null : looked();
       shown = state.pack;
       if (shown < 0) return;
       frame.addEventListener("load", () => {
-        frame.contentWindow.scrollTo(0, at);
+        if (was) lookAgain(was);
         for (const link of frame.contentDocument.querySelectorAll("a[href]:not([href^='#'])")) { link.target = "_blank"; link.rel = "noopener"; }
       }, { once: true });
       frame.hidden = false;

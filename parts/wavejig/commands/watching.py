@@ -11,6 +11,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from wavejig.commands.serving import Board, Server, Trouble
+from wavejig.commands.stopping import stoppable
 from wavejig.commands.telling import MACHINE, OK, WRONG_INPUT, announce, say, stop
 
 if TYPE_CHECKING:
@@ -24,7 +25,7 @@ USUAL_PORT = 8710  # no source: any free one; the same each day, so that a bookm
 
 
 def run(args: argparse.Namespace) -> int:
-    """Watch until ctrl-C, which is the way to end it and no fault: exit code 0."""
+    """Watch until ctrl-C or a signal to stop, which are the ways to end it and no fault: exit code 0."""
     path: Path = args.recipe
     if not path.is_file():
         return stop(WRONG_INPUT, f"watch: {path}: no such recipe; `wavejig new FILE` writes one")
@@ -40,11 +41,12 @@ def run(args: argparse.Namespace) -> int:
     serving = threading.Thread(target=server.serve_forever, kwargs={"poll_interval": 0.1}, daemon=True)
     watch = Watch(path, args.out, board)
     try:
-        serving.start()
-        say(f"watching {path}: see {server.address} on this machine; ctrl-C ends it")
-        while True:
-            watch.look()
-            time.sleep(POLL_S)
+        with stoppable():
+            serving.start()
+            say(f"watching {path}: see {server.address} on this machine; ctrl-C ends it")
+            while True:
+                watch.look()
+                time.sleep(POLL_S)
     except KeyboardInterrupt:
         last = f"the last good pack is {watch.pack}" if watch.pack else "no pack was built"
         announce(f"\nwatch ended; {last}")

@@ -86,7 +86,15 @@
       ? pieces[i].group === "antenna" && boxes.some((b) => b.checked && Number(b.value) === i) : Number(wanted) === i);
   };
 
+  const names = pieces.map((p) => p.name);
+  // what is looked at, by name, for whoever shows this page again after a rebuild
+  const keep = () => {
+    const off = boxes.filter((b) => !b.checked).map((b) => names[Number(b.value)]);
+    stage.dataset.view = JSON.stringify({ ...view, choice: choice.value === "antenna" ? "" : names[Number(choice.value)], off });
+  };
+
   const draw = () => {
+    keep();
     const ratio = window.devicePixelRatio || 1, wide = Math.round(canvas.clientWidth * ratio), tall = Math.round(canvas.clientHeight * ratio);
     if (!wide || !tall) return;
     if (canvas.width !== wide || canvas.height !== tall) { canvas.width = wide; canvas.height = tall; }
@@ -177,6 +185,15 @@
   const boxesRow = document.getElementById("parts-boxes");
   choice.addEventListener("change", () => { boxesRow.hidden = choice.value !== "antenna"; Object.assign(view, { zoom: 1, x: 0, y: 0 }); soon(); });
   for (const box of boxes) box.addEventListener("change", soon);
+  stage.addEventListener("restore-view", (e) => {
+    const was = JSON.parse(e.detail);
+    for (const key of Object.keys(START)) if (Number.isFinite(was[key])) view[key] = was[key];
+    for (const box of boxes) box.checked = !was.off.includes(names[Number(box.value)]);
+    const part = names.indexOf(was.choice);
+    choice.value = part < 0 ? "antenna" : String(part);
+    boxesRow.hidden = choice.value !== "antenna";
+    soon();
+  });
   canvas.addEventListener("webglcontextlost", (e) => { e.preventDefault(); canvas.hidden = true; lines.removeAttribute("hidden"); });
 
   lines.setAttribute("hidden", "");
