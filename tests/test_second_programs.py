@@ -49,12 +49,21 @@ def test_a_slicer_prints_each_piece_without_support(saltmarsh: Path, tmp_path: P
 
 @pytest.mark.slow
 @pytest.mark.parametrize(
-    "stem", ["ridge-868", "creek-915-round", "causeway-2g4-double", "boatshed-5g8", "slipway-path"]
+    "stem",
+    [
+        "ridge-868",
+        "creek-915-round",
+        "causeway-2g4-double",
+        "boatshed-5g8",
+        "slipway-path",
+        "landing-2g4-own",
+    ],
 )
 def test_a_slicer_prints_the_other_demos_too(stem: str, tmp_path: Path) -> None:
     """Printed parts alone, as the pack writes them."""
     from wavejig.files.mesh import tessellate
     from wavejig.files.stl import write_stl
+    from wavejig.fixture.bending.order import fitted, plan_order
     from wavejig.fixture.solid import printables as fixture_printables
     from wavejig.pack import inspect_recipe
     from wavejig.spacer.solid import hold_downs
@@ -63,7 +72,7 @@ def test_a_slicer_prints_the_other_demos_too(stem: str, tmp_path: Path) -> None:
     _, found = inspect_recipe(Path(__file__).parents[1] / "recipes" / f"{stem}.toml")
     assert found.fixture and found.spacer and found.radiator
     pieces = [
-        *fixture_printables(found.fixture),
+        *fixture_printables(fitted(found.fixture, plan_order(found.design, found.radiator, found.fixture))),
         *spacer_printables(found.design, found.radiator, found.spacer),
         *{part.name: part for part in hold_downs(found.design, found.spacer)}.values(),
     ]
