@@ -436,6 +436,7 @@ class _Draw:
         )
         self.set("sheet", "paper", lambda: self.word("A4", "Letter"), 0.4)
         self.set("sheet", "projection", lambda: self.word("first", "third"), 0.4)
+        self.set("sheet", "expected_yield", lambda: self.word("no", "yes"), 0.2)
         self.set("prices", "currency", lambda: f'"{self.pick(*_CURRENCIES)}"', 0.4)
         for key in (
             "wire", "leg_wire", "tube", "sheet", "blank", "connector", "plug", "screw", "nut", "washer", "lug",

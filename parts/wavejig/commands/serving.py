@@ -17,9 +17,15 @@ from pathlib import Path, PurePosixPath
 from typing import Any
 from urllib.parse import unquote
 
+from wavejig.recipe.plainfile import read_plain
 from wavejig.sheets.report.markup import Own, el, policy_hash, write
 
 LOOPBACK = "127.0.0.1"
+MOST_CONNECTIONS = (
+    48  # a browser opens six; more at once are turned away, so that none can use up the machine
+)
+_LARGEST_FILE = 1 << 30
+_WORDS = "text/plain; charset=utf-8"
 _NAMES = (LOOPBACK, "localhost")
 _KINDS = {
     ".html": "text/html; charset=utf-8", ".json": "application/json", ".pdf": "application/pdf",
@@ -104,10 +110,28 @@ class Server(ThreadingHTTPServer):
     def __init__(self, board: Board, port: int) -> None:
         self.board = board
         self.shell, self.policy = _shell()
+        self.room = threading.BoundedSemaphore(MOST_CONNECTIONS)
         super().__init__((LOOPBACK, port), _Handler)
         self.hosts = {f"{name}:{self.server_port}" for name in _NAMES}
         if self.server_port == 80:  # then a browser leaves it out
             self.hosts |= set(_NAMES)
+
+    def process_request(self, request: Any, client_address: Any) -> None:
+        """A thread a connection, while there is room."""
+        if not self.room.acquire(blocking=False):
+            self.shutdown_request(request)
+            return
+        super().process_request(request, client_address)
+
+    def process_request_thread(self, request: Any, client_address: Any) -> None:
+        """Answer one connection, and make room again."""
+        try:
+            super().process_request_thread(request, client_address)
+        finally:
+            self.room.release()
+
+    def handle_error(self, request: Any, client_address: Any) -> None:
+        """Quiet: a browser that goes away in the middle of an answer is no fault."""
 
     @property
     def address(self) -> str:
@@ -130,9 +154,20 @@ class _Handler(BaseHTTPRequestHandler):
     def log_message(self, format: str, *args: object) -> None:
         """Quiet: the terminal is for the builds."""
 
+    def send_error(self, code: int, message: str | None = None, explain: str | None = None) -> None:
+        """Of requests that cannot be answered: the code in words, none of what was asked, and no more requests."""
+        del message, explain
+        self.close_connection = True
+        self.request_version = "HTTP/1.1"  # else nothing but the words would go out for a line that is none
+        self._send(code, _WORDS, f"{int(code)}: not something that is answered here\n".encode())
+
     def _answer(self) -> None:
-        if self.headers.get_all("Host", []) == [] or self.headers.get("Host") not in self.server.hosts:
-            self._send(403, "text/plain; charset=utf-8", b"only for this machine, under a loopback name\n")
+        # a body is never read: what follows it must not be taken for a request
+        if self.headers.get("Content-Length") or self.headers.get("Transfer-Encoding"):
+            self.close_connection = True
+        hosts = self.headers.get_all("Host", [])
+        if len(hosts) != 1 or hosts[0] not in self.server.hosts:
+            self._send(403, _WORDS, b"only for this machine, under a loopback name\n")
             return
         name = self.path.split("?", 1)[0].split("#", 1)[0]
         if name == "/":
@@ -146,12 +181,9 @@ class _Handler(BaseHTTPRequestHandler):
             if name.startswith("/pack/")
             else None
         )
-        try:
-            data = None if path is None else path.read_bytes()
-        except OSError:  # between two packs, or taken away
-            data = None
+        data = None if path is None else _content(path)
         if path is None or data is None:
-            self._send(404, "text/plain; charset=utf-8", b"no such file in this pack\n")
+            self._send(404, _WORDS, b"no such file in this pack\n")
             return
         kind = _KINDS.get(path.suffix.lower(), "application/octet-stream")
         # the report brings its own, stricter policy; nothing else may run or fetch anything
@@ -172,11 +204,24 @@ class _Handler(BaseHTTPRequestHandler):
         self.send_header("Content-Security-Policy", policy)
         self.send_header("X-Content-Type-Options", "nosniff")
         self.send_header("Cross-Origin-Resource-Policy", "same-origin")
+        self.send_header("Cross-Origin-Opener-Policy", "same-origin")
         self.send_header("Referrer-Policy", "no-referrer")
         self.send_header("Cache-Control", "no-store")
+        if self.close_connection:
+            self.send_header("Connection", "close")
         self.end_headers()
         if self.command != "HEAD":
             self.wfile.write(body)
+
+
+def _content(path: Path) -> bytes | None:
+    """What a listed file holds; None between two packs, or when something else stands in its place by now."""
+    try:
+        if path.resolve() != path:  # it was, when it was listed: now it leads elsewhere
+            return None
+        return read_plain(path, _LARGEST_FILE)
+    except (OSError, RuntimeError):
+        return None
 
 
 def _shell() -> tuple[bytes, str]:
