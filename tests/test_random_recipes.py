@@ -50,3 +50,17 @@ def test_each_can_be_made_or_is_refused_for_a_reason(seed: int, tmp_path: Path) 
         assert finding.code and finding.message and finding.remedy
         assert "nan" not in finding.message.lower().split() and " inf " not in finding.message
     assert inspection.can_be_made == all(f.severity != "error" for f in inspection.findings)
+
+
+@pytest.mark.parametrize("seed", [8, 13, 14])
+def test_check_nests_for_a_cutter_have_no_edge_that_is_none(seed: int, tmp_path: Path) -> None:
+    """Found by building them: outlines that all but meet left edges of micrometres, which a drawing refuses."""
+    from wavejig.files.dxf import Layer, check_layers
+    from wavejig.fixture.nestcut import nest_cut
+
+    path = tmp_path / "r.toml"
+    path.write_text(random_recipe(seed), encoding="utf-8")
+    _, inspection = inspect_recipe(path)
+    assert inspection.fixture is not None and inspection.fixture.nest is not None
+    cut = nest_cut(inspection.design, inspection.fixture.nest)
+    check_layers([Layer(name="cut", colour=1, entities=cut.cut)])
