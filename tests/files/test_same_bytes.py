@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+import json
 import os
+import shutil
 import subprocess
 import sys
 from pathlib import Path
+
+import pytest
+from tests.yard import YARD
 
 WRITE_ALL = """
 import sys
@@ -72,3 +77,56 @@ def test_two_processes_and_a_second_writing_give_the_same_bytes(tmp_path: Path) 
         assert other.keys() == first.keys()
     whole = b"".join(first.values())
     assert str(tmp_path).encode() not in whole
+
+
+@pytest.mark.slow
+def test_a_pack_built_alone_is_the_one_built_among_others_by_somebody_else(tmp_path: Path) -> None:
+    """Side by side, one thread, another user, folder, time zone, language, order of hashing; and step by step."""
+    recipe, other = tmp_path / "yard.toml", tmp_path / "lawn.toml"
+    recipe.write_text(YARD)
+    other.write_text(YARD.replace("yard", "lawn"))
+    build = [sys.executable, "-m", "wavejig", "build", "--skip-field"]
+    alone = tmp_path / "alone"
+    subprocess.run([*build, str(recipe), "--out", str(alone)], check=True, capture_output=True)
+
+    theirs = tmp_path / "a much longer" / "name"
+    theirs.mkdir(parents=True)
+    somebody = []
+    if os.geteuid() == 0 and shutil.which("setpriv"):
+        somebody = ["setpriv", "--reuid=65534", "--clear-groups"]
+        os.chown(theirs, 65534, -1)
+        for folder in (tmp_path, *tmp_path.parents):
+            if folder.name.startswith(("test_", "pytest-", "popen-")):
+                folder.chmod(0o755)
+    around = os.environ | {
+        "PYTHONHASHSEED": "99", "TZ": "Pacific/Kiritimati", "LC_ALL": "C", "HOME": str(theirs), "OMP_NUM_THREADS": "1",
+        "WAVEJIG_CACHE": str(theirs / "cache"), "PYTHONDONTWRITEBYTECODE": "1",
+    }  # fmt: skip
+    subprocess.run(
+        [*somebody, *build, str(recipe), "--out", str(theirs / "out")],
+        check=True,
+        capture_output=True,
+        env=around,
+    )
+    assert packed(theirs / "out" / "yard-5g8") == packed(alone / "yard-5g8")
+    subprocess.run(
+        [*build, str(other), str(recipe), "--jobs", "2", "--out", str(tmp_path / "both")],
+        check=True, capture_output=True, env=around | {"WAVEJIG_CACHE": str(tmp_path / "cache")},
+    )  # fmt: skip
+    assert packed(tmp_path / "both" / "yard-5g8") == packed(alone / "yard-5g8")
+
+    # and by way of another spacer and back
+    steps = tmp_path / "steps"
+    between = tmp_path / "between.toml"
+    between.write_text(YARD + '[spacer]\nmaterial = "ASA"\n')
+    for path in (between, recipe):
+        done = subprocess.run(
+            [*build, str(path), "--out", str(steps), "--json"], check=True, capture_output=True, text=True
+        )
+    assert set(json.loads(done.stdout)[0]["taken_over"]) >= {"radiator", "reflector", "fixture"}
+    assert packed(steps / "yard-5g8") == packed(alone / "yard-5g8")
+
+
+def packed(folder: Path) -> dict[str, bytes]:
+    """Every file of a pack."""
+    return {p.relative_to(folder).as_posix(): p.read_bytes() for p in folder.rglob("*") if p.is_file()}

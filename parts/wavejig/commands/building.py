@@ -45,12 +45,12 @@ def _all(args: argparse.Namespace, options: Options) -> Iterable[Outcome]:
 
         yield from build_many(args.recipes, known, options, args.jobs, quiet=args.json)
         return
-    from wavejig.progress import Meter
-
     for path, outcome in known.items():
         if outcome is not None:
             yield outcome
             continue
+        from wavejig.progress import Meter
+
         meter = Meter(path.name, sys.stderr, quiet=args.json)
         try:
             outcome = build_one(path, options, meter.step, announce)

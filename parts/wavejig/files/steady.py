@@ -29,6 +29,7 @@ from OCP.Geom import (
 )
 from OCP.Geom2d import Geom2d_Line
 from OCP.gp import gp_Ax1, gp_Ax2, gp_Ax3, gp_Dir, gp_Dir2d, gp_Pnt, gp_Pnt2d
+from OCP.ShapeUpgrade import ShapeUpgrade_RemoveLocations
 from OCP.TopAbs import TopAbs_EDGE, TopAbs_FACE, TopAbs_VERTEX
 from OCP.TopExp import TopExp
 from OCP.TopLoc import TopLoc_Location
@@ -62,6 +63,9 @@ def steady(name: str, shape: cq.Shape, colour: tuple[float, float, float]) -> St
     """The solid in one exact state; the shape given is left as it is."""
     place = shape.wrapped.Location()
     bare = BRepBuilderAPI_Copy(shape.wrapped.Located(TopLoc_Location()), True, False).Shape()
+    inner = ShapeUpgrade_RemoveLocations()  # of its faces and edges, where cutters were moved into place
+    if inner.Remove(bare):
+        bare = inner.GetResult()
     if not place.IsIdentity():
         bare = BRepBuilderAPI_Transform(bare, place.Transformation(), True).Shape()
     _round(bare)
@@ -83,12 +87,13 @@ def _round(shape: Any) -> None:
                 _flat(BRep_Tool.CurveOnSurface_s(edge, surface, here, 0.0, 0.0))
         if isinstance(surface, _SURFACES):
             surface.SetPosition(_axes(surface.Position()))
+            _radii(surface)
         _tolerance(found.TShape())
     for found in _each(shape, TopAbs_EDGE):
         edge = TopoDS.Edge_s(found)
         _curve(BRep_Tool.Curve_s(edge, here, 0.0, 0.0))
         first, last = BRep_Tool.Range_s(edge)
-        builder.Range(edge, round(first, TURN_DIGITS), round(last, TURN_DIGITS))
+        builder.Range(edge, round(first, TURN_DIGITS) + 0.0, round(last, TURN_DIGITS) + 0.0)
         _tolerance(found.TShape())
     for found in _each(shape, TopAbs_VERTEX):
         corner = found.TShape()
@@ -116,12 +121,21 @@ def _curve(curve: Any) -> None:
         curve.SetRadius(round(curve.Radius(), PLACE_DIGITS))
 
 
+def _radii(surface: Any) -> None:
+    """Of a cylinder or torus."""
+    if isinstance(surface, Geom_CylindricalSurface):
+        surface.SetRadius(round(surface.Radius(), PLACE_DIGITS))
+    elif isinstance(surface, Geom_ToroidalSurface):
+        surface.SetMajorRadius(round(surface.MajorRadius(), PLACE_DIGITS))
+        surface.SetMinorRadius(round(surface.MinorRadius(), PLACE_DIGITS))
+
+
 def _flat(line: Any) -> None:
     """An edge's line in the plane of a face's parameters."""
     if isinstance(line, Geom2d_Line):
         at, way = line.Location(), line.Direction()
-        line.SetLocation(gp_Pnt2d(round(at.X(), TURN_DIGITS), round(at.Y(), TURN_DIGITS)))
-        line.SetDirection(gp_Dir2d(round(way.X(), TURN_DIGITS), round(way.Y(), TURN_DIGITS)))
+        line.SetLocation(gp_Pnt2d(round(at.X(), TURN_DIGITS) + 0.0, round(at.Y(), TURN_DIGITS) + 0.0))
+        line.SetDirection(gp_Dir2d(round(way.X(), TURN_DIGITS) + 0.0, round(way.Y(), TURN_DIGITS) + 0.0))
 
 
 def _tolerance(part: Any) -> None:
@@ -133,13 +147,13 @@ def _tolerance(part: Any) -> None:
 
 
 def _place(p: Any) -> Any:
-    x, y, z = p.X(), p.Y(), p.Z()
-    return gp_Pnt(round(x, PLACE_DIGITS), round(y, PLACE_DIGITS), round(z, PLACE_DIGITS))
+    x, y, z = p.X(), p.Y(), p.Z()  # and 0.0 more, which makes -0.0 the same nought
+    return gp_Pnt(round(x, PLACE_DIGITS) + 0.0, round(y, PLACE_DIGITS) + 0.0, round(z, PLACE_DIGITS) + 0.0)
 
 
 def _turn(d: Any) -> Any:
     x, y, z = d.X(), d.Y(), d.Z()
-    return gp_Dir(round(x, TURN_DIGITS), round(y, TURN_DIGITS), round(z, TURN_DIGITS))
+    return gp_Dir(round(x, TURN_DIGITS) + 0.0, round(y, TURN_DIGITS) + 0.0, round(z, TURN_DIGITS) + 0.0)
 
 
 def _axes(axes: Any) -> Any:
