@@ -31,6 +31,8 @@ ROWS: list[tuple[str, int, str]] = [
     # -- new
     ("new {fresh}", 0, r"+fresh\.toml written\. Next: wavejig check"),
     ("new --schema", 0, r'+"\$schema"'),
+    ("new --schema yield", 0, r'+"urn:wavejig:yield"'),
+    ("new --schema mesured", 2, r'no schema "mesured"; allowed: recipe, .*Did you mean "measured"\?'),
     ("new {good}", 2, r"exists already, and is left as it is"),
     ("new", 2, r"which file\?"),
     ("new {nowhere}", 3, r"cannot be written: No such file or directory"),

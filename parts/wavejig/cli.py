@@ -102,7 +102,11 @@ def _parser() -> argparse.ArgumentParser:
         "  wavejig new my-antenna.toml\n  wavejig new --schema > recipe.schema.json   (for your editor)\n",
     )
     new.add_argument("file", nargs="?", type=Path, metavar="FILE", help="the recipe to write")
-    new.add_argument("--schema", action="store_true", help="print the JSON Schema of recipes instead")
+    new.add_argument(
+        "--schema", nargs="?", const="recipe", metavar="NAME",
+        help="print the JSON Schema of recipes instead, or that of what --json prints or a pack holds: NAME is a "
+        "command's, or verify, design, manifest, field, model",
+    )  # fmt: skip
     new.set_defaults(module="starting")
 
     check = command(
@@ -150,7 +154,11 @@ def _parser() -> argparse.ArgumentParser:
         "  wavejig build --verify out/saltmarsh-2g4     is this pack what its recipe gives?\n",
     )
     build.add_argument("recipes", nargs="*", type=Path, metavar="RECIPE", help="recipe files (TOML)")
-    build.add_argument("--json", action="store_true", help="results as JSON on stdout")
+    build.add_argument(
+        "--json",
+        action="store_true",
+        help="results as JSON on stdout (its schema: wavejig new --schema NAME)",
+    )
     build.add_argument("--out", type=Path, default=Path("out"), metavar="DIR", help="where packs go (out)")
     build.add_argument(
         "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
@@ -217,7 +225,11 @@ def _parser() -> argparse.ArgumentParser:
     measured.add_argument(
         "--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])"
     )
-    measured.add_argument("--json", action="store_true", help="results as JSON on stdout")
+    measured.add_argument(
+        "--json",
+        action="store_true",
+        help="results as JSON on stdout (its schema: wavejig new --schema NAME)",
+    )
     measured.set_defaults(module="measuring")
 
     watch = command(
@@ -246,7 +258,11 @@ def _parser() -> argparse.ArgumentParser:
 
 def _recipes(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("recipes", nargs="+", type=Path, metavar="RECIPE", help="recipe files (TOML)")
-    parser.add_argument("--json", action="store_true", help="results as JSON on stdout")
+    parser.add_argument(
+        "--json",
+        action="store_true",
+        help="results as JSON on stdout (its schema: wavejig new --schema NAME)",
+    )
 
 
 if __name__ == "__main__":

@@ -11,11 +11,7 @@ from wavejig.commands.telling import MACHINE, OK, WRONG_INPUT, say, stop
 def run(args: argparse.Namespace) -> int:
     """Write the file named, never over another."""
     if args.schema:
-        from wavejig.recipe.models import Recipe
-
-        schema = {"$schema": "https://json-schema.org/draft/2020-12/schema", **Recipe.model_json_schema()}
-        say(json.dumps(schema, indent=1))
-        return OK
+        return _print_schema(args.schema)
     if args.file is None:
         return stop(WRONG_INPUT, "new: which file? Try: wavejig new my-antenna.toml")
     from wavejig.recipe.starter import starter
@@ -28,4 +24,22 @@ def run(args: argparse.Namespace) -> int:
     except OSError as err:
         return stop(MACHINE, f"{args.file}: cannot be written: {err.strerror}")
     say(f"{args.file} written. Next: wavejig check {args.file}")
+    return OK
+
+
+def _print_schema(name: str) -> int:
+    if name == "recipe":
+        from wavejig.recipe.models import Recipe
+
+        schema = {"$schema": "https://json-schema.org/draft/2020-12/schema", **Recipe.model_json_schema()}
+    else:
+        from wavejig.files import schemas
+        from wavejig.recipe.errors import show, spelling_fix
+
+        known = ("recipe", *schemas.names())
+        if name not in known:
+            fix = spelling_fix(name, known, "Choose one from the list.")
+            return stop(WRONG_INPUT, f"new: no schema {show(name)}; allowed: {', '.join(known)}. {fix}")
+        schema = schemas.schema(name)
+    say(json.dumps(schema, indent=1))
     return OK
