@@ -222,3 +222,21 @@ def test_a_jogged_leg_lands_where_it_should_or_says_why_not(
         assert z0 + setback <= top + 1e-3
         assert z1 - setback >= max(bottom, 0.0) + 1.0 - 1e-9
         assert math.hypot(y0 - y1, z0 - z1) >= 2.0 * setback - 1e-5
+
+
+def test_a_step_aside_nobody_can_see_is_no_jog() -> None:
+    """Below 0.1 mm the leg leans; from there on it is two bends, as far apart in height as they need."""
+    assert leg_points((0.0, -9.675), (0.0, -9.72), 50.0, -1.0, 4.0) == [(0.0, -9.72, -1.0)]
+    assert leg_points((0.0, -9.6), (0.0, -9.72), 50.0, -1.0, 4.0)[-1] == (0.0, -9.72, -1.0)
+    assert len(leg_points((0.0, -9.6), (0.0, -9.72), 50.0, -1.0, 4.0)) == 3
+    made = plan(
+        design(
+            "twin-loop",
+            band=["902 MHz", "928 MHz"],
+            wire="10 AWG",
+            radiator={"lobe_diameter": "76.1 mm", "feed_gap": "19.35 mm", "standoff": "58.1 mm"},
+            feed={"style": "legs", "leg": "1.8 mm", "leg_spacing": "19.4 mm"},
+        )
+    )
+    (leg,) = [p for p in made.pieces if p.role == "ground-leg"]
+    assert len(leg.bends) == 1

@@ -11,6 +11,9 @@ from wavejig.geometry.path import Point
 JOG_LEANS_DEG = (45.0, 55.0, 65.0, 75.0)
 # Straight left above the landing, to stand in a hole or on a flange. Common practice, no source.
 STRAIGHT_FOOT_MM = 1.0
+# A smaller step aside is not bent: the leg leans by it, unseen, where a jog would be two bends of a few degrees
+# with no straight between. Less than half of what a leg's place is held to; common practice, no source.
+LEAST_JOG_MM = 0.1
 
 
 class PlanError(ValueError):
@@ -20,7 +23,7 @@ class PlanError(ValueError):
 def leg_points(
     top: tuple[float, float], foot: tuple[float, float], top_z: float, bottom_z: float, radius_mm: float
 ) -> list[Point]:
-    """Corners of a leg below its top bend: straight down, or jogged aside to `foot` and down.
+    """Corners of a leg below its top bend: straight down (or nearly), or jogged aside to `foot` and down.
 
     top, foot: x, y at the upper and lower end; top_z: where the leg's straight may begin; bottom_z: its
     lower end; radius_mm: centreline radius of the jog's two bends. The jog stands as high as it can, so
@@ -28,7 +31,7 @@ def leg_points(
     lower end last. Raises PlanError when the height does not hold the jog.
     """
     aside = math.dist(top, foot)
-    if aside < 1e-6:
+    if aside < LEAST_JOG_MM:
         return [(foot[0], foot[1], bottom_z)]
     landing = max(bottom_z, 0.0) + STRAIGHT_FOOT_MM
     needed = math.inf
