@@ -3,15 +3,18 @@
 from __future__ import annotations
 
 import json
+import os
 import subprocess
 import sys
 from pathlib import Path
 
 import numpy as np
 import pytest
+from jsonschema import Draft202012Validator
 
 from tests.tuning.articles import near, plants
 from wavejig.cli import main
+from wavejig.files.schemas import schema
 from wavejig.tuning.solving import workers
 
 GIVEN = """\
@@ -110,17 +113,23 @@ def test_a_reading_of_something_else_is_refused(
     assert "far from the 11.40 mm drawn" in capsys.readouterr().err
 
 
-def run(*arguments: str) -> subprocess.CompletedProcess[str]:
+def run(*arguments: str, cache: Path | None = None) -> subprocess.CompletedProcess[str]:
+    """A fresh process; cache: with kept answers of its own."""
+    kept = {} if cache is None else {"WAVEJIG_CACHE": str(cache)}
     return subprocess.run(
-        [sys.executable, "-m", "wavejig", *arguments], capture_output=True, text=True, check=False
-    )
+        [sys.executable, "-m", "wavejig", *arguments], capture_output=True, text=True, check=False,
+        env=os.environ | kept,
+    )  # fmt: skip
 
 
 @pytest.mark.slow
-def test_yield_says_the_same_in_two_processes(recipe: Path) -> None:
-    one, two = run("yield", str(recipe), "--json"), run("yield", str(recipe), "--json")
+def test_yield_says_the_same_in_two_processes_and_from_what_is_kept(recipe: Path, tmp_path: Path) -> None:
+    one = run("yield", str(recipe), "--json")
+    two = run("yield", str(recipe), "--json", cache=tmp_path / "another")
+    kept = run("yield", str(recipe), "--json")
     assert one.returncode == 0, one.stderr
-    assert one.stdout == two.stdout
+    assert one.stdout == two.stdout == kept.stdout
+    assert list(Draft202012Validator(schema("yield")).iter_errors(json.loads(one.stdout))) == []
     data = json.loads(one.stdout)[0]
     assert data["surface"]["solves"] <= 80
     assert data["articles"] == 20_000
@@ -143,6 +152,7 @@ def test_measured_writes_what_mends_the_next(recipe: Path, tmp_path: Path) -> No
     )  # fmt: skip
     assert done.returncode == 1, done.stderr  # it fails, and says so
     data = json.loads(done.stdout)
+    assert list(Draft202012Validator(schema("measured")).iter_errors(data)) == []
     found = {d["key"]: d for d in data["articles"][0]["deviations"]}
     true = planted.deviations[worst, planted.names.index("side")]
     assert abs(found["side"]["value"] - true) < 0.1

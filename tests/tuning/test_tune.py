@@ -19,8 +19,9 @@ from wavejig.field.from_design import model_from_design
 from wavejig.field.solver import solve
 from wavejig.recipe import read_recipe
 from wavejig.shop import inspect
+from wavejig.tuning.candidates import CannotStartError, NothingFreeError, worst_return_loss_db
 from wavejig.tuning.freedom import freedoms
-from wavejig.tuning.tune import CannotStartError, NothingFreeError, Tuned, tune, worst_return_loss_db
+from wavejig.tuning.tune import Tuned, tune
 from wavejig.tuning.tuned import tuned_design
 
 RECIPES = Path(__file__).parents[2] / "recipes"

@@ -47,7 +47,8 @@ def _one(args: argparse.Namespace, path: Path, meter: Any) -> tuple[int, dict[st
     from wavejig.field.errors import ModelError
     from wavejig.recipe import RecipeError, read_recipe
     from wavejig.tuning.alternatives import alternatives
-    from wavejig.tuning.tune import CannotStartError, NothingFreeError, tune
+    from wavejig.tuning.candidates import CannotStartError, NothingFreeError
+    from wavejig.tuning.tune import tune
     from wavejig.tuning.tunetext import tuned_data, tuned_text
 
     try:

@@ -10,7 +10,8 @@ from wavejig.field.errors import ModelError
 from wavejig.recipe.errors import RecipeError
 from wavejig.recipe.models import Recipe
 from wavejig.recipe.units import WireSize
-from wavejig.tuning.tune import CannotStartError, NothingFreeError, tune
+from wavejig.tuning.candidates import CannotStartError, NothingFreeError
+from wavejig.tuning.tune import tune
 
 SHORT = 16  # solves spent on each: enough to see the way, not the end of it
 THICKER = 1.4  # two steps of the R20 series (IEC 60317-0-1), about

@@ -56,10 +56,13 @@ def settle(
         return found
     start = Settled(design=resolve(recipe), how="start")
     from wavejig.field.errors import ModelError
-    from wavejig.tuning.tune import CannotStartError, tune
+    from wavejig.tuning.candidates import CannotStartError
+    from wavejig.tuning.keptsolves import solving_anew
+    from wavejig.tuning.tune import tune
 
     try:
-        answer = tune(recipe, aim=AIM, grid_mm=GRID_MM, told=told, announce=announce)
+        with solving_anew(anew):
+            answer = tune(recipe, aim=AIM, grid_mm=GRID_MM, told=told, announce=announce)
     except (CannotStartError, ModelError):
         return start
     cache.save(recipe, AIM, GRID_MM, answer.values)

@@ -9,29 +9,28 @@ to what a shop can hold and solved again as rounded.
 from __future__ import annotations
 
 import itertools
-import warnings
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from wavejig.design import resolve
-from wavejig.design.model import Design
-from wavejig.field.errors import ModelError, ModelWarning
+from wavejig.field.errors import ModelError
 from wavejig.recipe.errors import RecipeError
 from wavejig.recipe.models import Recipe
-from wavejig.shop import Inspection, inspect
-from wavejig.tuning.freedom import GRID_MM, Freedom, freedoms
+from wavejig.tuning.candidates import (
+    Candidates,
+    Solve,
+    Told,
+    worst_return_loss_db,
+)
+from wavejig.tuning.freedom import GRID_MM, Freedom
 from wavejig.tuning.steps import Surrogate, best_corner, best_step, merit_db
-from wavejig.tuning.vary import held, with_values
 
 Array = NDArray[np.float64]
 Complex = NDArray[np.complex128]
-Told = Callable[[str], None]
 
 MOST_SOLVES = 38  # of one tuning; the two more that a user is promised are for the rounded answer
-WIDE_BAND = 0.05  # of the middle: a wider band is solved at five frequencies, a narrower one at three
 ENOUGH_DB = 0.05  # a step that promises less is not worth a solve
 FIRST_LOOK, SECOND_LOOK, LOOKS = 0.6, 0.4, 2  # in first-look steps; how often
 FIRST_TRUST, LEAST_TRUST, MOST_TRUST = 1.5, 0.12, 6.0  # of the trust region, in first-look steps
@@ -41,16 +40,6 @@ AMPLE_DB = 2.0  # above the wanted return loss: then the sheet stays as it is
 TRAY = ("base_x", "base_y", "lip_height")
 MOST_CORNERS = 64  # of the grid cell about the answer that are asked whether the shop can make them
 AIMS = ("match", "gain")
-
-
-@dataclass(frozen=True, slots=True, kw_only=True, eq=False)
-class Solve:
-    """One geometry solved: its free values, impedance (F,) ohm, gain straight ahead (dBi) at the middle."""
-
-    values: Mapping[str, float]
-    impedance_ohm: Complex
-    gain_dbi: float
-    worst_db: float  # least return loss among the frequencies
 
 
 @dataclass(frozen=True, slots=True, kw_only=True, eq=False)
@@ -76,18 +65,6 @@ class Tuned:
         return self.after.worst_db >= self.wanted_db
 
 
-class NothingFreeError(Exception):
-    """The recipe gives every number itself."""
-
-
-class CannotStartError(Exception):
-    """The starting design cannot be made; its inspection says why."""
-
-    def __init__(self, inspection: Inspection) -> None:
-        self.inspection = inspection
-        super().__init__(f"{inspection.design.name} cannot be made as it starts")
-
-
 def tune(
     recipe: Recipe,
     *,
@@ -106,84 +83,17 @@ def tune(
     return search.run()
 
 
-def band_frequencies(design: Design) -> Array:
-    """Three frequencies of a narrow band, five of a wide one."""
-    low, high = design.target.band_low_hz, design.target.band_high_hz
-    return np.linspace(low, high, 5 if (high - low) > WIDE_BAND * (high + low) / 2.0 else 3)
-
-
-class _Search:
+class _Search(Candidates):
     def __init__(
         self, recipe: Recipe, aim: str, grid_mm: float, most: int, told: Told, announce: Told
     ) -> None:
-        self.recipe, self.aim, self.most, self.told, self.announce = recipe, aim, most, told, announce
-        start = inspect(resolve(recipe))
-        if not start.can_be_made:
-            raise CannotStartError(start)
-        self.start = start.design
-        self.free = freedoms(recipe, self.start, grid_mm)
-        if not self.free:
-            raise NothingFreeError(self.start.name)
-        self.pinned = held(self.start)
-        self.frequencies = band_frequencies(self.start)
-        self.reference = self.start.target.reference_ohm
+        super().__init__(recipe, grid_mm, told, announce)
+        self.aim, self.most = aim, most
         self.wanted = self.start.target.return_loss_db
-        self.origin = np.array([f.start for f in self.free])
-        self.steps = np.array([f.step for f in self.free])
-        self.low = (np.array([f.low for f in self.free]) - self.origin) / self.steps
-        self.high = (np.array([f.high for f in self.free]) - self.origin) / self.steps
-        self.solves = 0
         self.start_gain = 0.0
-        self.refused: list[str] = []
         tray = np.array([f.name in TRAY for f in self.free])
         # the sheet is left as practice has it unless it must change, or gain is wanted of it
         self.active = ~tray if self.aim == "match" and not tray.all() else np.ones_like(tray)
-
-    # -- one geometry -------------------------------------------------------------------------------
-
-    def values(self, u: Array) -> dict[str, float]:
-        """Free dimensions at u; one that follows the others stands that much beyond what it then needs."""
-        out = {f.name: float(v) for f, v in zip(self.free, self.origin + u * self.steps, strict=True)}
-        for f in self.free:
-            if f.follows:
-                out[f.name] = self._needed(f.name, out) + (out[f.name] - f.start)
-        return out
-
-    def _needed(self, name: str, values: Mapping[str, float]) -> float:
-        rest = {k: v for k, v in (self.pinned | dict(values)).items() if k != name}
-        design = resolve(with_values(self.recipe, rest))
-        return next(v.value for key, v in design.values if key == name)
-
-    def design(self, u: Array) -> Design:
-        return resolve(with_values(self.recipe, self.pinned | self.values(u)))
-
-    def allowed(self, u: Array) -> bool:
-        """Whether the shop can make it; what speaks against it is kept for the report."""
-        try:
-            found = inspect(self.design(u)).findings
-        except RecipeError:
-            self.refused.append("sides-do-not-meet")
-            return False
-        errors = [f.code for f in found if f.severity == "error"]
-        self.refused += errors
-        return not errors
-
-    def solve(self, u: Array, frequencies: Array | None = None) -> Solve:
-        from wavejig.field.from_design import model_from_design
-        from wavejig.field.solver import solve
-
-        design = self.design(u)
-        model = model_from_design(design)
-        with warnings.catch_warnings():
-            warnings.simplefilter("ignore", ModelWarning)  # the prediction of the answer tells them
-            at = self.frequencies if frequencies is None else frequencies
-            response = solve(model, at / self.start.target.frequency_factor, announce=self.announce)
-        self.solves += 1
-        z = np.asarray(response.impedance_ohm)
-        gain = float(response.gain_dbi([[0.0, 0.0, 1.0]])[len(z) // 2, 0])
-        worst = worst_return_loss_db(z, self.reference)
-        self.told(f"solve {self.solves}: worst {worst:.1f} dB, gain {gain:.1f} dBi")
-        return Solve(values=self.values(u), impedance_ohm=z, gain_dbi=gain, worst_db=worst)
 
     def merit(self, solve: Solve, u: Array) -> float:
         """What is made least, dB."""
@@ -332,21 +242,6 @@ class _Search:
             solves=self.solves,
             wanted_db=self.wanted,
             frequencies_hz=self.frequencies,
-            limits=self._limits(at),
+            limits=self.limits(at),
             refused=tuple(sorted(set(self.refused))),
         )
-
-    def _limits(self, u: Array) -> dict[str, str]:
-        out = {}
-        for f, value in zip(self.free, self.origin + u * self.steps, strict=True):
-            if value <= f.low + f.grid and (f.low < f.start or f.follows):
-                out[f.name] = f"at its least: {f.why_low}"
-            elif value >= f.high - f.grid and f.high > f.start:
-                out[f.name] = f"at its most, {f.high:.4g}: {f.why_high}"
-        return out
-
-
-def worst_return_loss_db(impedance_ohm: Complex, reference_ohm: float) -> float:
-    """Least return loss of impedances (F,)."""
-    gamma = np.abs((impedance_ohm - reference_ohm) / (impedance_ohm + reference_ohm))
-    return float(min(-20.0 * np.log10(max(float(gamma.max()), 1e-6)), 60.0))

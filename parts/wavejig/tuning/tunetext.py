@@ -8,7 +8,8 @@ from typing import Any
 from wavejig.recipe.edit import Put
 from wavejig.recipe.models import Recipe
 from wavejig.tuning.alternatives import Alternative
-from wavejig.tuning.tune import Solve, Tuned
+from wavejig.tuning.candidates import Solve
+from wavejig.tuning.tune import Tuned
 from wavejig.tuning.vary import PLACES, over_mm
 
 _UNITS = {"lobe_angle": "deg", "lip_angle": "deg"}
