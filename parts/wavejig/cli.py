@@ -8,6 +8,7 @@ from __future__ import annotations
 
 import argparse
 import contextlib
+import io
 import sys
 from importlib import import_module
 from pathlib import Path
@@ -46,6 +47,11 @@ exit codes: 0 fine; 1 the design cannot be made (no pack), or misses a figure it
 
 def main(argv: list[str] | None = None) -> int:
     """Run the command line; returns the exit code."""
+    for stream in (sys.stdout, sys.stderr):
+        if isinstance(
+            stream, io.TextIOWrapper
+        ):  # a sign the terminal's code has not is written out, no fault
+            stream.reconfigure(errors="backslashreplace")
     try:
         args = _parser().parse_args(argv)
         return int(import_module(f"wavejig.commands.{args.module}").run(args))
@@ -63,7 +69,7 @@ class _Parser(argparse.ArgumentParser):
     """Names the nearest command or option when one is misspelt."""
 
     def error(self, message: str) -> Any:
-        from wavejig.recipe.errors import nearest
+        from wavejig.recipe.errors import nearest, visible
 
         words = message.split("'")
         if "invalid choice" in message and len(words) > 1:
@@ -73,7 +79,7 @@ class _Parser(argparse.ArgumentParser):
             word = message.split(": ", 1)[1].split()[0]
             near = nearest(word, _OPTIONS)
             message += f', did you mean "{near}"?' if near else ""
-        sys.stderr.write(f"wavejig: {message}\nTry: wavejig --help\n")
+        sys.stderr.write(f"wavejig: {visible(message)}\nTry: wavejig --help\n")
         raise SystemExit(WRONG_INPUT)
 
 

@@ -9,7 +9,10 @@ from __future__ import annotations
 import csv
 import io
 import json
+import os
 import re
+import subprocess
+import sys
 import tomllib
 from collections.abc import Iterator
 from dataclasses import replace
@@ -381,6 +384,31 @@ def test_a_file_name_cannot_give_orders_to_the_terminal(
     told = capsys.readouterr()
     for stream in (told.out, told.err):
         assert visible(stream, keep="\n") == stream
+
+
+@pytest.mark.parametrize(
+    "arguments", [["chek\x1b[31m"], ["check", "--x\x1b]0;t\x07"], ["stock", "\u202emetals"]]
+)
+def test_a_misspelt_word_is_written_out(arguments: list[str], capsys: pytest.CaptureFixture[str]) -> None:
+    try:
+        assert main(arguments) == 2
+    except SystemExit as stop:
+        assert stop.code == 2
+    told = capsys.readouterr().err
+    assert told and visible(told, keep="\n") == told
+
+
+def test_a_terminal_of_few_letters_is_no_fault(tmp_path: Path) -> None:
+    """ASCII alone, and a file's name that is no text at all."""
+    name = os.fsencode(tmp_path) + b"/y\xff\xc3\xa9.toml"
+    Path(os.fsdecode(name)).write_text(GOOD)
+    for command in ([b"check", name], [b"stock", b"awg"], [b"check", name + b"x"], [b"new", name + b".toml"]):
+        done = subprocess.run(
+            [sys.executable.encode(), b"-m", b"wavejig", *command], capture_output=True, check=False,
+            env={**os.environ, "PYTHONIOENCODING": "ascii"}, cwd=tmp_path,
+        )  # fmt: skip
+        assert done.returncode in (0, 2), done.stderr
+        assert b"Traceback" not in done.stderr and (done.stdout + done.stderr).isascii()
 
 
 def read(folder: Path, more: str) -> Recipe:
