@@ -217,6 +217,11 @@ def test_sweeps_have_a_page_of_their_own_with_no_pack_round_it(tmp_path: Path) -
     words = " ".join(tree.text_content().split())
     assert "serial 5, worst" in words and "fails by" in words
     assert f"About {m.predicted.expected:.1f} of 3" in words
+    side = m.articles[0].findings.right.get("side")
+    assert "What came out differently on serial 5" in words
+    rows = [[c.text_content() for c in row] for row in tree.xpath("//*[@id='change']//tr")]
+    wanted = ["side", f"{side.value:+.2f} mm", f"{side.interval[0]:+.2f} to {side.interval[1]:+.2f} mm"]
+    assert wanted in [row[:3] for row in rows]
     curves = tree.xpath("//*[@id='match-plot']//*[contains(@class,'curve')]/@class")
     assert curves == ["curve m1", "curve m2", "curve m3", "curve predicted"]
 

@@ -12,7 +12,9 @@ from wavejig.sheets.report.model import Report
 from wavejig.sheets.report.tables import table
 
 if TYPE_CHECKING:
-    from wavejig.tuning.measured import Measured
+    from wavejig.tuning.measured import Article, Measured
+
+_MEASURABLE = ("side", "lobe_diameter", "standoff", "feed_gap")
 
 # What a bench sees and what it speaks for; each follows from how a loop before a sheet works. Common
 # practice, no source.
@@ -106,6 +108,16 @@ def _measured(m: Measured) -> Iterator[Element]:
     yield table(
         "Measured articles", ("article", "in-band worst", "verdict", "do to this one"), rows, numbers=(1,)
     )
+    worst = min(m.articles, key=lambda a: (a.worst_db, a.sweep.serial))
+    yield table(
+        f"What came out differently on serial {worst.sweep.serial}, the predicted frequency taken as right",
+        ("dimension", "most plausible", "95 % interval", "a first article may be off by"),
+        _deviations(worst),
+        numbers=(1, 2, 3),
+    )
+    for other in worst.findings.right.or_else:
+        slips = " and ".join(f"{_name(key)} {value:+.2f} mm" for key, value in other.slipped)
+        yield el("p", f"Or else, {100 * other.chance:.0f} % likely: {slips or 'nothing slipped'}.")
     if m.changes:
         moves = [(_name(c.key), f"{c.now:.2f} mm", f"{c.new:.2f} mm") for c in m.changes]
         yield table(
@@ -114,6 +126,14 @@ def _measured(m: Measured) -> Iterator[Element]:
             moves,
             numbers=(1, 2),
         )
+
+
+def _deviations(a: Article) -> Iterator[tuple[str, str, str, str]]:
+    for d in a.findings.right.deviations:
+        if d.key in _MEASURABLE:
+            low, high = d.interval
+            value = f"{d.value:+.2f} mm" if d.told else "cannot tell: take the calliper"
+            yield _name(d.key), value, f"{low:+.2f} to {high:+.2f} mm", f"\u00b1{d.before:.2f} mm"
 
 
 def _wanted(r: Report) -> tuple[checks.Check, ...]:
