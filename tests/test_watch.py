@@ -85,7 +85,7 @@ def running(tmp_path_factory: pytest.TempPathFactory) -> Iterator[Running]:
     recipe.write_text(YARD, encoding="utf-8")
     watch = start(recipe, folder / "packs", folder / "cache")
     try:
-        watch.until("ready")
+        watch.until("ready", 300.0)  # the first build loads and solves everything, on a busy machine too
         yield watch
     finally:
         watch.process.kill()

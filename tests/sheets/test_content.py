@@ -21,7 +21,8 @@ from wavejig.sheets.feedsteps import screw_for
 from wavejig.sheets.laid import laid
 from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.station import distance_m, eirp_w, exposure, public_limit_w_per_m2, wind
-from wavejig.sheets.template import OVERLAP_MM, Tile, templates
+from wavejig.sheets.template import templates
+from wavejig.sheets.tiles import OVERLAP_MM, Tile
 from wavejig.shop import Inspection, inspect
 from wavejig.shop.bench import joint_heat_w
 

@@ -33,6 +33,11 @@ class Redrawn:
         self.lip_x = self._at_edge("x", -self.high / 2.0)  # width of the lip at y-
         self.lip_y = self._at_edge("y", -self.wide / 2.0)  # width of the lip at x-
 
+    @property
+    def mitred(self) -> bool:
+        """The drawing has a corner drawn larger, with radii of its own."""
+        return any(d.detail and d.kind == "radius" for d in self.dims)
+
     def _whole(self, axis: str) -> list[Printed]:
         """Sizes from side to side, over the datum."""
         k = "xy".index(axis)
@@ -134,8 +139,7 @@ def check_redrawn(path: Path, made: Inspection) -> None:
     drawn = Redrawn(path)
     tray = made.tray
     assert tray is not None
-    mitred = tray.corner_style == "mitre" and any(lip.left.ear_mm for lip in tray.lips)
-    outline = rounded_outline(all_round(drawn.mitred_corners() if mitred else drawn.corners()))
+    outline = rounded_outline(all_round(drawn.mitred_corners() if drawn.mitred else drawn.corners()))
     expected = Polygon(tray.outline.points(0.002))
     redrawn = Polygon(outline)
     assert redrawn.is_valid

@@ -10,7 +10,6 @@ from collections.abc import Iterator
 import numpy as np
 
 from wavejig.design.model import Design
-from wavejig.geometry.plane import Circle
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import EDGES, Tray, along, outward, place
 from wavejig.sheets.blankcorners import (
@@ -25,9 +24,8 @@ from wavejig.sheets.blankholes import (
     crowd,
     feed_detail,
     hole_labels,
-    placed_labels,
+    plan_with_holes,
     tables_of,
-    window_of,
 )
 from wavejig.sheets.common import block, general_mm, plus_minus, sheet_text
 from wavejig.sheets.fit import best_scale
@@ -41,8 +39,6 @@ from wavejig.sheets.model import (
     Item,
     Line,
     LinearDim,
-    Ring,
-    Shape,
     Sheet,
     Text,
     View,
@@ -130,32 +126,9 @@ def _main(
     labels: tuple[str, ...],
     in_detail: set[int],
 ) -> Iterator[Item]:
-    x0, y0, x1, y1 = pattern.outline.bounds()
-    yield Shape(contour=pattern.outline, pen="outline")
-    over = 4.0 / scale
-    yield Line(a=(x0 - over, 0.0), b=(x1 + over, 0.0), pen="centre")
-    yield Line(a=(0.0, y0 - over), b=(0.0, y1 + over), pen="centre")
+    yield from plan_with_holes(tray, pattern, scale, labels, in_detail)
     for bend in pattern.bends:
         yield Line(a=bend.line[0], b=bend.line[1], pen="bend")
-    for hole in tray.holes:
-        c = Circle(x_mm=hole.x_mm, y_mm=hole.y_mm, diameter_mm=hole.diameter_mm)
-        small = id(hole) in in_detail
-        yield Ring(circle=c, cross=not small)
-    named = [(h, label) for h, label in zip(tray.holes, labels, strict=True) if id(h) not in in_detail]
-    yield from placed_labels(named, tray.holes, scale)
-    if in_detail:
-        half, cx, cy = window_of([h for h in tray.holes if id(h) in in_detail])
-        yield Chain(
-            points=(
-                (cx - half, cy - half),
-                (cx + half, cy - half),
-                (cx + half, cy + half),
-                (cx - half, cy + half),
-            ),
-            closed=True,
-            pen="thin",
-        )
-        yield Text(at=(cx + half, cy + half), text="F", height_mm=DIM_TEXT_MM, shift=(0.8, 0.8), bold=True)
     if window := corner_window(tray):
         xa, ya, xb, yb = window
         yield Chain(points=((xa, ya), (xb, ya), (xb, yb), (xa, yb)), closed=True, pen="thin")

@@ -1,4 +1,7 @@
-"""Holes of the blank: their labels, table, and the crowd round the feed drawn larger. Lengths in mm."""
+"""A sheet part in plan with its holes: labels, table, and the crowd round the feed drawn larger. Lengths in mm.
+
+The same for a blank and for a dish that is there already.
+"""
 
 from __future__ import annotations
 
@@ -7,6 +10,7 @@ from collections.abc import Iterator, Sequence
 
 from wavejig.design.model import Hole
 from wavejig.geometry.plane import Circle
+from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import Tray
 from wavejig.sheets.blankcorners import (
     SEEN,
@@ -19,6 +23,7 @@ from wavejig.sheets.model import (
     Item,
     Line,
     Ring,
+    Shape,
     Table,
     Text,
     View,
@@ -99,6 +104,30 @@ def _to_rim(box: _Box, hole: Hole) -> float:
 def _apart(a: _Box, b: _Box) -> float:
     """Gap between two boxes along the axis where it is larger; negative when they overlap."""
     return max(a[0] - b[2], b[0] - a[2], a[1] - b[3], b[1] - a[3])
+
+
+def plan_with_holes(
+    tray: Tray, pattern: FlatPattern, scale: float, labels: tuple[str, ...], in_detail: set[int]
+) -> Iterator[Item]:
+    """The outline with its centre lines, every hole, labels of those not drawn larger, and the detail's window.
+
+    in_detail: ids of the holes that the detail F shows larger.
+    """
+    x0, y0, x1, y1 = pattern.outline.bounds()
+    yield Shape(contour=pattern.outline, pen="outline")
+    over = 4.0 / scale
+    yield Line(a=(x0 - over, 0.0), b=(x1 + over, 0.0), pen="centre")
+    yield Line(a=(0.0, y0 - over), b=(0.0, y1 + over), pen="centre")
+    for hole in tray.holes:
+        circle = Circle(x_mm=hole.x_mm, y_mm=hole.y_mm, diameter_mm=hole.diameter_mm)
+        yield Ring(circle=circle, cross=id(hole) not in in_detail)
+    named = [(h, label) for h, label in zip(tray.holes, labels, strict=True) if id(h) not in in_detail]
+    yield from placed_labels(named, tray.holes, scale)
+    if in_detail:
+        half, cx, cy = window_of([h for h in tray.holes if id(h) in in_detail])
+        corners = ((-half, -half), (half, -half), (half, half), (-half, half))
+        yield Chain(points=tuple((cx + a, cy + b) for a, b in corners), closed=True, pen="thin")
+        yield Text(at=(cx + half, cy + half), text="F", height_mm=DIM_TEXT_MM, shift=(0.8, 0.8), bold=True)
 
 
 def tables_of(tray: Tray, labels: tuple[str, ...], left: float, top: float) -> Iterator[Table]:

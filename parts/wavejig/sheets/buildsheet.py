@@ -16,10 +16,11 @@ from reportlab.platypus import (
     PageTemplate,
 )
 
+from wavejig.sheets.buildmodel import BuildSheet
 from wavejig.sheets.flow import Picture, pages_canvas
 from wavejig.sheets.fonts import REGULAR, printable, use_fonts
 from wavejig.sheets.frame import PAPERS_MM
-from wavejig.sheets.making import BuildSheet, making_story
+from wavejig.sheets.making import making_story
 from wavejig.sheets.proving import proving_story
 from wavejig.sheets.template import templates
 

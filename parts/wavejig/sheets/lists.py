@@ -19,7 +19,7 @@ from wavejig.sheets.checks import (
 from wavejig.sheets.common import sheet_text, wire_text
 from wavejig.sheets.feedsteps import NAMES, screw_for
 from wavejig.sheets.model import number
-from wavejig.sheets.own import size_text
+from wavejig.sheets.ownwords import size_text
 from wavejig.spacer.model import Spacer
 
 

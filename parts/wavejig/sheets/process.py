@@ -21,7 +21,7 @@ from wavejig.sheets.feedsteps import (
 )
 from wavejig.sheets.lists import trimmed_before
 from wavejig.sheets.model import number
-from wavejig.sheets.own import own_drilling, own_measuring
+from wavejig.sheets.ownwords import own_drilling, own_measuring
 from wavejig.spacer.model import Spacer
 
 

@@ -13,10 +13,8 @@ from reportlab.platypus import (
 )
 
 from wavejig.sheets import checks
+from wavejig.sheets.buildmodel import BuildSheet
 from wavejig.sheets.flow import heading, lead, para, table
-from wavejig.sheets.making import (
-    BuildSheet,
-)
 from wavejig.sheets.model import number
 from wavejig.sheets.station import exposure, wind
 

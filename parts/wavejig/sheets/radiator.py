@@ -15,7 +15,6 @@ from wavejig.design.model import Design
 from wavejig.geometry.plane import Circle, Contour
 from wavejig.radiator.drawing import views as plan_views
 from wavejig.radiator.model import Radiator
-from wavejig.radiator.stock import bought_length_mm
 from wavejig.sheets.common import block, plus_minus, wire_text
 from wavejig.sheets.feedview import TABLES_WIDE_MM, end_view
 from wavejig.sheets.fit import best_scale
@@ -33,12 +32,12 @@ from wavejig.sheets.model import (
     Ring,
     Shape,
     Sheet,
-    Table,
     Text,
     View,
     number,
 )
 from wavejig.sheets.project import seen_wire
+from wavejig.sheets.radiatortables import corner_tables, pieces_table
 
 
 def radiator_drawing(design: Design, radiator: Radiator) -> Sheet:
@@ -83,8 +82,8 @@ def radiator_drawing(design: Design, radiator: Radiator) -> Sheet:
             title_at=(centre, front_base - 8.0),
         ),
     ]
-    tables = [_pieces(radiator, left, y1)]
-    tables += _corner_tables(design, left, tables[0].at[1] - tables[0].height_mm - 4.0)
+    tables = [pieces_table(radiator, left, y1)]
+    tables += corner_tables(design, left, tables[0].at[1] - tables[0].height_mm - 4.0)
     top = min(t.at[1] - t.height_mm for t in tables) - 3.0
     views.append(end_view(design, radiator, left, top, y0))
     return Sheet(
@@ -244,51 +243,6 @@ def _front(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
         after=plus_minus(design.tolerances.standoff_mm),
     )
     yield Text(at=(left, 0.0), text="reflector", shift=(1.0, 0.8))
-
-
-def _pieces(radiator: Radiator, left: float, top: float) -> Table:
-    return Table(
-        title="PIECES, mm",
-        head=("piece", "wire", "cut length", "bends"),
-        rows=tuple(
-            (
-                "inner, bared" if p.role == "inner" else p.role,
-                f"\u00d8{number(p.diameter_mm, 3)}",
-                # the inner conductor is part of the tube's length
-                f"({number(p.cut_length_mm, 1)})"
-                if p.role == "inner"
-                else number(bought_length_mm(radiator, p), 1),
-                str(len(p.bends)),
-            )
-            for p in radiator.pieces
-        ),
-        widths_mm=(26.0, 18.0, 20.0, 14.0),
-        at=(left, top),
-        name="pieces",
-    )
-
-
-def _corner_tables(design: Design, left: float, top: float) -> list[Table]:
-    """The corners of paths of the user's own and of four lobes, which the plan's sizes do not pin down."""
-    r = design.radiator
-    if r.family not in ("path", "double-biquad"):
-        return []
-    rows = [(str(i), *(number(v) for v in c.at)) for i, c in enumerate(r.corners, start=1)]
-    half = len(rows) if len(rows) <= 12 else math.ceil(len(rows) / 2)
-    widths = (6.5, 11.8, 11.8, 10.4)
-    title = f"CORNERS of the centreline, mm; all R{number(r.inside_radius_mm)} inside"
-    return [
-        Table(
-            title=title if i == 0 else " ",
-            head=("no.", "x", "y", "z"),
-            rows=tuple(part),
-            widths_mm=widths,
-            at=(left - 3.0 + i * sum(widths), top),
-            name=f"corners-{i + 1}",
-        )
-        for i, part in enumerate((rows[:half], rows[half:]))
-        if part
-    ]
 
 
 def _xy(v: np.ndarray) -> tuple[float, float]:
