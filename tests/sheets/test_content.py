@@ -219,7 +219,7 @@ def test_the_cut_list_is_enough_wire() -> None:
     rows = lists.materials(made.design, made.radiator, pattern_of(made), made.spacer)
     metres = float(next(r[4] for r in rows if r[0] == "main wire").split("=")[1].split()[0])
     assert metres == pytest.approx(12 * made.radiator.main.cut_length_mm / 1000.0, abs=0.005)
-    assert next(r for r in rows if r[0] == "flange screw and nut")[3:] == ("4", "48")
+    assert next(r for r in rows if r[0] == "flange screw, nut, washer")[3:] == ("4", "48")
 
 
 # -- pictures -----------------------------------------------------------------------------------------

@@ -251,3 +251,24 @@ def test_no_line_of_the_sheet_metal_drawings_runs_through_their_lettering(name: 
         boxes = [_box(w) for w in words]
         pairs = shapely.STRtree(boxes).query(boxes, predicate="intersects").T.tolist()
         assert all(a == b for a, b in pairs), view.title
+
+
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "ridge-868"])
+def test_the_cut_list_and_the_bill_count_the_same(name: str) -> None:
+    """Screws, nuts, washers, connectors, clamps: whatever the bill counts for the batch stands on the sheet."""
+    made = inspected(name)
+    assert made.radiator and made.tray and made.spacer and made.fixture
+    pattern = pattern_of(made)
+    batch = plan_batch(made.design, made.radiator, made.tray, pattern, made.spacer, made.fixture)
+    rows = lists.materials(made.design, made.radiator, pattern, made.spacer)
+    for line in batch.bill.lines:
+        if (
+            line.key in ("connector", "plug", "screw", "nut", "washer", "pole_clamp")
+            and "fixture" not in line.remark
+        ):
+            word = line.item.split()[-1] if line.key != "pole_clamp" else "U-bolt"
+            (row,) = [
+                r for r in rows if word.strip("()") in r[0] and (line.key == "plug") == ("plug" in r[0])
+            ] or [None]
+            assert row is not None, line.item
+            assert row[4] == f"{line.count:g}", (line, row)

@@ -52,7 +52,7 @@ def materials(design: Design, radiator: Radiator, pattern: FlatPattern, spacer: 
             screw = screw_for(feed.connector.hole_diameter_mm) or "screw"
             rows.append(
                 (
-                    "flange screw and nut",
+                    "flange screw, nut, washer",
                     "stainless or brass",
                     screw,
                     f"{len(feed.flange_holes)}",
