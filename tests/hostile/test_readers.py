@@ -132,3 +132,28 @@ def test_names_of_files_reach_the_terminal_written_out() -> None:
     assert visible("Ω → µ “é”") == "Ω → µ “é”"
     assert show("x" * 100) == '"' + "x" * 58 + "…"
     assert show(10**5000).startswith("a very long int")
+
+
+@pytest.mark.parametrize("what", ["pipe", "endless"])
+def test_commands_do_not_wait_for_what_never_ends(
+    what: str, tmp_path: Path, capsys: pytest.CaptureFixture[str]
+) -> None:
+    """A recipe that is a pipe, or a file of gigabytes (here one with a hole), given to every command that reads one."""
+    from wavejig.cli import main
+    from wavejig.commands.serving import Board
+    from wavejig.commands.watching import Watch
+
+    path = tmp_path / "r.toml"
+    if what == "pipe":
+        os.mkfifo(path)
+    else:
+        with path.open("wb") as stream:
+            stream.truncate(8 * 1024**3)
+    began = time.process_time()
+    for command in (["check"], ["build", str(path)], ["match"], ["tune"], ["yield"], ["measured", str(path)]):
+        assert main([*command, str(path)]) == 2
+        assert str(path) in capsys.readouterr().err
+    told = Watch(path, tmp_path / "out", Board("r.toml")).look()
+    assert told == (what == "endless")  # what cannot be read is as if it were not there
+    assert time.process_time() - began < 2.0 * SLOW_S
+    assert not (tmp_path / "out").exists()

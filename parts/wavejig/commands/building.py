@@ -76,11 +76,13 @@ def _tell(outcomes: Iterable[Outcome], as_json: bool) -> int:
 def _same_pack(recipes: list[Path]) -> str | None:
     """Why two of these recipes cannot be built in one call; None where each has a pack of its own."""
     from wavejig.files.origin import seeming_name
+    from wavejig.recipe.plainfile import read_plain
+    from wavejig.recipe.reader import MOST_BYTES
 
     seen: dict[str, Path] = {}
     for path in recipes:
         try:
-            name = seeming_name(path.read_bytes()) if path.is_file() else None
+            name = seeming_name(read_plain(path, MOST_BYTES)) if path.is_file() else None
         except OSError:
             continue
         if name is None:

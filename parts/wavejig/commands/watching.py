@@ -100,8 +100,11 @@ class Watch:
 
     def _content(self) -> bytes | None:
         """Fingerprint of the recipe's content; None while it cannot be read."""
+        from wavejig.recipe.plainfile import read_plain
+        from wavejig.recipe.reader import MOST_BYTES
+
         try:
-            return hashlib.sha256(self.path.read_bytes()).digest()
+            return hashlib.sha256(read_plain(self.path, MOST_BYTES)).digest()
         except OSError:
             return None
 
