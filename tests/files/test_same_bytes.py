@@ -94,9 +94,10 @@ def test_a_pack_built_alone_is_the_one_built_among_others_by_somebody_else(tmp_p
     somebody = []
     if os.geteuid() == 0 and shutil.which("setpriv"):
         somebody = ["setpriv", "--reuid=65534", "--clear-groups"]
-        probe = [*somebody, sys.executable, "-c", "import pydantic"]
-        if subprocess.run(probe, capture_output=True, check=False).returncode:
-            somebody = []  # Python itself lies where only root may go
+        probe = [*somebody, sys.executable, "-c", "import pydantic, sys; print(sys.version)"]
+        said = subprocess.run(probe, capture_output=True, text=True, check=False)
+        if said.stdout.strip() != sys.version.strip():
+            somebody = []  # this very Python lies where only root may go
         os.chown(theirs, 65534, -1)
         for folder in (tmp_path, *tmp_path.parents):
             if folder.name.startswith(("test_", "pytest-", "popen-")):
