@@ -143,6 +143,7 @@ def build(
                 order=files.bend_order,
                 batch=files.batch,
             )
+            files.write_recipe(text)
             progress("report")
             from wavejig.sheets.report.frompack import write_pack_report
 
@@ -161,7 +162,7 @@ def build(
             origin = made_from(
                 fingerprint(recipe_file.recipe), field=predict, free=_FREE.get(settled.how, settled.how)
             )
-            files.finish(text, versions(), origin)
+            files.finish(versions(), origin)
             count, size = files.totals()
         if memory is not None:
             memory.pack = out / inspection.design.name

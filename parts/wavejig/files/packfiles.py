@@ -161,11 +161,14 @@ class PackFiles:
         self.bend_order = left["bend_order"]
         self.fixture = fitted(self.fixture, self.bend_order)
 
-    def finish(self, recipe: bytes, versions: dict[str, str], made: dict[str, Any]) -> None:
-        """The recipe's own text, the manifest, and the last look at the whole folder."""
-        self.beside.settle()
+    def write_recipe(self, recipe: bytes) -> None:
+        """The recipe's own text; before the report, which lists it."""
         (self.root / RECIPE).write_bytes(recipe)
         self._note(RECIPE, "toml", "design", "")
+
+    def finish(self, versions: dict[str, str], made: dict[str, Any]) -> None:
+        """The manifest, and the last look at the whole folder."""
+        self.beside.settle()
         write_manifest(self.root, self.entries, versions, made)
         check_manifest(self.root)
 

@@ -24,7 +24,7 @@ NAME = "report.html"
 _KINDS = {
     "3mf": "print, with units", "csv": "table", "dxf": "drawing or cut (CAD)", "glb": "to look at in 3D",
     "html": "page", "json": "data for programs", "pdf": "paper", "step": "solid (CAD)", "stl": "print",
-    "svg": "picture", "touchstone": "sweep, for analysers",
+    "svg": "picture", "toml": "the recipe, to build it again", "touchstone": "sweep, for analysers",
 }  # fmt: skip
 _PARTS = {"design": "the design", "assembly": "the antenna put together", "field": "the field model"}
 
