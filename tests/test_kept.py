@@ -10,6 +10,7 @@ import shutil
 import subprocess
 import sys
 from collections.abc import Callable
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -17,18 +18,22 @@ import numpy as np
 import pytest
 
 from tests.yard import YARD
+from wavejig.files import kept as kept_module
 from wavejig.files import origin, record
 from wavejig.files.fingerprint import fingerprint
 from wavejig.files.kept import Kept
 from wavejig.files.manifest import Entry, check_manifest
-from wavejig.pack import build, retell
+from wavejig.pack import build, inspect_recipe, retell
 
 # What is changed, and what of the earlier build must have been taken over (more may be).
 PAPER = (
     'quantity = 6', 'quantity = 9\n[sheet]\npaper = "Letter"\n[station]\ntransmitter_power = "50 mW"',
 )  # fmt: skip
 CHANGES = [
-    pytest.param(PAPER, {"radiator", "reflector", "spacer", "fixture", "assembly", "field solve"}, id="paper", marks=pytest.mark.slow),
+    pytest.param(
+        PAPER, {"radiator", "reflector", "spacer", "fixture", "assembly", "field solve"}, id="paper",
+        marks=pytest.mark.slow,
+    ),
     pytest.param(
         ('"14 dB"', '"13 dB"'), {"radiator", "fixture", "field solve"}, id="wanted", marks=pytest.mark.slow
     ),
@@ -109,6 +114,40 @@ def test_a_rebuild_writes_what_a_fresh_build_writes(
     assert [name for name in one if one[name] != other[name]] == []
     assert one != tree(yard[0])
     assert again.inspection.findings == fresh.inspection.findings
+
+
+class Unread:
+    """Stands for what a step does not look at."""
+
+    def __getattribute__(self, name: str) -> Any:
+        raise AssertionError(f"{name} is read")
+
+
+@pytest.mark.slow
+def test_no_step_reads_what_it_is_not_compared_by(tmp_path: Path) -> None:
+    """Each step run with the parts of the design that are left out of its inputs taken away."""
+    from wavejig.files.packfiles import PackFiles
+
+    recipe = tmp_path / "yard.toml"
+    recipe.write_text(YARD)
+    inspection = inspect_recipe(recipe)[1]
+    design = inspection.design
+    files = PackFiles(inspection, tmp_path / "stage", predict=False)
+    files.root.mkdir()
+    run = []
+    for step in files.steps():
+        aside = kept_module._ASIDE.get(step.title)
+        if aside is not None:
+            gone = aside - {"target"} | kept_module._NEVER
+            files.design = replace(design, **{name: Unread() for name in gone})
+            if (
+                "target" in aside
+            ):  # which stays, being needed for names and scales; but no number of the match
+                files.design = replace(files.design, target=replace(design.target, return_loss_db=Unread()))
+            run.append(step.title)
+        step.run()
+        files.design = design
+    assert set(run) == set(kept_module._ASIDE)
 
 
 def test_a_remark_changes_the_recipe_and_the_manifest_alone(yard: tuple[Path, Any], tmp_path: Path) -> None:
