@@ -11,10 +11,13 @@ from pathlib import Path
 import jsonschema
 import pytest
 
+import wavejig
 from tests.recipe.bad_recipes import BAD, GOOD
 from wavejig.cli import main
 from wavejig.recipe import read_recipe
 from wavejig.recipe.models import Recipe
+
+STARTER = Path(wavejig.__file__).parent / "recipe" / "starter.toml"
 
 Capture = pytest.CaptureFixture[str]
 RECIPES = sorted((Path(__file__).parents[1] / "recipes").glob("*.toml"))
@@ -109,7 +112,7 @@ def test_new_writes_a_recipe_that_passes_and_never_overwrites(tmp_path: Path, ca
 
 def test_the_starter_names_every_key() -> None:
     """Each key of the models stands in the starter, set or as a remark, in its table."""
-    text = (Path(__file__).parents[1] / "parts/wavejig/recipe/starter.toml").read_text()
+    text = STARTER.read_text()
     from wavejig.recipe.reader import _all_keys
 
     for table, keys in _all_keys().items():
@@ -125,9 +128,7 @@ def test_the_starter_names_every_key() -> None:
 
 def test_remarks_of_the_starter_are_valid_values(tmp_path: Path) -> None:
     """Taking the # away from every simple line still gives a recipe that reads (contradictions aside)."""
-    text = (
-        (Path(__file__).parents[1] / "parts/wavejig/recipe/starter.toml").read_text().replace("@name@", "all")
-    )
+    text = STARTER.read_text().replace("@name@", "all")
     lines = []
     for line in text.splitlines():
         bare = line.removeprefix("# ")

@@ -8,6 +8,8 @@ from typing import Any
 
 import pytest
 
+import wavejig
+
 TOP = Path(__file__).parents[1]
 BLOCKS = re.findall(
     r"^```python\n(.*?)^```", (TOP / "DEVELOPERS.md").read_text(encoding="utf-8"), re.M | re.S
@@ -41,4 +43,4 @@ def test_every_module_the_guide_names_is_there() -> None:
     named = set(re.findall(r"`((?:tests|\w+)/[\w/]+\.(?:py|sh|toml|js|css))`", text))
     assert len(named) > 8
     for name in sorted(named):
-        assert (TOP / name).is_file() or (TOP / "parts" / "wavejig" / name).is_file(), name
+        assert (TOP / name).is_file() or (Path(wavejig.__file__).parent / name).is_file(), name

@@ -21,6 +21,7 @@ import pypdfium2
 import pytest
 from pypdf import PdfReader
 
+import wavejig
 from tests.designs import design
 from tests.sheets.conftest import RECIPES, SAMPLED, inspected, pattern_of
 from wavejig.files.errors import FileCheckError
@@ -209,7 +210,7 @@ def test_same_bytes_in_two_processes(tmp_path: Path) -> None:
                 "PYTHONHASHSEED": seed,
                 "TZ": zone,
                 "PATH": "/usr/bin:/bin",
-                "PYTHONPATH": str(RECIPES.parent / "parts"),
+                "PYTHONPATH": str(Path(wavejig.__file__).parents[1]),
             },
         )
         sums.append(
