@@ -182,6 +182,19 @@ def test_a_pack_touched_by_hand_is_not_taken_over(yard: tuple[Path, Any], tmp_pa
 # -- what is there already --------------------------------------------------------------------------------
 
 
+@pytest.mark.slow
+def test_a_remark_leads_to_what_a_fresh_build_of_that_text_writes(tmp_path: Path) -> None:
+    recipe = tmp_path / "yard.toml"
+    recipe.write_text(YARD)
+    build(recipe, tmp_path / "kept", predict=False)
+    recipe.write_text("# a remark that makes the recipe longer\n" * 40 + YARD)
+    found = origin.look(recipe, tmp_path / "kept", field=False)
+    assert found is not None and not found.same_text
+    retell(recipe, found)
+    fresh = build(recipe, tmp_path / "fresh", predict=False)
+    assert tree(fresh.folder) == tree(tmp_path / "kept" / "yard-5g8")
+
+
 def cut_short(pack: Path) -> None:
     (pack / "design.json").write_bytes((pack / "design.json").read_bytes()[:-2])
 

@@ -8,6 +8,7 @@ from pathlib import Path
 from urllib.parse import quote
 
 from wavejig.files.manifest import Entry
+from wavejig.files.origin import RECIPE
 from wavejig.sheets.making import FAMILY_WORDS
 from wavejig.sheets.model import number
 from wavejig.sheets.report.check import check_report
@@ -164,11 +165,12 @@ def _files(r: Report) -> Iterable[Element]:
             _PARTS.get(e.part, e.part),
             _KINDS.get(e.kind, e.kind),
             e.units or "-",
-            size_text(size),
+            "-" if e.path == RECIPE else size_text(size),
         )
         for e, size in sorted(r.files, key=lambda f: f[0].path)
     ]
-    total = size_text(sum(size for _, size in r.files))
+    # remarks may change in the recipe without a new page: its size is no part of this one
+    total = size_text(sum(size for e, size in r.files if e.path != RECIPE))
     yield table(
         f"{len(rows)} files, {total}, and this page",
         ("file", "of", "what", "unit", "size"),
