@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import csv
+from collections import Counter
 from collections.abc import Iterator
 from dataclasses import replace
 from pathlib import Path
@@ -343,16 +344,28 @@ def test_the_cut_plan_covers_the_batch(tmp_path: Path) -> None:
 
 
 def test_pins_of_the_fixture() -> None:
-    """As many as there are holes that take one at a time."""
+    """As many as there are holes that take one at a time, each of the size its hole is for.
+
+    Where a leg stands up already the cut end's stop is a thin one; the stop block needs a stop of either size.
+    """
     found, _ = made(quantity=3)
-    assert found.fixture is not None
-    board = found.fixture.board
-    standing = sum(h.purpose in ("pin", "stop") for h in board.holes)
-    assert sum(fixture_pins(found.design, found.fixture).values()) == standing + len(found.fixture.blocks)
-    block = inspect(design(fixture={"style": "stop-block"}))
-    assert block.fixture is not None and block.fixture.stop_block is not None
-    pins = fixture_pins(block.design, block.fixture)
-    assert sum(pins.values()) == 3 + len(block.fixture.blocks)
+    for recipe in (found.design, design(), design(fixture={"style": "stop-block"})):
+        inspected = inspect(recipe)
+        fixture = inspected.fixture
+        assert fixture is not None
+        allowance = recipe.printer.hole_allowance_mm
+        on_blocks = Counter(round(b.dowel_mm, 3) for b in fixture.blocks)
+        bought = Counter({d: n for (d, _), n in fixture_pins(recipe, fixture).items()}) - on_blocks
+        if fixture.style == "board":
+            holes = [h for h in fixture.board.holes if h.purpose in ("pin", "stop")]
+            assert bought == Counter(round(h.diameter_mm - allowance, 3) for h in holes)
+        else:
+            block = fixture.stop_block
+            assert block is not None
+            for place in block.places:
+                standing = Counter([round(d, 3) for d in (block.mandrel_mm, block.pin_mm, place.stop_mm)])
+                assert standing <= bought
+            assert sum(bought.values()) == 2 + len({p.stop_mm for p in block.places})
 
 
 # -- all together -------------------------------------------------------------------------------------

@@ -5,6 +5,7 @@ from __future__ import annotations
 
 import math
 import re
+from dataclasses import replace
 from functools import cache
 
 import numpy as np
@@ -16,12 +17,14 @@ from tests.sheets.conftest import CUT, DEMOS, inspected, pattern_of
 from wavejig.batch.plan import plan as plan_batch
 from wavejig.fixture.bending.model import BendOrder
 from wavejig.fixture.bending.order import plan_order
+from wavejig.fixture.solid import printables
 from wavejig.sheets import bending, checks, lists
+from wavejig.sheets.fixture import fixture_drawing
 from wavejig.sheets.fonts import width_mm
 from wavejig.sheets.laid import laid
 from wavejig.sheets.layout import lay_out
 from wavejig.sheets.marks import Stroke, Word
-from wavejig.sheets.model import Ring, Sheet, View, number
+from wavejig.sheets.model import Ring, Shape, Sheet, View, number
 from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.sheetfiles import drawings
 from wavejig.sheets.template import templates
@@ -103,13 +106,64 @@ def test_the_arrow_goes_where_the_free_side_goes(from_end: bool) -> None:
     assert seen == {"left", "right"}
 
 
-def test_a_stop_block_s_bends_are_not_drawn_on_a_board() -> None:
+@cache
+def on_stop_block() -> tuple[Inspection, BendOrder]:
     made = inspect(design(fixture={"style": "stop-block"}))
     assert made.radiator and made.fixture
-    order = plan_order(made.design, made.radiator, made.fixture)
-    shown = bending.frames(made.design, made.radiator, made.fixture, order)
-    assert any("stop block" in f.seen for f in shown)
-    assert not any("board" in f.seen for f in shown)
+    return made, plan_order(made.design, made.radiator, made.fixture)
+
+
+def test_a_stop_block_s_bends_are_drawn_on_it_with_their_three_pins() -> None:
+    made, order = on_stop_block()
+    assert made.radiator and made.fixture and made.fixture.stop_block
+    block = made.fixture.stop_block
+    places = {p.bend: p for p in block.places}
+    shown = [f for f in bending.frames(made.design, made.radiator, made.fixture, order) if "stop" in f.seen]
+    assert len(shown) == len(places)
+    for frame in shown:
+        place = places[int(frame.title.split()[-1])]
+        black = {r.circle for r in frame.items if isinstance(r, Ring) and r.pen == "outline"}
+        assert {(c.x_mm, c.y_mm) for c in black} == {place.mandrel_at, place.fence_at, place.stop_at}
+        x0, y0, x1, y1 = frame.box
+        for ring in (r.circle for r in frame.items if isinstance(r, Ring)):
+            half = ring.diameter_mm / 2.0
+            assert x0 <= ring.x_mm - half and ring.x_mm + half <= x1
+            assert y0 <= ring.y_mm - half and ring.y_mm + half <= y1
+        # the wire touches each pin and runs into none
+        (wire,) = [s for s in frame.items if isinstance(s, Shape) and s.pen == "wire"]
+        body = shapely.Polygon(wire.contour.points(), [h.points() for h in wire.holes])
+        for c in black:
+            gap = body.distance(shapely.Point(c.x_mm, c.y_mm)) - c.diameter_mm / 2.0
+            stands = made.design.radiator.covered_diameter_mm / 2.0 if place.side == "leg" else 0.0
+            # drawn with chords up to 0.05 mm off; half a millimetre: it has sprung back
+            assert -0.06 <= gap <= stands + 0.5, (frame.title, gap)
+
+
+def test_a_stop_block_is_not_taken_for_a_board() -> None:
+    """Its drawing shows what is printed, and no clamp is asked for that has no place on it."""
+    made, order = on_stop_block()
+    assert made.radiator and made.fixture and made.spacer and made.fixture.stop_block
+    frames = bending.frames(made.design, made.radiator, made.fixture, order)
+    assert not any("the board" in f.seen for f in frames)
+    sheet = paper_of(made)["fixture"]
+    (first, _), outline = sheet.views, made.fixture.stop_block.plate.outline
+    assert any(isinstance(i, Shape) and i.contour == outline for i in first.items)
+    told = " ".join([*(v.title for v in sheet.views), *sheet.notes, sheet.block.part])
+    assert "STOP BLOCK" in told and "board" not in told.lower()
+    named = {row[-1].split(",")[0] for row in sheet.tables[0].rows if row[-1].startswith("stop")}
+    assert named == {f"stop {p.lane}S{p.stop}" for p in made.fixture.stop_block.places}
+    listed = {row[0].split(",")[0] for row in lists.tools(made.design, made.fixture, made.spacer)}
+    printed = {p.name for p in printables(made.fixture)}
+    of_the_fixture = {n for n in listed if not n.startswith(("spacer", "hold-down", "dowel pin"))}
+    assert of_the_fixture == printed
+
+
+def test_pins_to_be_turned_have_a_name_on_the_drawing() -> None:
+    made = inspected("saltmarsh-2g4")
+    assert made.radiator and made.fixture
+    stations = tuple(replace(s, tool="turned") for s in made.fixture.stations)
+    sheet = fixture_drawing(made.design, replace(made.fixture, stations=stations), made.radiator)
+    assert any(row[-1].startswith("turned pin") for row in sheet.tables[0].rows)
 
 
 def test_the_extra_length_is_cut_off_once_and_it_is_said_when() -> None:

@@ -9,7 +9,6 @@ from dataclasses import replace
 from wavejig.batch.model import Bill, BillLine, Nest, PrintPlan, WirePlan
 from wavejig.design.model import Design
 from wavejig.fixture.model import Fixture
-from wavejig.fixture.pins import stop_pin_mm
 from wavejig.spacer.model import Spacer
 from wavejig.stock.hardware import screw_through
 
@@ -154,18 +153,22 @@ def _bench(design: Design, fixture: Fixture) -> Iterator[BillLine]:
 def fixture_pins(design: Design, fixture: Fixture) -> Counter[tuple[float, bool]]:
     """How many metal pins the fixture takes at once, by (diameter in mm, turned to size).
 
-    The board has one at each station and one where the cut end stops; a former disc two, moved along with it;
-    the stop block one former, one fence and one stop; a bend block one of its own.
+    The board has one at each station and one where the cut end stops (thin beside a standing leg); a former disc
+    two, moved along with it; the stop block one former, one fence and one stop of each size; a bend block its own.
     """
     pins: Counter[tuple[float, bool]] = Counter()
     metal = [s for s in fixture.stations if s.tool in ("dowel", "turned")]
-    stop = (round(stop_pin_mm(design), 3), False)
     if fixture.style == "board":
         pins.update((round(s.tool_diameter_mm, 3), s.tool == "turned") for s in metal)
-        pins[stop] += sum(h.purpose == "stop" for h in fixture.board.holes)
+        allowance = design.printer.hole_allowance_mm
+        stops = [h for h in fixture.board.holes if h.purpose == "stop"]
+        pins.update((round(h.diameter_mm - allowance, 3), False) for h in stops)
     else:
         pins.update((round(s.tool_diameter_mm, 3), s.tool == "turned") for s in metal[:1])
-        pins[stop] += 2
+        stepped = fixture.stop_block
+        if stepped is not None:
+            pins[(round(stepped.pin_mm, 3), False)] += 1
+            pins.update({(round(p.stop_mm, 3), False) for p in stepped.places})
     for disc in fixture.discs:
         pins[(round(disc.dowel_mm, 3), False)] += 2
     for block in fixture.blocks:

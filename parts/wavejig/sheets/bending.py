@@ -10,38 +10,28 @@ from __future__ import annotations
 import itertools
 import math
 from collections.abc import Iterator
-from dataclasses import dataclass
 
 import numpy as np
 
 from wavejig.design.model import Design
 from wavejig.fixture.bending.forming import stock_wire
-from wavejig.fixture.bending.model import AT_MARK, BLOCK, BOARD, BendOrder, BendStep
+from wavejig.fixture.bending.frames import Pose, poses
+from wavejig.fixture.bending.model import AT_MARK, BOARD, STOPS, BendOrder, BendStep
 from wavejig.fixture.bending.words import instruction
 from wavejig.fixture.model import Fixture, Station
 from wavejig.geometry.path import PathBend, path_from_bends
-from wavejig.geometry.plane import Circle, Contour
+from wavejig.geometry.plane import Circle
 from wavejig.radiator.model import Bend, Piece, Radiator
+from wavejig.sheets.bendframe import Frame, cut_off, wire_shapes
 from wavejig.sheets.feedsteps import NAMES
 from wavejig.sheets.laid import laid
-from wavejig.sheets.model import SMALL_TEXT_MM, Arrow, Item, Line, Pen, Ring, Shape, Text, number
-from wavejig.sheets.project import outlines_of
+from wavejig.sheets.model import SMALL_TEXT_MM, Arrow, Item, Line, Ring, Shape, Text, number
+from wavejig.sheets.stoppicture import stop_picture
 
 _TURNED = np.array([-1.0, 1.0, -1.0])
 _BLOCK_SHOWN_MM = 16.0  # how much straight wire a block's picture shows on either side
 # The swing's arrow stands off the former by so much, or by this share of the board's width. Taste, no source.
 _SWING_MM, _SWING_SHARE = 8.0, 0.07
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Frame:
-    """One picture: items in mm with the box (x0, y0, x1, y1) to show, and what is said below it."""
-
-    title: str
-    text: str
-    items: tuple[Item, ...]
-    box: tuple[float, float, float, float]
-    seen: str
 
 
 def frames(
@@ -59,6 +49,10 @@ def frames(
         steps: list[tuple[Bend, BendStep | None]]
         rows = {b.number: b for b in piece.bends}
         steps = [(rows[s.number], s) for s in planned.steps] if planned else [(b, None) for b in piece.bends]
+        on_stops: dict[int, Pose] = {}
+        if planned is not None and any(s.place == STOPS for s in planned.steps):
+            shapes = poses(planned, stock_wire(design, piece), None, fixture.stop_block)
+            on_stops = {pose.step.number: pose for pose in shapes if pose.step.place == STOPS}
         done: list[int] = []
         for count, (bend, step) in enumerate(steps, start=1):
             station = stations.get(bend.number) if piece is radiator.main else None
@@ -67,10 +61,13 @@ def frames(
                 text = _unplanned(bend, station)
             else:
                 text = instruction(step, stock_wire(design, piece), fixture, done).replace(" deg", "\u00b0")
-            if station is not None and (step is None or step.place == BOARD):
+            if bend.number in on_stops and fixture.stop_block is not None:
+                wide = design.radiator.covered_diameter_mm
+                out.append(stop_picture(on_stops[bend.number], fixture.stop_block, wide, title, text))
+            elif station is not None and (step is None or step.place == BOARD):
                 out.append(_board_frame(piece, bend, step, fixture, station, tuple(done), title, text))
             else:
-                out.append(_block_frame(piece, bend, step, station, title, text))
+                out.append(_block_frame(piece, bend, step, title, text))
             done.append(bend.number)
     return tuple(out)
 
@@ -130,20 +127,15 @@ def _board_frame(
         items.append(Ring(circle=circle, pen="outline" if standing else "grey"))
         if standing:
             items.append(Text(at=s.at, text=str(s.number), height_mm=1.6, anchor="centre", shift=(0.0, -0.8)))
-    items += _wire(was, piece.diameter_mm, "grey")
-    items += _wire(now, piece.diameter_mm, "wire")
+    items += wire_shapes(was, piece.diameter_mm, "grey")
+    items += wire_shapes(now, piece.diameter_mm, "wire")
     # a long straight tail would make the board tiny: what leaves the board is shown cut off
     clip = (x0 - 4.0, y0 - 4.0, x1 + 4.0, y1 + 4.0)
     items += _swing(station, clip, from_end=from_end)
     return Frame(
-        title=title, text=text, items=tuple(_cut_off(items, clip)), box=clip,
+        title=title, text=text, items=tuple(cut_off(items, clip)), box=clip,
         seen="from above the board, the radiator face down" if fixture.face_down else "from above the board",
     )  # fmt: skip
-
-
-def _wire(points: np.ndarray, diameter: float, pen: Pen) -> Iterator[Item]:
-    for contour, holes in outlines_of(points, diameter):
-        yield Shape(contour=contour, holes=holes, pen=pen, filled=pen == "wire")
 
 
 def swing_rad(station: Station, *, from_end: bool) -> tuple[float, float]:
@@ -177,33 +169,9 @@ def _swing(station: Station, box: tuple[float, float, float, float], *, from_end
     yield Arrow(tail=_pt(shown[-3]), tip=_pt(shown[-1]))
 
 
-def _cut_off(items: list[Item], box: tuple[float, float, float, float]) -> Iterator[Item]:
-    """The items with filled and grey wire clipped to a box."""
-    from shapely import MultiPolygon, Polygon
-    from shapely import box as rectangle
-
-    frame = rectangle(*box)
-    for item in items:
-        if not isinstance(item, Shape) or item.pen not in ("wire", "grey"):
-            yield item
-            continue
-        whole = Polygon(item.contour.points(), [h.points() for h in item.holes]).buffer(0.0)
-        part = whole.intersection(frame)
-        for piece in part.geoms if isinstance(part, MultiPolygon) else [part]:
-            if isinstance(piece, Polygon) and not piece.is_empty:
-                contour, *holes = (
-                    Contour.polygon([*ring.coords][:-1]) for ring in (piece.exterior, *piece.interiors)
-                )
-                yield Shape(contour=contour, holes=tuple(holes), pen=item.pen, filled=item.filled)
-
-
-def _block_frame(
-    piece: Piece, bend: Bend, step: BendStep | None, station: Station | None, title: str, text: str
-) -> Frame:
-    """A bend over a dowel: the held wire level, the free end bent down (or up, where a stop block turns left)."""
+def _block_frame(piece: Piece, bend: Bend, step: BendStep | None, title: str, text: str) -> Frame:
+    """A bend over a dowel: the held wire level, the free end bent down."""
     d, r = piece.diameter_mm, bend.inside_radius_mm + piece.diameter_mm / 2.0
-    stops = step is not None and step.place not in (BOARD, BLOCK)
-    up = stops and station is not None and station.turn == "left"
     angle = math.radians(bend.angle_deg)
     path = path_from_bends(
         [PathBend(feed_mm=_BLOCK_SHOWN_MM, rotation_deg=0.0, angle_deg=bend.angle_deg, radius_mm=r)],
@@ -214,28 +182,25 @@ def _block_frame(
     )
     now = path.sample(chord_error_mm=0.02)[:, :2]
     was = np.array([[-_BLOCK_SHOWN_MM, r], [_BLOCK_SHOWN_MM + r * angle, r]])
-    if up:
-        now, was = now * (1.0, -1.0), was * (1.0, -1.0)
     items: list[Item] = [
         Ring(circle=Circle(x_mm=0.0, y_mm=0.0, diameter_mm=2.0 * bend.loaded_inside_radius_mm))
     ]
-    items += _wire(was, d, "grey")
-    items += _wire(now, d, "wire")
+    items += wire_shapes(was, d, "grey")
+    items += wire_shapes(now, d, "wire")
     items.append(
         Text(at=(0.0, 0.0), text=str(bend.number), height_mm=1.6, anchor="centre", shift=(0.0, -0.8))
     )
     side = "" if step is None else " END side" if step.held == "end" else " START side"
-    level = -r - 2.0 * d if up else r + d
     items.append(
-        Text(at=(-_BLOCK_SHOWN_MM, level), text=f"held{side}", height_mm=SMALL_TEXT_MM, shift=(0.0, 0.8))
+        Text(at=(-_BLOCK_SHOWN_MM, r + d), text=f"held{side}", height_mm=SMALL_TEXT_MM, shift=(0.0, 0.8))
     )
     x = _BLOCK_SHOWN_MM + 3.0
     far = bend.loaded_inside_radius_mm
-    low = min(float(now[:, 1].min()), level, -far) - d - 1.0
-    high = max(float(now[:, 1].max()), level, far) + d + 4.0
+    low = min(float(now[:, 1].min()), -far) - d - 1.0
+    high = max(r + d, far) + d + 4.0
     return Frame(
         title=title, text=text, items=tuple(items), box=(-x, low, x + r, high),
-        seen="from above the stop block" if stops else "from the side of the block",
+        seen="from the side of the block",
     )  # fmt: skip
 
 

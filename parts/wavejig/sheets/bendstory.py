@@ -95,8 +95,8 @@ def frames_story(sheet: BuildSheet, wide: float) -> Iterator[Any]:
     yield heading("Bending, step by step")
     yield para(
         "Black circles: pins and discs that stand in this step; the arrow: which way the free side is swung. Grey "
-        "wire: before the bend; filled wire: after it has sprung back. What reaches past the board is cut off in "
-        "the picture. The same steps in colour: fixture/steps.svg.",
+        "wire: before the bend; filled wire: after it has sprung back. What reaches past the picture is cut off."
+        " The same steps in colour: fixture/steps.svg.",
         small=True,
     )
     for told in bending.marks_to_draw(sheet.order):

@@ -8,7 +8,8 @@ from collections.abc import Iterator
 import numpy as np
 
 from wavejig.design.model import Design
-from wavejig.fixture.model import Fixture, Plate
+from wavejig.fixture.bending.stopview import stop_name
+from wavejig.fixture.model import Fixture, Plate, StopBlock
 from wavejig.geometry.plane import Circle
 from wavejig.radiator.model import Radiator
 from wavejig.sheets.common import block
@@ -36,11 +37,13 @@ _TABLES_WIDE_MM = 92.0
 
 
 def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> Sheet:
-    """Board and nest in use, on one sheet."""
+    """What the wire is bent on, board or stop block, and the nest, in use on one sheet."""
     paper = landscape(design.sheet.paper)
     x0, y0, x1, y1 = room(paper)
     left = x1 - _TABLES_WIDE_MM
-    board, nest = fixture.board.outline.bounds(), fixture.nest.outline.bounds()
+    stops = fixture.stop_block if fixture.style == "stop-block" else None
+    plate, called = (fixture.board, "bending board") if stops is None else (stops.plate, "stop block")
+    board, nest = plate.outline.bounds(), fixture.nest.outline.bounds()
     board_high, nest_high = board[3] - board[1], nest[3] - nest[1]
     field_wide, field_high = left - x0 - 26.0, y1 - y0
     # the board matters more: the nest takes what is left
@@ -55,9 +58,9 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
     board_at = (centre - (board[0] + board[2]) / 2.0 * scale, board_base - board[1] * scale)
     views = [
         View(
-            title="BENDING BOARD: seen from above, "
+            title=f"{called.upper()}: seen from above, "
             + (f"radiator face DOWN{legs} (mirror image)" if fixture.face_down else "radiator face up"),
-            items=tuple(_board(fixture, scale)),
+            items=tuple(_board(fixture, scale) if stops is None else _stop_block(stops)),
             at=board_at,
             scale=scale,
             title_at=(centre, board_base - 6.0),
@@ -75,27 +78,51 @@ def fixture_drawing(design: Design, fixture: Fixture, radiator: Radiator) -> She
         paper_mm=paper,
         views=tuple(views),
         tables=tuple(_tables(fixture, radiator, left, y1)),
-        notes=(
-            "Bend in the order of fixture/steps.svg and the build sheet. Put in only the pins the wire has "
-            "reached: a later pin is in the way.",
-            "Pull the wire round until its inner edge reaches the tick (loaded angle), let go, compare "
-            "in the nest.",
-            "Plain circles near the start: the pin at which the cut end stops, and the clamp's two screws."
-            if fixture.clamp is not None
-            else "Plain circle near the start: the pin at which the cut end stops.",
-            "Wire ends spring: wear eye protection.",
-        ),
+        notes=_notes(fixture),
         notes_at=(x0, y0 - 5.0),
         block=block(
             design,
             title="fixture in use",
-            part="bending board and check nest",
+            part=f"{called} and check nest",
             material=f"printed, {design.printer.plastic}",
             scale=scale,
             note="for the bench, not to make it from",
             per=0,
         ),
     )
+
+
+def _notes(fixture: Fixture) -> tuple[str, ...]:
+    order = "Bend in the order of fixture/steps.svg and the build sheet."
+    nest = "let go, compare in the nest."
+    how: tuple[str, ...]
+    if fixture.style == "stop-block":
+        how = (
+            f"{order} For each bend three pins stand and no others: pin, fence, and the stop of the table.",
+            "Lay the wire along its lane against the stop (inside the bend before, where there is one), swing the "
+            f"free side round the pin until its inner edge reaches the tick (loaded angle), {nest}",
+        )
+    else:
+        how = (
+            f"{order} Put in only the pins the wire has reached: a later pin is in the way.",
+            f"Pull the wire round until its inner edge reaches the tick (loaded angle), {nest}",
+            "Plain circles near the start: the pin at which the cut end stops, and the clamp's two screws."
+            if fixture.clamp is not None
+            else "Plain circle near the start: the pin at which the cut end stops.",
+        )
+    return (*how, "Wire ends spring: wear eye protection.")
+
+
+def _stop_block(block: StopBlock) -> Iterator[Item]:
+    """The stop block as it prints: holes, ticks, and the names engraved beside them."""
+    yield Shape(contour=block.plate.outline, pen="outline")
+    for hole in block.plate.holes:
+        yield Ring(circle=Circle(x_mm=hole.at[0], y_mm=hole.at[1], diameter_mm=hole.diameter_mm))
+    for stroke in block.plate.marks:
+        yield Chain(points=stroke.points, pen="mark")
+    x0, y0, x1, y1 = block.plate.outline.bounds()
+    yield LinearDim(a=(x0, y1), b=(x1, y1), offset_mm=6.0, reference=True)
+    yield LinearDim(a=(x0, y0), b=(x0, y1), offset_mm=6.0, angle_deg=90.0, reference=True)
 
 
 def _board(fixture: Fixture, scale: float) -> Iterator[Item]:
@@ -151,7 +178,8 @@ def _plate(plate: Plate) -> Iterator[Item]:
 
 
 def _tables(fixture: Fixture, radiator: Radiator, left: float, top: float) -> Iterator[Table]:
-    tools = {"dowel": "dowel pin", "post": "printed post", "disc": "former disc"}
+    tools = {"dowel": "dowel pin", "turned": "turned pin", "post": "printed post", "disc": "former disc"}
+    stops = fixture.stop_block if fixture.style == "stop-block" else None
     stations = {s.number: s for s in fixture.stations}
     blocks: dict[int, str] = {}
     for b in fixture.blocks:
@@ -162,6 +190,8 @@ def _tables(fixture: Fixture, radiator: Radiator, left: float, top: float) -> It
         s = stations.get(bend.number)
         if s is not None:
             tool = f"{tools[s.tool]} \u00d8{number(s.tool_diameter_mm)}"
+            if stops is not None:
+                tool = f"stop {stop_name(stops, bend.number)}, pin \u00d8{number(s.tool_diameter_mm)}"
             rows.append(
                 (
                     str(bend.number),
@@ -172,10 +202,10 @@ def _tables(fixture: Fixture, radiator: Radiator, left: float, top: float) -> It
                 )
             )
         else:
-            rows.append(
-                (str(bend.number), number(bend.from_start_mm, 1), "off board", number(bend.loaded_angle_deg, 1),
-                 blocks.get(bend.number, "by hand"))
-            )  # fmt: skip
+            where = "off board" if stops is None else "\u2013"
+            angle = number(bend.loaded_angle_deg, 1)
+            on = blocks.get(bend.number, "by hand")
+            rows.append((str(bend.number), number(bend.from_start_mm, 1), where, angle, on))
     yield Table(
         title="BENDS of the main wire, mm along it; angles loaded",
         head=("no.", "from start", "turn", "bend to, \u00b0", "on"),

@@ -93,7 +93,7 @@ def tools(design: Design, fixture: Fixture, spacer: Spacer) -> Rows:
         rows.append((f"{disc.name}, \u00d8{number(disc.diameter_mm)}", printed, "1"))
     for b in fixture.blocks:
         rows.append((f"{b.name}, for {number(b.loaded_angle_deg, 1)}\u00b0", printed, "1"))
-    if fixture.clamp is not None:
+    if fixture.style == "board" and fixture.clamp is not None:
         rows.append((f"clamp, with 2 screws {fixture.clamp.screw}", printed, "1"))
     plastic = f"printed, {spacer.plastic}"
     if spacer.style == "block":
