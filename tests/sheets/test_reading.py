@@ -130,8 +130,12 @@ def test_a_stop_block_s_bends_are_drawn_on_it_with_their_three_pins() -> None:
             assert x0 <= ring.x_mm - half and ring.x_mm + half <= x1
             assert y0 <= ring.y_mm - half and ring.y_mm + half <= y1
         # the wire touches each pin and runs into none
-        (wire,) = [s for s in frame.items if isinstance(s, Shape) and s.pen == "wire"]
-        body = shapely.Polygon(wire.contour.points(), [h.points() for h in wire.holes])
+        wire = [
+            s for s in frame.items if isinstance(s, Shape) and s.pen == "wire"
+        ]  # cut where it leaves the box
+        body = shapely.union_all(
+            [shapely.Polygon(s.contour.points(), [h.points() for h in s.holes]) for s in wire]
+        )
         for c in black:
             gap = body.distance(shapely.Point(c.x_mm, c.y_mm)) - c.diameter_mm / 2.0
             stands = made.design.radiator.covered_diameter_mm / 2.0 if place.side == "leg" else 0.0
