@@ -134,21 +134,38 @@ def _free_spot(
     if np.any(low > high):
         return None
     xs, ys = (np.unique([*np.arange(a, b, step), b, (a + b) / 2.0]) for a, b in zip(low, high, strict=True))
-    spots = np.stack(np.meshgrid(xs, ys, indexing="ij"), axis=-1).reshape(-1, 2)
+    rim = _rim(half - _TOUCH_MM)
+    done, reach = -1.0, 16.0 * step
+    while done < math.inf:
+        near = [c[np.abs(c - w) <= reach] for c, w in zip((xs, ys), panel.wish, strict=True)]
+        spots = np.stack(np.meshgrid(*near, indexing="ij"), axis=-1).reshape(-1, 2)
+        away = np.hypot(*(spots - panel.wish).T)
+        ring = (away > done) & (away <= reach)
+        spots, away = spots[ring], away[ring]
+        free = _clear(tray, taken, spots, half)
+        for spot in spots[free][np.argsort(away[free], kind="stable")]:
+            if inside(spot + rim, loop).all():
+                found: np.ndarray = spot
+                return found
+        # a large sheet has millions of spots, and the nearest few are free most often
+        done, reach = (
+            reach,
+            (4.0 * reach if reach < float(np.hypot(*(high - low + 2.0 * half))) else math.inf),
+        )
+    return None
+
+
+def _clear(
+    tray: Tray, taken: list[tuple[np.ndarray, np.ndarray]], spots: np.ndarray, half: np.ndarray
+) -> np.ndarray:
+    """(n,) bool: about which spots (n, 2) the box meets no hole and no other mark."""
     free = np.ones(len(spots), dtype=bool)
     for hole in tray.holes:
         off = np.maximum(np.abs(spots - (hole.x_mm, hole.y_mm)) - half, 0.0)
         free &= np.hypot(off[:, 0], off[:, 1]) > hole.diameter_mm / 2.0
     for a, b in taken:
         free &= np.any((spots + half < a) | (spots - half > b), axis=1)
-    spots = spots[free]
-    order = np.argsort(np.hypot(*(spots - panel.wish).T), kind="stable")
-    rim = _rim(half - _TOUCH_MM)
-    for spot in spots[order]:
-        if inside(spot + rim, loop).all():
-            found: np.ndarray = spot
-            return found
-    return None
+    return free
 
 
 def _rim(half: np.ndarray) -> np.ndarray:
