@@ -288,14 +288,15 @@ def _printer(recipe: Recipe) -> PrinterDesign:
 def _cutter(recipe: Recipe, stock: _Stock) -> CutterDesign:
     c = recipe.cutter
     smallest = stock.cutter.smallest_hole_in_mm(stock.sheet_mm)
+    kerf = stock.cutter.kerf_mm if c.kerf == "auto" else c.kerf
     return CutterDesign(
         process=c.process,
-        kerf_mm=c.kerf,
+        kerf_mm=kerf,
         offset_in_file=c.compensated == "in-file",
         smallest_hole_mm=smallest if c.smallest_hole == "auto" else c.smallest_hole,
         stock_x_mm=c.stock_sheet[0],
         stock_y_mm=c.stock_sheet[1],
-        spacing_mm=stock.cutter.spacing_in_mm(stock.sheet_mm, c.kerf) if c.spacing == "auto" else c.spacing,
+        spacing_mm=stock.cutter.spacing_in_mm(stock.sheet_mm, kerf) if c.spacing == "auto" else c.spacing,
         margin_mm=stock.cutter.edge_margin_mm if c.margin == "auto" else c.margin,
         grain=_grain(recipe, stock) if c.grain == "auto" else c.grain,
     )

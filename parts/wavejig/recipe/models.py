@@ -418,7 +418,10 @@ class Cutter(_Table):
     process: Annotated[str, word("cutting process", "wavejig stock cutters")] = Field(
         "fibre-laser", description="how the blank is cut"
     )
-    kerf: Annotated[float, quantity(LENGTH, 0.0, 3.0)] = Field(0.2, description="width the cut takes away")
+    kerf: Annotated[float | Auto, auto_quantity(LENGTH, 0.0, 3.0)] = Field(
+        AUTO,
+        description="width the cut takes away; auto: by process (a laser's beam, a router's bit, 0 for a shear)",
+    )
     compensated: Annotated[str, choice("by-shop", "in-file")] = Field(
         "by-shop", description="who offsets the path by half the kerf; most shops do it themselves"
     )

@@ -53,8 +53,8 @@ def _notches(design: Design, tray: Tray) -> Iterator[Finding]:
         severity=WARNING,
         message=f"the corner notches have an inside radius of {tightest:.2f} mm; the sharpest a {process.name} cuts is "
         f"{least:g} mm, so metal stays where the folds begin, and they bulge or tear there",
-        remedy=f'Write what the {process.name} really takes away, kerf = "{process.kerf_mm:g} mm" (the notch grows '
-        "with it), choose a finer process, or drill the notches' corners first.",
+        remedy=f'Leave kerf = "auto", {process.kerf_mm:g} mm for a {process.name} (the notch grows with it), '
+        "choose a finer process, or drill the notches' corners first.",
         where="cutter.kerf",
         source="inside corner radius from table cutters",
     )

@@ -137,9 +137,19 @@ def _machine(design: Design, tray: Tray) -> Iterator[Finding]:
 
 def _holes(design: Design, tray: Tray) -> Iterator[Finding]:
     least = design.cutter.smallest_hole_mm
+    in_file = design.cutter.offset_in_file and tray.own is None  # a dish is only drilled
     for hole in tray.holes:
         at = f"({hole.x_mm:.2f}, {hole.y_mm:.2f}) mm"
-        if hole.diameter_mm < least - 1e-9:
+        if in_file and hole.diameter_mm <= design.cutter.kerf_mm:
+            yield Finding(
+                code="hole-below-kerf",
+                severity=ERROR,
+                message=f"the {hole.purpose} hole of {hole.diameter_mm:g} mm at {at} is no wider than the "
+                f"{design.cutter.kerf_mm:g} mm the {design.cutter.process} takes away, so the file has no path for it",
+                remedy='Leave compensated = "by-shop", choose a finer process, or make the hole larger.',
+                where="cutter.compensated",
+            )
+        elif hole.diameter_mm < least - 1e-9:
             yield Finding(
                 code="hole-small",
                 severity=WARNING,
