@@ -77,8 +77,9 @@ def test_stopping_ends_all_and_leaves_nothing(way: signal.Signals, tmp_path: Pat
     given = recipes(tmp_path, YARD, YARD.replace("yard", "lawn"))
     out = tmp_path / "out"
     process = subprocess.Popen(
-        command(*given, "--out", out, "--jobs", 2), stderr=subprocess.PIPE, text=True, start_new_session=True
-    )
+        command(*given, "--out", out, "--jobs", 2), stderr=subprocess.PIPE, text=True, start_new_session=True,
+        preexec_fn=lambda: signal.signal(signal.SIGINT, signal.SIG_DFL),  # ignored in a shell's background
+    )  # fmt: skip
     until(lambda: out.is_dir() and len([p for p in out.iterdir() if ".building-" in p.name]) == 2)
     if way is signal.SIGINT:
         os.killpg(process.pid, way)  # as a terminal does: to all of them
