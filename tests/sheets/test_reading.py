@@ -15,17 +15,20 @@ import shapely
 from tests.designs import design
 from tests.sheets.conftest import CUT, DEMOS, inspected, pattern_of
 from wavejig.batch.plan import plan as plan_batch
-from wavejig.fixture.bending.model import BendOrder
+from wavejig.fixture.bending.model import BARE, BendOrder
 from wavejig.fixture.bending.order import plan_order
 from wavejig.fixture.solid import printables
 from wavejig.sheets import bending, checks, lists
+from wavejig.sheets.buildmodel import BuildSheet
 from wavejig.sheets.fixture import fixture_drawing
 from wavejig.sheets.fonts import width_mm
 from wavejig.sheets.laid import laid
 from wavejig.sheets.layout import lay_out
-from wavejig.sheets.marks import Stroke, Word
+from wavejig.sheets.marks import DimGroup, Stroke, Word
 from wavejig.sheets.model import Ring, Shape, Sheet, View, number
 from wavejig.sheets.process import assembly_steps
+from wavejig.sheets.proving import proving_story
+from wavejig.sheets.radiator import radiator_drawing
 from wavejig.sheets.sheetfiles import drawings
 from wavejig.sheets.template import templates
 from wavejig.shop import Inspection, inspect
@@ -309,6 +312,77 @@ def test_no_line_of_the_sheet_metal_drawings_runs_through_their_lettering(name: 
         boxes = [_box(w) for w in words]
         pairs = shapely.STRtree(boxes).query(boxes, predicate="intersects").T.tolist()
         assert all(a == b for a, b in pairs), view.title
+
+
+# A small wire with flat lobes: no low corner to hang a radius on, little room below.
+_FLAT = {"side": "11.85 mm", "lobe_angle": "60.5 deg", "standoff": "9.7 mm", "feed_gap": "3.9 mm"}
+
+
+@cache
+def flat_and_small() -> Inspection:
+    band = ["5.725 GHz", "5.875 GHz"]
+    return inspect(
+        design(wire="1.0 mm", band=band, radiator=_FLAT, feed={"style": "tube", "tube": "tube-2.2"})
+    )
+
+
+@pytest.mark.parametrize("name", ["", *DEMOS])
+def test_the_radiator_s_sizes_stand_clear_of_each_other_and_of_the_title(name: str) -> None:
+    """The radius is where it once ran through another dimension and onto the title."""
+    made = inspected(name) if name else flat_and_small()
+    assert made.radiator
+    view = radiator_drawing(made.design, made.radiator).views[0]
+    things = list(lay_out(view))
+    dims = [t for t in things if isinstance(t, DimGroup)]
+    for radius in (d for d in dims if d.kind == "radius"):
+        (word,) = (_box(w) for w in radius.parts if isinstance(w, Word))
+        lines = [shapely.LineString(p.points) for p in radius.parts if isinstance(p, Stroke) and p.points]
+        for other in (d for d in dims if d is not radius):
+            for part in other.parts:
+                if isinstance(part, Word):
+                    assert not _box(part).intersects(word), (radius.text, part.text)
+                    assert not any(_box(part).intersects(line) for line in lines), (radius.text, part.text)
+                elif isinstance(part, Stroke) and part.points:
+                    assert not word.intersects(shapely.LineString(part.points)), (radius.text, other.text)
+        for title in (_box(w) for w in things if isinstance(w, Word)):
+            assert not title.intersects(word)
+
+
+def test_start_is_written_clear_of_the_board_s_holes() -> None:
+    for made in (flat_and_small(), *map(inspected, ("saltmarsh-2g4", "boatshed-5g8"))):
+        assert made.radiator and made.fixture
+        view = fixture_drawing(made.design, made.fixture, made.radiator).views[0]
+        (start,) = [w for w in lay_out(view) if isinstance(w, Word) and w.text == "start"]
+        assert not any(_box(start).intersects(ring) for ring in _lines(view, ()))
+
+
+def test_a_bend_no_block_has_room_for_is_not_sent_to_a_block() -> None:
+    """Table and steps tell the same of it."""
+    made, order = inspected("saltmarsh-2g4"), order_of("saltmarsh-2g4")
+    assert made.radiator and made.fixture
+    bare = {(p.piece, s.number) for p in order.pieces for s in p.steps if s.tool == BARE}
+    assert bare
+    shown = lists.bends(made.radiator, made.fixture, order)
+    bent = [p for p in made.radiator.pieces if p.bends]
+    for piece, (_, rows) in zip(bent, shown, strict=True):
+        for row in rows:
+            assert ("by hand" in row[-1]) is ((piece.role, int(row[0])) in bare), (piece.role, row)
+
+
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "boatshed-5g8"])
+def test_the_bench_and_the_cautions_speak_of_what_is_there(name: str) -> None:
+    """Legs where there are some, and the dust of laminate where it is laminate."""
+    made = inspected(name)
+    sheet = BuildSheet(inspection=made, pattern=pattern_of(made))
+    told = " ".join(getattr(f, "text", "") for f in proving_story(sheet, 180.0))
+    assert ("gap, legs or standoff" in told) is (made.design.feed.style == "legs")
+    assert ("Laminate dust" in told) is (not made.design.reflector.metal.foldable)
+
+
+def test_what_found_no_room_on_the_fixture_says_what_to_do() -> None:
+    notes = [f for f in flat_and_small().findings if f.code == "fixture-note" and "angle mark" in f.message]
+    assert notes
+    assert all("angle the step names" in f.remedy for f in notes)
 
 
 @pytest.mark.parametrize("name", ["saltmarsh-2g4", "ridge-868"])

@@ -18,6 +18,7 @@ from wavejig.sheets.fonts import width_mm
 from wavejig.sheets.frame import landscape, room
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
+    SMALL_TEXT_MM,
     Arrow,
     Chain,
     Item,
@@ -154,11 +155,25 @@ def _board(fixture: Fixture, scale: float) -> Iterator[Item]:
         tip = np.array(first.tangent) + side - u * 2.0 / scale
         tail = tip - u * 12.0 / scale
         yield Arrow(tail=(float(tail[0]), float(tail[1])), tip=(float(tip[0]), float(tip[1])), pen="outline")
-        beside = (tip + tail) / 2.0 + side * 0.8
-        yield Text(at=(float(beside[0]), float(beside[1])), text="start", anchor="centre", shift=(0.0, -0.9))
+        x, y = _clear_of_holes(fixture, [tip + side * 0.8 - u * k / scale for k in range(2, 34, 2)], scale)
+        yield Text(at=(x, y), text="start", anchor="centre", shift=(0.0, -0.9))
     x0, y0, x1, y1 = board.outline.bounds()
     yield LinearDim(a=(x0, y1), b=(x1, y1), offset_mm=6.0, reference=True)
     yield LinearDim(a=(x0, y0), b=(x0, y1), offset_mm=6.0, angle_deg=90.0, reference=True)
+
+
+def _clear_of_holes(fixture: Fixture, places: list[np.ndarray], scale: float) -> tuple[float, float]:
+    """The first of some places where "start" keeps off the board's holes; the first of all where none does."""
+    half = np.array([width_mm("start", SMALL_TEXT_MM) / 2.0 + 0.5, SMALL_TEXT_MM / 2.0 + 0.5]) / scale
+    circles = [(h.at, h.diameter_mm / 2.0) for h in fixture.board.holes]
+    circles += [(s.at, s.tool_diameter_mm / 2.0) for s in fixture.stations]
+
+    def clear(place: np.ndarray) -> bool:
+        beyond = [(np.maximum(np.abs(np.subtract(at, place)) - half, 0.0), r) for at, r in circles]
+        return all(float(np.linalg.norm(off)) > r for off, r in beyond)
+
+    found = next((p for p in places if clear(p)), places[0])
+    return (float(found[0]), float(found[1]))
 
 
 def _nest(nest: Plate) -> Iterator[Item]:

@@ -8,7 +8,7 @@ from wavejig.batch.bill import fixture_pins
 from wavejig.batch.model import Batch
 from wavejig.batch.plates import spacer_sets
 from wavejig.design.model import Design
-from wavejig.fixture.bending.model import BendOrder
+from wavejig.fixture.bending.model import BARE, BendOrder
 from wavejig.fixture.model import Fixture
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.stock import bought_length_mm
@@ -162,6 +162,8 @@ def bends(
 ) -> tuple[tuple[str, Rows], ...]:
     """The bend table of each piece that has bends: its heading and rows (see `BEND_HEAD`)."""
     stations = {s.number: s for s in fixture.stations}
+    steps = [s for p in (order.pieces if order is not None else ()) if p.found for s in p.steps]
+    bent_bare = {(s.piece, s.number) for s in steps if s.tool == BARE}
     out = []
     for p in radiator.pieces:
         if not p.bends:
@@ -174,10 +176,12 @@ def bends(
                 where = "board" if fixture.style == "board" else "stop block"
                 on = f"{where}, {s.tool} \u00d8{number(s.tool_diameter_mm)}, {s.turn}"
             elif p.role != "inner":
-                on = next(
+                block = next(
                     (k.name for k in fixture.blocks if abs(k.loaded_angle_deg - b.loaded_angle_deg) < 0.05),
-                    "by hand",
+                    "",
                 )
+                bare = (p.role, b.number) in bent_bare
+                on = f"dowel of {block}, by hand" if bare and block else block or on
             angles = (f"{number(a, 1)}\u00b0" for a in (b.rotation_deg, b.angle_deg, b.loaded_angle_deg))
             radii = (number(b.inside_radius_mm), number(b.loaded_inside_radius_mm))
             rows.append((str(b.number), number(b.from_start_mm), number(b.feed_mm), *angles, *radii, on))

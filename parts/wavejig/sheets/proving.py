@@ -60,7 +60,7 @@ def _bench(sheet: BuildSheet, wide: float) -> Iterator[Any]:
         f"Reflection{plane} analyser calibrated at that plane, antenna pointing at free space. Compare "
         "with the prediction: "
         "a shifted dip says the loops are too long (dip low) or too short (dip high); a shallow dip "
-        "says gap, legs or standoff."
+        f"says gap, {'legs' if sheet.design.feed.style == 'legs' else 'height of the tube'} or standoff."
     )
     if p is None:
         yield para("No prediction was made for this pack: write down what you measure.", bold=True)
@@ -87,6 +87,11 @@ def _cautions(sheet: BuildSheet, wide: float) -> Iterator[Any]:
         "Edges and ends:",
         "cut sheet is sharp, bent wire is springy. Gloves for sheet, eye protection for wire.",
     )
+    if not design.reflector.metal.foldable:
+        yield lead(
+            "Laminate dust:",
+            "glass and resin; it harms lungs and skin. Drill and file wet, or with extraction and a mask.",
+        )
     yield lead(
         "Soldering:",
         "burns; flux fumes harm lungs: draw them off. Leaded solder: wash your hands, no food at the "

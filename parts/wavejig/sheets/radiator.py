@@ -5,14 +5,12 @@ Sides, gaps and angles are those of the centrelines, between the points where th
 
 from __future__ import annotations
 
-import itertools
-import math
 from collections.abc import Iterator
 
 import numpy as np
 
 from wavejig.design.model import Design
-from wavejig.geometry.plane import Circle, Contour
+from wavejig.geometry.plane import Contour
 from wavejig.radiator.drawing import views as plan_views
 from wavejig.radiator.model import Radiator
 from wavejig.sheets.common import block, plus_minus, wire_text
@@ -21,14 +19,11 @@ from wavejig.sheets.fit import best_scale
 from wavejig.sheets.frame import landscape, room
 from wavejig.sheets.model import (
     DIM_TEXT_MM,
-    AngleDim,
     Arrow,
     Chain,
-    DiameterDim,
     Item,
     Line,
     LinearDim,
-    RadiusDim,
     Ring,
     Shape,
     Sheet,
@@ -37,6 +32,7 @@ from wavejig.sheets.model import (
     number,
 )
 from wavejig.sheets.project import seen_wire
+from wavejig.sheets.radiatorsizes import plan_sizes
 from wavejig.sheets.radiatortables import corner_tables, pieces_table
 
 
@@ -127,7 +123,7 @@ def _plan(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
         for line in view.centrelines:
             yield Chain(points=line.points, pen="centre")
     low, high = _bounds(radiator)
-    yield from _plan_sizes(design, radiator, scale)
+    yield from plan_sizes(design, radiator, scale)
     # where the view from the end looks from
     x, y = high[0] + 9.0 / scale, low[1] - 4.0 / scale
     yield Arrow(tail=(x + 9.0 / scale, y), tip=(x, y), pen="outline")
@@ -136,92 +132,6 @@ def _plan(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
     )
     yield Text(at=(0.0, high[1]), text="+y", anchor="centre", shift=(0.0, 7.5))
     yield Arrow(tail=(0.0, high[1] - 2.0 / scale), tip=(0.0, high[1] + 6.0 / scale))
-
-
-def _plan_sizes(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
-    r, tol = design.radiator, design.tolerances
-    corners = [c.at for c in r.corners]
-    side = plus_minus(tol.side_mm)
-    arcs = [a for a in radiator.main.path.arcs if abs(a.normal[2]) > 1.0 - 1e-9]
-    if r.lobe_diameter_mm is not None:
-        big = [a for a in arcs if a.angle_deg > 180.0]
-        for arc in big[:1]:
-            circle = Circle(x_mm=arc.centre[0], y_mm=arc.centre[1], diameter_mm=2.0 * arc.radius_mm)
-            yield DiameterDim(
-                circle=circle,
-                angle_deg=35.0 if arc.centre[0] > 0 else 145.0,
-                after=side,
-                before=f"{len(big)}\u00d7 ",
-            )
-        if len(big) > 1:
-            a, b = sorted((b.centre[:2] for b in big[:2]), key=lambda p: p[0])
-            yield LinearDim(a=a, b=b, offset_mm=-(big[0].radius_mm * scale + 9.0), after=side)
-    else:
-        xs, ys = [c[0] for c in corners], [c[1] for c in corners]
-        left, right = min(xs), max(xs)
-        bottom = min(ys)
-        far_left = max((c for c in corners if abs(c[0] - left) < 1e-6), key=lambda c: -c[1])
-        far_right = max((c for c in corners if abs(c[0] - right) < 1e-6), key=lambda c: -c[1])
-        low = -(far_left[1] - bottom) * scale - 16.0
-        yield LinearDim(a=far_left[:2], b=far_right[:2], offset_mm=low, after=side)
-        top, under = max(corners, key=lambda c: (c[1], -c[0])), min(corners, key=lambda c: (c[1], c[0]))
-        a = (under[0], under[1])
-        yield LinearDim(
-            a=a, b=(top[0], top[1]), offset_mm=(a[0] - left) * scale + 9.0, angle_deg=90.0, after=side
-        )
-    if r.side_mm is not None:
-        yield from _side_size(design, corners, scale)
-    small = [a for a in arcs if a.angle_deg <= 180.0]
-    if small:
-        # a corner low down near the middle: there is room below it, between two lobes
-        arc = min(small, key=lambda a: (round(a.centre[1], 3), abs(a.centre[0]), -a.centre[0]))
-        inside = arc.radius_mm - r.wire_diameter_mm / 2.0
-        out = np.subtract(arc.middle, arc.centre)
-        middle = math.degrees(math.atan2(out[1], out[0]))
-        hangs = middle < 0.0
-        lean = min(35.0, arc.angle_deg / 2.0 - 5.0)
-        alike = sum(1 for a in arcs if abs(a.radius_mm - arc.radius_mm) < 1e-6)
-        yield RadiusDim(
-            centre=(arc.centre[0], arc.centre[1]),
-            radius_mm=inside,
-            angle_deg=middle - lean if hangs else middle,
-            inside=not hangs,
-            reach_mm=8.0 if hangs else 26.0,
-            before=f"{alike}\u00d7 " if alike > 1 else "",
-            after=" inside",
-        )
-
-
-def _side_size(design: Design, corners: list[tuple[float, float, float]], scale: float) -> Iterator[Item]:
-    """One side of a lobe along itself, and the angle at the corner opposite the feed."""
-    r, tol = design.radiator, design.tolerances
-    assert r.side_mm is not None
-    sides = [
-        (np.array(a[:2]), np.array(b[:2]))
-        for a, b in itertools.pairwise(corners)
-        if abs(math.dist(a[:2], b[:2]) - r.side_mm) < 0.2
-    ]
-    if not sides:
-        return
-    # on the upper right, measured outside
-    a, b = max(sides, key=lambda s: float((s[0] + s[1]) @ np.array([1.0, 1.2])))
-    if a[1] > b[1]:
-        a, b = b, a
-    angle = math.degrees(math.atan2(b[1] - a[1], b[0] - a[0]))
-    yield LinearDim(a=_xy(a), b=_xy(b), offset_mm=-9.0, angle_deg=angle, after=plus_minus(tol.side_mm))
-    for before, at, after in zip(corners, corners[1:], corners[2:], strict=False):
-        if abs(at[0] - max(c[0] for c in corners)) > 1e-6:
-            continue
-        u, v = np.subtract(before, at)[:2], np.subtract(after, at)[:2]
-        one, two = (math.degrees(math.atan2(w[1], w[0])) for w in (u, v))
-        if (two - one) % 360.0 > 180.0:
-            one, two = two, one
-        yield AngleDim(
-            vertex=(at[0], at[1]), from_deg=one, to_deg=two,
-            radius_mm=min(16.0, 0.5 * r.side_mm * scale), after=plus_minus(tol.bend_angle_deg),
-            outside=r.side_mm * scale < 36.0,
-        )  # fmt: skip
-        break
 
 
 def _front(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
@@ -243,7 +153,3 @@ def _front(design: Design, radiator: Radiator, scale: float) -> Iterator[Item]:
         after=plus_minus(design.tolerances.standoff_mm),
     )
     yield Text(at=(left, 0.0), text="reflector", shift=(1.0, 0.8))
-
-
-def _xy(v: np.ndarray) -> tuple[float, float]:
-    return (float(v[0]), float(v[1]))

@@ -59,7 +59,8 @@ def fixture_findings(design: Design, fixture: Fixture) -> Iterator[Finding]:
             code="fixture-note",
             severity=NOTE,
             message=note.rstrip("."),
-            remedy="Nothing to change: do by hand what it says.",
+            remedy="Nothing to change in the recipe. What is not engraved stands on the fixture's drawing; without a "
+            "tick, bend to the angle the step names and compare in the check nest.",
             where="fixture",
         )
     for load in fixture.pins.too_weak[:1]:
