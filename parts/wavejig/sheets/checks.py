@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from wavejig.design.model import Design, OwnShape
+from wavejig.fixture.nest import LIES
 from wavejig.radiator.model import Radiator
 from wavejig.reflector.flat import FlatPattern
 from wavejig.reflector.model import Tray
@@ -16,9 +17,6 @@ from wavejig.sheets.model import number
 
 if TYPE_CHECKING:
     from wavejig.field.prediction import Prediction  # the solver is not needed to set its figures
-
-LIES = {"legs": "face down, legs up", "tube": "face down"}
-"""How the bent wire lies in the check nest, by style of feed; with a tube it has no legs."""
 
 Rows = tuple[tuple[str, ...], ...]
 

@@ -11,9 +11,9 @@ from collections.abc import Iterator
 from wavejig.design.model import Design
 from wavejig.fixture.bending.model import BendOrder
 from wavejig.fixture.model import Fixture
+from wavejig.fixture.nest import LIES
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.stock import bought_length_mm
-from wavejig.sheets.checks import LIES
 from wavejig.sheets.feedsteps import (
     NAMES,
     leg_steps,
