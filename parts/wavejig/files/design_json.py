@@ -13,6 +13,7 @@ from wavejig.files.making_json import Made, fixture_data, prints_data, spacer_da
 from wavejig.fixture.model import Fixture
 from wavejig.geometry.path import Arc, Segment
 from wavejig.radiator.model import Joint, Piece, Radiator
+from wavejig.radiator.stock import bought_length_mm, part_of
 from wavejig.reflector.flat import FlatPattern
 from wavejig.shop.finding import Finding
 from wavejig.spacer.model import Spacer
@@ -52,9 +53,15 @@ def design_data(
             "feed_gap": _n(r.feed_gap_mm),
             "pin_diameter": _n(r.pin_diameter_mm),
             "neutral_axis_factor": _n(r.neutral_axis_factor),
-            **_piece(main),
+            **_piece(radiator, main),
             "pieces": [
-                {"role": p.role, **_piece(p), "neutral_axis_factor": _n(r.neutral_axis_factor)}
+                {
+                    "role": p.role,
+                    "part_of": part_of(p),
+                    **_piece(radiator, p),
+                    "bared": _n(bought_length_mm(radiator, p) - p.cut_length_mm),
+                    "neutral_axis_factor": _n(r.neutral_axis_factor),
+                }
                 for p in radiator.pieces[1:]
             ],
             "joints": [_joint(j) for j in radiator.joints],
@@ -103,6 +110,9 @@ def check_design_json(path: Path, data: dict[str, Any]) -> None:
             else math.radians(s["angle"]) * (s["radius"] - d / 2.0 + n * d)
             for s in piece["centreline"]
         )
+        to_cut = piece["developed_length"] + piece["trim"] + piece.get("bared", 0.0)
+        if abs(to_cut - piece["cut_length"]) > 1e-5:
+            raise FileCheckError(path, f"cut length {piece['cut_length']}", f"{to_cut:.6f}")
         if abs(length - piece["developed_length"]) > 1e-5:
             raise FileCheckError(path, f"developed length {piece['developed_length']}", f"{length:.6f}")
 
@@ -119,11 +129,12 @@ def finding_data(f: Finding) -> dict[str, str]:
     }
 
 
-def _piece(piece: Piece) -> dict[str, Any]:
+def _piece(radiator: Radiator, piece: Piece) -> dict[str, Any]:
     return {
         "wire_diameter": _n(piece.diameter_mm),
         "developed_length": _n(piece.developed_length_mm),
-        "cut_length": _n(piece.cut_length_mm),
+        # of what is cut: a tube's wall and, beyond it, the conductor bared of it (itself part of the tube)
+        "cut_length": _n(bought_length_mm(radiator, piece)),
         "trim": _n(piece.trim_mm),
         "centreline": [_segment(s) for s in piece.path.segments],
         "bends": [

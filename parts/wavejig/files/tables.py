@@ -7,6 +7,7 @@ from pathlib import Path
 
 from wavejig.files.errors import FileCheckError
 from wavejig.radiator.model import Radiator
+from wavejig.radiator.stock import bought_length_mm
 
 BEND_COLUMNS = (
     "piece",
@@ -31,7 +32,8 @@ def write_bend_table(radiator: Radiator, path: Path) -> None:
         writer = csv.writer(stream, lineterminator="\n")
         writer.writerow(BEND_COLUMNS)
         for piece in radiator.pieces:
-            head = (piece.role, *_mm(piece.diameter_mm, piece.cut_length_mm, piece.developed_length_mm))
+            cut = bought_length_mm(radiator, piece)
+            head = (piece.role, *_mm(piece.diameter_mm, cut, piece.developed_length_mm))
             if not piece.bends:
                 writer.writerow((*head, 0, "", "", "", "", "", "", "", "straight"))
             for b in piece.bends:
@@ -53,6 +55,10 @@ def check_bend_table(path: Path, radiator: Radiator) -> None:
     expected = sum(max(len(p.bends), 1) for p in radiator.pieces)
     if len(rows) != expected:
         raise FileCheckError(path, f"{len(rows)} rows", f"{expected} rows")
+    to_cut = {p.role: bought_length_mm(radiator, p) for p in radiator.pieces}
+    for row in rows:
+        if abs(float(row["cut_length_mm"]) - to_cut[row["piece"]]) > 0.0006:
+            raise FileCheckError(path, f"cut length {row['cut_length_mm']}", f"{to_cut[row['piece']]:.3f}")
     found = iter(rows)
     for piece in radiator.pieces:
         for b in piece.bends:

@@ -28,6 +28,11 @@ def bought_length_mm(radiator: Radiator, piece: Piece) -> float:
     return piece.cut_length_mm + sum(p.cut_length_mm for p in radiator.pieces if p.role == "inner")
 
 
+def part_of(piece: Piece) -> str | None:
+    """The role of the piece whose cut length holds this one's; None where it is cut by itself."""
+    return "tube" if piece.role == "inner" else None
+
+
 def stock_of(design: Design, piece: Piece) -> Stock | None:
     """The stock of a piece; None for a tube's inner conductor, which comes with the tube."""
     w = design.wire_stock
