@@ -171,6 +171,8 @@ BAD: list[Row] = [
     ("paper in small letters", GOOD + '[sheet]\npaper = "a4"\n', 2, 11, "sheet.paper", ('Did you mean "A4"?',)),
     ("a second angle", GOOD + '[sheet]\nprojection = "second"\n', 2, 11, "sheet.projection", ('"first"', '"third"')),
     ("projection as a number", GOOD + "[sheet]\nprojection = 1\n", 2, 11, "sheet.projection", ("in quotes",)),
+    ("a yield wished for", GOOD + '[sheet]\nexpected_yield = "90 %"\n', 2, 11, "sheet.expected_yield", ('"yes"', '"no"')),
+    ("a yield as true", GOOD + "[sheet]\nexpected_yield = true\n", 2, 11, "sheet.expected_yield", ('"yes"',)),
     ("paper in the wrong table", GOOD + '[station]\npaper = "A4"\n', 2, 11, "station.paper", ("[sheet]",)),
     # -- the batch
     ("unknown grain", GOOD + '[cutter]\ngrain = "along"\n', 2, 11, "cutter.grain", ('"none"',)),

@@ -11,6 +11,7 @@ from wavejig.shop import Inspection, inspect
 
 FOUR = {"lips": "four"}
 BESIDE = ("test_own.py", "test_predicted.py", "test_corners_and_prints.py")
+MOVED = ("fixture/test_liftout.py", "spacer/test_withdraw.py", "fixture/bending/test_order.py")
 # code, severity, tables that raise it, tables that do not
 CASES: list[tuple[str, str, dict[str, Any], dict[str, Any]]] = [
     ("wire-radius-tight", "error", {"radiator": {"inside_bend_radius": "0.3 mm", "temper": "hard"}}, {}),
@@ -70,6 +71,7 @@ CASES: list[tuple[str, str, dict[str, Any], dict[str, Any]]] = [
     ("wires-touch", "error", {"radiator": {"feed_gap": "1 mm"}}, {"radiator": {"feed_gap": "3 mm"}}),
     ("straight-short", "note", {"family": "twin-loop"}, {"feed": {"style": "tube"}}),
     ("measure-connector", "note", {}, {"feed": {"style": "tube"}}),
+    ("spacer-conflict", "error", {"reflector": {"base": ["40 mm", "40 mm"]}}, {}),
     ("spacer-note", "note", {"spacer": {"style": "posts", "material": "ASA"}}, {}),
     ("fixture-note", "note", {"family": "twin-loop", "band": ["902 MHz", "928 MHz"], "wire": "10 AWG",
                               "feed": {"style": "legs", "leg": "1.8 mm"},
@@ -140,5 +142,8 @@ def test_each_code_in_the_code_is_tried_here() -> None:
     # the cases of these rooms' findings stand in files of their own
     beside = "".join(Path(__file__).with_name(n).read_text() for n in BESIDE)
     untried = codes - {c[0] for c in CASES} - set(re.findall(r'"([a-z]+(?:-[a-z]+)+)"', beside))
-    # raised only by designs that other rooms' tests build, or by rare accidents of layout
-    assert untried <= {"spacer-conflict", "wire-caught", "spacer-caught", "no-bend-order"}
+    # raised while a pack is built, from moving wire and pieces; no plan of ours gets stuck, so tests spoil one
+    assert untried == {"wire-caught", "spacer-caught", "no-bend-order"}
+    tests = Path(__file__).parents[1]
+    moved = "".join((tests / name).read_text() for name in MOVED)
+    assert all(f'told.code == "{code}"' in moved for code in untried)

@@ -15,6 +15,7 @@ from wavejig.design import Design, resolve
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.plan import plan as plan_radiator
 from wavejig.recipe.reader import read_recipe
+from wavejig.shop.ways import way_findings
 from wavejig.spacer.bed import BED_MARGIN_MM
 from wavejig.spacer.plan import extent_mm, plan
 from wavejig.spacer.solid import printables
@@ -60,6 +61,8 @@ def test_a_piece_that_would_be_caught_is_told(fault: str, named: Callable[[str],
     bad = replace(spacer, pieces=(replace(first, travel_mm=travel, withdrawal=way), *rest))
     caught, *others = withdrawals(design, radiator, bad)
     assert not caught.free and all(w.free for w in others)
+    (told,) = way_findings((), (caught, *others))
+    assert told.code == "spacer-caught" and first.name in told.message
 
 
 def test_the_way_starts_at_rest_goes_out_and_then_only_up(named: Callable[[str], Antenna]) -> None:
