@@ -15,16 +15,17 @@ import numpy as np
 import pytest
 from hypothesis import event, given, settings
 from hypothesis import strategies as st
-from shapely import LineString, MultiLineString, Point, Polygon, affinity, union_all
+from shapely import LineString, MultiLineString, Point, Polygon, affinity, box, union_all
 
 from wavejig.design import Design, resolve
 from wavejig.geometry.plane import Contour
+from wavejig.geometry.region import grooves
 from wavejig.radiator.model import Radiator
 from wavejig.radiator.plan import plan as plan_radiator
 from wavejig.recipe.reader import read_recipe
 from wavejig.spacer import profile
 from wavejig.spacer.keepout import FOOT_FREE_MM, hardware_radius_mm
-from wavejig.spacer.marks import piece_marks
+from wavejig.spacer.marks import line_mm, piece_marks
 from wavejig.spacer.model import BlockPiece, Spacer
 from wavejig.spacer.plan import plan
 from wavejig.spacer.profile import Columns, Frame
@@ -523,6 +524,20 @@ def test_engraving_says_as_much_as_fits() -> None:
     assert text(13.8, 7.5) == "A" and text(13.8, 7.5, 0.25) == "A / V1A2B"
     assert text(9.0, 5.0) == "A"
     assert text(9.0, 4.0) == ""
+
+
+@pytest.mark.parametrize("nozzle", [0.1, 0.25, 0.4, 0.6, 0.8, 1.2, 2.0])
+@pytest.mark.parametrize("tall", [4.0, 6.0, 7.4, 9.0, 13.0])
+def test_grooves_stay_within_the_flat_top_sharp_corners_and_all(nozzle: float, tall: float) -> None:
+    """A groove that crosses the top's edge leaves a face that no kernel can mesh."""
+    said, strokes = piece_marks(
+        "spacer-a", "WAVy-4g7Z", "4MNW", 8.2, (0.0, 100.0, 0.0, tall), Frame(direction=(0.0, 1.0)), nozzle
+    )
+    assert said or tall < 2.5 + 1.25 * nozzle + 2.0 * (0.4 + 0.625 * nozzle)
+    top = box(0.0, 0.0, 100.0, tall)
+    for groove in grooves(strokes, line_mm(nozzle)):
+        cut = Polygon(groove.outer)
+        assert top.contains(cut) and top.exterior.distance(cut) > 0.3
 
 
 @pytest.mark.parametrize("direction", [(0.0, 1.0), (0.0, -1.0), (1.0, 0.0), (-1.0, 0.0)])

@@ -289,15 +289,17 @@ def _place(
 def _marks(design: Design, g: _Grip, s: _Spring) -> tuple[str, tuple[Stroke, ...]]:
     """Name and version along the arm's side, as much as fits."""
     line = marks.line_mm(design.printer.nozzle_mm)
-    least = marks.least_text_mm(design.printer.nozzle_mm)
+    least, edge = marks.least_text_mm(design.printer.nozzle_mm), marks.edge_mm(design.printer.nozzle_mm)
     low = g.height - s.press
     v0, v1 = g.back + BEFORE_MM, g.spine + s.depth
-    height = min(marks.MOST_TEXT_MM, s.depth - 2.0 * marks.EDGE_MM - line)
+    height = min(marks.MOST_TEXT_MM, s.depth - 2.0 * edge - line)
     state = f"V{version_code(design)}"
     for text in (f"{design.name} {state}", state):
         for size in (height, least):
-            wide = text_width_mm(text, size) + 2.0 * marks.EDGE_MM + line
-            if least - 1e-9 <= size <= height + 1e-9 and wide <= v1 - v0:
+            if not least - 1e-9 <= size <= height + 1e-9:
+                continue
+            wide = text_width_mm(text, size) + 2.0 * edge + line
+            if wide <= v1 - v0:
                 middle = low - BEFORE_MM * math.tan(math.radians(WEDGE_DEG)) + s.depth / 2.0
                 return text, strokes(text, size, x_mm=(v0 + v1) / 2.0, y_mm=middle, align="centre")
     return "", ()

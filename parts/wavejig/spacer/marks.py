@@ -14,6 +14,7 @@ DEPTH_MM = 0.6
 LEAST_TEXT_MM = 2.5
 MOST_TEXT_MM = 5.0
 EDGE_MM = 0.7  # between lettering and an edge
+LEAST_WALL_MM = 0.4  # between a letter's sharp corner and an edge
 LEADING_MM = 0.9  # between two lines, groove to groove
 LEAST_BAND_MM = LEAST_TEXT_MM + LINE_MM + 2.0 * EDGE_MM
 _ARROW = 0.9  # width of the arrow's box beside the first line, in text heights
@@ -22,6 +23,11 @@ _ARROW = 0.9  # width of the arrow's box beside the first line, in text heights
 def line_mm(nozzle_mm: float) -> float:
     """Width of a groove: finer with a finer nozzle, never below what it can leave open."""
     return max(1.25 * nozzle_mm, LINE_MM * min(1.0, nozzle_mm / NOZZLE_MM))
+
+
+def edge_mm(nozzle_mm: float) -> float:
+    """Room between a groove's side and an edge: a sharp corner of a letter reaches beyond it by half its width."""
+    return max(EDGE_MM, line_mm(nozzle_mm) / 2.0 + LEAST_WALL_MM)
 
 
 def least_text_mm(nozzle_mm: float) -> float:
@@ -43,12 +49,12 @@ def piece_marks(
     band: u from, u to, v from, v to of the flat top. Of letter, name, version and standoff as much is
     written as fits at a legible height, in one line or two; nothing where not even the letter fits.
     """
-    groove, least = line_mm(nozzle_mm), least_text_mm(nozzle_mm)
+    groove, least, edge = line_mm(nozzle_mm), least_text_mm(nozzle_mm), edge_mm(nozzle_mm)
     u0, u1, v0, v1 = band
     letter = piece_name.rsplit("-", 1)[-1].upper()
     size = f"{round(standoff_mm, 2):g} mm"
-    tall = v1 - v0 - 2.0 * EDGE_MM - groove
-    room = u1 - u0 - 2.0 * EDGE_MM - groove
+    tall = v1 - v0 - 2.0 * edge - groove
+    room = u1 - u0 - 2.0 * edge - groove
     state = f"V{version}"
     for lines in (
         (f"{letter} {recipe_name} {state} {size}",),
