@@ -29,6 +29,9 @@ from wavejig.sheets.model import Ring, Shape, Sheet, View, number
 from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.proving import proving_story
 from wavejig.sheets.radiator import radiator_drawing
+from wavejig.sheets.report.markup import write
+from wavejig.sheets.report.model import Report
+from wavejig.sheets.report.proofsection import change_section
 from wavejig.sheets.sheetfiles import drawings
 from wavejig.sheets.template import templates
 from wavejig.shop import Inspection, inspect
@@ -379,10 +382,42 @@ def test_the_bench_and_the_cautions_speak_of_what_is_there(name: str) -> None:
     assert ("Laminate dust" in told) is (not made.design.reflector.metal.foldable)
 
 
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "boatshed-5g8"])
+def test_the_page_s_symptoms_speak_of_the_feed_there_is(name: str) -> None:
+    made = inspected(name)
+    page = Report(inspection=made, pattern=pattern_of(made), pieces=(), prints=(), files=())
+    told = " ".join(write(e) for e in change_section(page))
+    assert ("legs" in told) is (made.design.feed.style == "legs")
+    assert "{" not in told
+
+
 def test_what_found_no_room_on_the_fixture_says_what_to_do() -> None:
     notes = [f for f in flat_and_small().findings if f.code == "fixture-note" and "angle mark" in f.message]
     assert notes
     assert all("angle the step names" in f.remedy for f in notes)
+
+
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "boatshed-5g8", "causeway-2g4-double"])
+def test_cut_list_cut_plan_and_bill_have_the_same_wire(name: str) -> None:
+    """Lengths as printed, pieces for the whole batch, and wire enough in the bill for all of them."""
+    made = inspected(name)
+    assert made.radiator and made.tray and made.spacer and made.fixture
+    pattern = pattern_of(made)
+    batch = plan_batch(made.design, made.radiator, made.tray, pattern, made.spacer, made.fixture)
+    sizes = [r[2] for r in lists.materials(made.design, made.radiator, pattern, made.spacer)]
+    for plan in batch.wires:
+        for role, length, wanted in plan.pieces:
+            assert wanted == made.design.quantity
+            assert any(size.endswith(f"\u00d7 {number(length, 1)} mm") for size in sizes), (
+                role,
+                length,
+                sizes,
+            )
+            cut = sum(p.times * dict(p.pieces).get(role, 0) for p in plan.patterns)
+            assert cut == wanted
+        (line,) = [b for b in batch.bill.lines if b.key == plan.kind]
+        assert line.count is not None
+        assert line.count * 1000.0 >= sum(length * n for _, length, n in plan.pieces)
 
 
 @pytest.mark.parametrize("name", ["saltmarsh-2g4", "ridge-868"])

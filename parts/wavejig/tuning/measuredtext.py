@@ -86,7 +86,7 @@ def _slips(m: Measured, fit: Fit) -> list[str]:
             "only, mend the article and leave the recipe as it is"
         )
     for other in fit.or_else:
-        moves = " and ".join(f"{title(m, key)} {value:+.2f} mm" for key, value in other.slipped)
+        moves = " and ".join(f"{title(m, key)} {value:+z.2f} mm" for key, value in other.slipped)
         lines.append(
             f"  or else (about {10 * round(10 * other.chance):.0f} in 100): "
             + (moves or "nothing slipped, all of it a little of everything")
@@ -108,10 +108,10 @@ def _table(m: Measured, right: Fit, open_: Fit, *, whole: bool) -> list[str]:
         rows.append(
             (
                 title(m, d.key),
-                f"{d.value:+.2f}{unit}" if d.told else f"cannot tell ({d.value:+.2f}{unit})",
-                f"{low:+.2f} to {high:+.2f}",
+                f"{d.value:+z.2f}{unit}" if d.told else f"cannot tell ({d.value:+z.2f}{unit})",
+                f"{low:+z.2f} to {high:+z.2f}",
                 f"plus or minus {d.before:.2f}",
-                f"{other.value:+.2f}, {other.interval[0]:+.2f} to {other.interval[1]:+.2f}",
+                f"{other.value:+z.2f}, {other.interval[0]:+z.2f} to {other.interval[1]:+z.2f}",
             )
         )
     if open_.has(FREQUENCY):
@@ -123,7 +123,7 @@ def _table(m: Measured, right: Fit, open_: Fit, *, whole: bool) -> list[str]:
                 "taken as right",
                 "",
                 f"plus or minus {196 * d.prior_sigma:.2f} %",
-                f"{100 * d.value:+.2f} %, {100 * low:+.2f} to {100 * high:+.2f} %",
+                f"{100 * d.value:+z.2f} %, {100 * low:+z.2f} to {100 * high:+z.2f} %",
             )
         )
     widths = [max(len(r[i]) for r in rows) for i in range(5)]
@@ -147,7 +147,7 @@ def _vague(m: Measured, fit: Fit, before: str) -> list[str]:
     for one, other, r in fit.vague:
         mend = _mend(one, other)
         lines.append(
-            f"  {before}the sweep cannot tell {title(m, one)} from {title(m, other)} (correlation {r:+.2f}); {mend}"
+            f"  {before}the sweep cannot tell {title(m, one)} from {title(m, other)} (correlation {r:+z.2f}); {mend}"
         )
     return lines
 
@@ -178,7 +178,7 @@ def _recipe(m: Measured) -> list[str]:
     lines = [
         f"model: true frequency = {factor:.5f} x predicted, standard error {100 * m.frequency_error:.2f} % "
         f"(beforehand {100 * m.explored.spread.frequency_sigma:.2g} %)",
-        f"surface: {m.explored.solves} solves; a solve at what was found differs by {m.check_db:+.3f} dB",
+        f"surface: {m.explored.solves} solves; a solve at what was found differs by {m.check_db:+z.3f} dB",
     ]
     if not m.changes:
         lines.append(
@@ -224,7 +224,7 @@ def _batch(m: Measured) -> list[str]:
         if found:
             values = np.array([d.value for d in found])
             lines.append(
-                f"  {title(m, key)}: mean {values.mean():+.2f} mm, spread {values.std(ddof=1):.2f} mm (one sigma; "
+                f"  {title(m, key)}: mean {values.mean():+z.2f} mm, spread {values.std(ddof=1):.2f} mm (one sigma; "
                 f"{found[0].prior_sigma:.2f} mm beforehand), taking the model as right"
             )
     return lines

@@ -21,7 +21,7 @@ _MEASURABLE = ("side", "lobe_diameter", "standoff", "feed_gap")
 _SYMPTOMS = (
     ("the dip lies too low in frequency", "loops too long: shorten the side (or the lobes' diameter)"),
     ("the dip lies too high", "loops too short: lengthen the side"),
-    ("the dip is in place but shallow", "standoff, feed gap or legs: compare each with its nominal"),
+    ("the dip is in place but shallow", "standoff, feed gap or {feed}: compare each with its nominal"),
     ("no dip at all", "a joint that is none, a short at the pin, or the analyser's calibration"),
     ("it changes when the cable is touched", "current on the cable's outside: check the ground joint"),
 )
@@ -78,7 +78,9 @@ def change_section(r: Report) -> Iterator[Element]:
             "says what to do to this article and what to change in the recipe; with ", el("code", "--write"),
             " it puts that in.",
         )  # fmt: skip
-    yield table("What the sweep looks like, and where to look", ("on the bench", "look at"), _SYMPTOMS)
+    feed = "legs" if r.design.feed.style == "legs" else "height of the tube"
+    symptoms = tuple((seen, where.format(feed=feed)) for seen, where in _SYMPTOMS)
+    yield table("What the sweep looks like, and where to look", ("on the bench", "look at"), symptoms)
     yield el("h3", "Numbers that were not given in the recipe")
     rows = [
         (
@@ -101,7 +103,7 @@ def _measured(m: Measured) -> Iterator[Element]:
     rows = []
     for a in sorted(m.articles, key=lambda a: (a.worst_db, a.sweep.serial)):
         verdict = "passes" if a.passes else f"fails by {m.wanted_db - a.worst_db:.1f} dB"
-        levers = "; ".join(f"{_name(x.key)} {x.move:+.2f} {_unit(x.unit)}" for x in a.bench.levers)
+        levers = "; ".join(f"{_name(x.key)} {x.move:+z.2f} {_unit(x.unit)}" for x in a.bench.levers)
         if a.strange:
             levers = "not explained by its dimensions: look for a bad joint, or something near it"
         rows.append((f"serial {a.sweep.serial}", f"{a.worst_db:.1f} dB", verdict, levers or "nothing"))
@@ -116,7 +118,7 @@ def _measured(m: Measured) -> Iterator[Element]:
         numbers=(1, 2, 3),
     )
     for other in worst.findings.right.or_else:
-        slips = " and ".join(f"{_name(key)} {value:+.2f} mm" for key, value in other.slipped)
+        slips = " and ".join(f"{_name(key)} {value:+z.2f} mm" for key, value in other.slipped)
         yield el("p", f"Or else, {100 * other.chance:.0f} % likely: {slips or 'nothing slipped'}.")
     if m.changes:
         moves = [(_name(c.key), f"{c.now:.2f} mm", f"{c.new:.2f} mm") for c in m.changes]
@@ -132,8 +134,8 @@ def _deviations(a: Article) -> Iterator[tuple[str, str, str, str]]:
     for d in a.findings.right.deviations:
         if d.key in _MEASURABLE:
             low, high = d.interval
-            value = f"{d.value:+.2f} mm" if d.told else "cannot tell: take the calliper"
-            yield _name(d.key), value, f"{low:+.2f} to {high:+.2f} mm", f"\u00b1{d.before:.2f} mm"
+            value = f"{d.value:+z.2f} mm" if d.told else "cannot tell: take the calliper"
+            yield _name(d.key), value, f"{low:+z.2f} to {high:+z.2f} mm", f"\u00b1{d.before:.2f} mm"
 
 
 def _wanted(r: Report) -> tuple[checks.Check, ...]:
