@@ -29,6 +29,7 @@ from wavejig.sheets.model import Ring, Shape, Sheet, View, number
 from wavejig.sheets.process import assembly_steps
 from wavejig.sheets.proving import proving_story
 from wavejig.sheets.radiator import radiator_drawing
+from wavejig.sheets.report.fitsection import fit_section
 from wavejig.sheets.report.markup import write
 from wavejig.sheets.report.model import Report
 from wavejig.sheets.report.proofsection import change_section
@@ -389,6 +390,14 @@ def test_the_page_s_symptoms_speak_of_the_feed_there_is(name: str) -> None:
     told = " ".join(write(e) for e in change_section(page))
     assert ("legs" in told) is (made.design.feed.style == "legs")
     assert "{" not in told
+
+
+@pytest.mark.parametrize("name", ["saltmarsh-2g4", "boatshed-5g8"])
+def test_the_page_speaks_of_folds_only_where_there_are_some(name: str) -> None:
+    made = inspected(name)
+    page = Report(inspection=made, pattern=pattern_of(made), pieces=(), prints=(), files=())
+    told = " ".join(write(e) for e in fit_section(page))
+    assert ("\u00b7 - folds" in told) is bool(pattern_of(made).bends)
 
 
 def test_what_found_no_room_on_the_fixture_says_what_to_do() -> None:

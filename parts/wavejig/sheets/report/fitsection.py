@@ -71,7 +71,8 @@ def _sheet(r: Report) -> Element:
     )
     for place in placed:
         parts += _placed(pattern, place, lambda x, y: (_EDGE + scale * x, floor - scale * y))
-    parts.append(word((_EDGE, top - 10.0), "the blank alone, from the radiator side (- \u00b7 - folds):"))
+    folds = " (- \u00b7 - folds)" if pattern.bends else ""
+    parts.append(word((_EDGE, top - 10.0), f"the blank alone, from the radiator side{folds}:"))
     parts += _alone(pattern, top)
     w, h = pattern.size_mm
     stock = f"{number(wide_mm)} by {number(high_mm)} mm"
