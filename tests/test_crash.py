@@ -17,7 +17,9 @@ from pathlib import Path
 import pytest
 
 from tests.yard import YARD
+from wavejig.files.lock import locked
 from wavejig.files.origin import differing
+from wavejig.files.staging import staging
 
 MOMENTS = 60  # over a whole build; --whole takes them all
 SAMPLE = 2
@@ -107,6 +109,45 @@ def test_killed_at_a_random_moment(number: int, first: tuple[Path, float], tmp_p
     )
     assert [p.name for p in out.iterdir()] == ["yard-5g8"]
     assert state(out, YARD + "# next\n") == "old"
+
+
+@pytest.mark.skipif(sys.platform != "linux", reason="tells from /proc that a process stands still")
+def test_sixty_moments_of_one_build(first: tuple[Path, float], tmp_path: Path) -> None:
+    """What a kill leaves on the disk is what lies there while the process stands still: stopped, copied, let go on."""
+    recipe, out = laid(first, tmp_path)
+    chance = random.Random(60)
+    moments = sorted(chance.uniform(0.0, 1.0) * first[1] for _ in range(MOMENTS))
+    process = subprocess.Popen(command(recipe, "--out", out, "--from-scratch"), stdout=subprocess.DEVNULL)
+    found = []
+    for number, moment in enumerate(moments):
+        while process.poll() is None and worked(process.pid) < moment:
+            time.sleep(0.002)
+        if process.poll() is None:
+            process.send_signal(signal.SIGSTOP)
+            until(lambda: process.poll() is not None or standing(process.pid))
+        left = Path(shutil.copytree(out, tmp_path / f"left-{number}"))
+        process.send_signal(signal.SIGCONT)
+        lying, there = stage_of(left), state(left, YARD)
+        with (
+            pytest.raises(ZeroDivisionError),
+            locked(left, "yard-5g8", wait=False),
+            staging(left, "yard-5g8"),
+        ):
+            raise ZeroDivisionError  # the next build, as far as it clears up; it fails before its end
+        assert [p.name for p in left.iterdir()] == ["yard-5g8"]
+        assert state(left, YARD) == there
+        shutil.rmtree(left)
+        found.append((lying, there))
+        sys.stdout.write(f"{number}: {moment:.2f} s of {first[1]:.2f}: {lying}: {there}\n")
+    assert process.wait() == 0 and state(out, YARD) == "new"
+    states = [there for _, there in found]
+    assert states == sorted(states, key=["old", "new"].index)
+    assert len({lying for lying, _ in found}) > 8  # the moments are spread over the build
+
+
+def standing(process: int) -> bool:
+    """Whether a process, threads and all, has been stopped."""
+    return Path(f"/proc/{process}/stat").read_text().rpartition(")")[2].split()[0] == "T"
 
 
 WAYS = {signal.SIGINT: "interrupted", signal.SIGTERM: "SIGTERM", signal.SIGHUP: "terminal was closed"}
