@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import itertools
 import os
+import signal
 from pathlib import Path
 from typing import Any
 
@@ -14,6 +15,11 @@ settings.register_profile(
     "steady", derandomize=True, deadline=None, suppress_health_check=[HealthCheck.too_slow], database=None
 )
 settings.load_profile("steady")
+
+# A run in a shell's background ignores these, and so would every command that tests start and then stop.
+for _number in (signal.SIGINT, signal.SIGHUP):
+    if signal.getsignal(_number) == signal.SIG_IGN:
+        signal.signal(_number, signal.default_int_handler)
 
 
 def pytest_addoption(parser: pytest.Parser) -> None:

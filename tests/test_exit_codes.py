@@ -18,7 +18,8 @@ import pytest
 
 from tests.recipe.bad_recipes import GOOD, below
 from tests.tuning.test_commands import GIVEN
-from wavejig.cli import COMMANDS, main
+from wavejig.cli import main
+from wavejig.commands.arguments import COMMANDS
 
 Capture = pytest.CaptureFixture[str]
 LINE = r"{bad}:6: radiator\.family: read \"bquad\"; allowed: .*\. Did you mean \"biquad\"\?"

@@ -14,7 +14,8 @@ from tests.field.test_model_file import BAD as BAD_MODELS
 from tests.recipe.bad_recipes import BAD, GOOD, below
 from tests.tuning.test_commands import GIVEN
 
-from wavejig.cli import COMMANDS, main
+from wavejig.cli import main
+from wavejig.commands.arguments import COMMANDS
 from wavejig.files.schemas import names, schema
 
 Capture = pytest.CaptureFixture[str]
