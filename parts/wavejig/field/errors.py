@@ -9,6 +9,7 @@ from wavejig.recipe.errors import cut, visible
 
 _LONGEST = 600  # of a message; what a model file holds may be longer
 
+
 class ModelError(ValueError):
     """A model that cannot be solved; code names what is wrong, the text says where and what to do."""
 
