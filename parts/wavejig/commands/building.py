@@ -75,16 +75,12 @@ def _tell(outcomes: Iterable[Outcome], as_json: bool) -> int:
 
 def _same_pack(recipes: list[Path]) -> str | None:
     """Why two of these recipes cannot be built in one call; None where each has a pack of its own."""
-    from wavejig.files.origin import seeming_name
-    from wavejig.recipe.plainfile import read_plain
-    from wavejig.recipe.reader import MOST_BYTES
+    from wavejig.files.origin import seeming_name, text_of
 
     seen: dict[str, Path] = {}
     for path in recipes:
-        try:
-            name = seeming_name(read_plain(path, MOST_BYTES)) if path.is_file() else None
-        except OSError:
-            continue
+        text = text_of(path)
+        name = None if text is None else seeming_name(text)
         if name is None:
             continue
         other = seen.setdefault(name.casefold(), path)  # one folder on a disk that ignores case

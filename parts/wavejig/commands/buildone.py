@@ -84,7 +84,7 @@ def failed(path: Path, message: str, more: str = "") -> Outcome:
 
 
 def _build(path: Path, options: Options, step: Told, announce: Told) -> Outcome:
-    from wavejig.files.origin import look
+    from wavejig.files.origin import RECIPE, look
     from wavejig.files.record import keep, recall
     from wavejig.pack import BuiltMeanwhileError, build, retell
     from wavejig.recipe import read_recipe
@@ -98,23 +98,24 @@ def _build(path: Path, options: Options, step: Told, announce: Told) -> Outcome:
             found = look(path, options.out, field=options.field)
             if found is not None:
                 return _there(path, found, "text")
-    memory = None
-    if not options.from_scratch:
-        memory = recall(options.out / read_recipe(path).recipe.name)
+    name = read_recipe(path).recipe.name
+    memory = None if options.from_scratch else recall(options.out / name)
     try:
         build(
             path, options.out, step, predict=options.field, announce=announce, memory=memory, wait=options.wait,
             anew=options.from_scratch, done=lambda: unchanged(path, options) is not None,
         )  # fmt: skip
     except BuiltMeanwhileError:
-        pass
+        state = "unchanged"
     else:
+        state = "built"
         if memory is not None:
             keep(memory)
-    found = look(path, options.out, field=options.field)
+    # by the recipe it was built from: an editor may have saved another since
+    found = look(options.out / name / RECIPE, options.out, field=options.field)
     if found is None:
-        return failed(path, f"{path}: its pack was changed again while it was being built")
-    return _there(path, found, "built", () if memory is None else tuple(memory.reused))
+        return failed(path, f"{path}: its pack was changed by somebody else as soon as it was built")
+    return _there(path, found, state, () if memory is None else tuple(memory.reused))
 
 
 def _there(path: Path, found: Found, state: str, reused: tuple[str, ...] = ()) -> Outcome:

@@ -100,12 +100,8 @@ def look(path: Path, out: Path, *, field: bool) -> Found | None:
     None when there is none, it is not whole, or it was made from anything else. A recipe that cannot be
     read gives None too: those who read it to build it tell its faults.
     """
-    try:
-        if not path.is_file():  # a pipe would be waited on
-            return None
-        with path.open("rb") as stream:
-            recipe = stream.read(_MOST_BYTES)
-    except (OSError, ValueError):
+    recipe = text_of(path)
+    if recipe is None:
         return None
     name = seeming_name(recipe)
     if name is None:
@@ -173,6 +169,17 @@ def sha256(path: Path) -> str:
 def _inside(name: str) -> bool:
     path = PurePosixPath(name)
     return not path.is_absolute() and ".." not in path.parts and "\\" not in name and ":" not in name
+
+
+def text_of(path: Path) -> bytes | None:
+    """The start of an ordinary file, more than any recipe has; None where there is none. Loads no recipe room."""
+    try:
+        if not path.is_file():  # a pipe would be waited on
+            return None
+        with path.open("rb") as stream:
+            return stream.read(_MOST_BYTES)
+    except (OSError, ValueError):
+        return None
 
 
 def seeming_name(recipe: bytes) -> str | None:
