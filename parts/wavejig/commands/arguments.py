@@ -139,11 +139,7 @@ def parser() -> argparse.ArgumentParser:
         "  wavejig build --verify out/saltmarsh-2g4     is this pack what its recipe gives?\n",
     )
     build.add_argument("recipes", nargs="*", type=Path, metavar="RECIPE", help="recipe files (TOML)")
-    build.add_argument(
-        "--json",
-        action="store_true",
-        help="results as JSON on stdout (its schema: wavejig new --schema NAME)",
-    )
+    _json(build)
     build.add_argument("--out", type=Path, default=Path("out"), metavar="DIR", help="where packs go (out)")
     build.add_argument(
         "--skip-field", action="store_true", help="leave out field/: no prediction, a quicker build"
@@ -210,11 +206,7 @@ def parser() -> argparse.ArgumentParser:
     measured.add_argument(
         "--cluster", metavar="ADDRESS", help="solve on a Dask cluster (extra wavejig[cluster])"
     )
-    measured.add_argument(
-        "--json",
-        action="store_true",
-        help="results as JSON on stdout (its schema: wavejig new --schema NAME)",
-    )
+    _json(measured)
     measured.set_defaults(module="measuring")
 
     watch = command(
@@ -243,6 +235,10 @@ def parser() -> argparse.ArgumentParser:
 
 def _recipes(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("recipes", nargs="+", type=Path, metavar="RECIPE", help="recipe files (TOML)")
+    _json(parser)
+
+
+def _json(parser: argparse.ArgumentParser) -> None:
     parser.add_argument(
         "--json",
         action="store_true",
